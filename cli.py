@@ -1,0 +1,333 @@
+"""The command line: reads arguments, prints, exits; computes nothing."""
+
+from __future__ import annotations
+
+import os
+import sys
+from collections.abc import Callable
+from pathlib import Path
+from typing import TYPE_CHECKING, Annotated, Any, NoReturn, TypeVar
+
+import typer
+
+if TYPE_CHECKING:
+    from .geom.drawing import Hand
+    from .geom.seat import Treatment
+    from .shop.job import Job
+    from .shop.stock import Paper
+
+WingPath = Annotated[Path, typer.Argument(metavar="WING.toml", help="The wing file.", show_default=False)]
+AsJson = Annotated[bool, typer.Option("--json", help="Print JSON: lengths in mm, angles in degrees, masses in grams.")]
+AsCsv = Annotated[bool, typer.Option("--csv", help="Print CSV: lengths in mm, angles in degrees, masses in grams.")]
+
+_Value = TypeVar("_Value")
+
+app = typer.Typer(
+    name="wrywing",
+    help="Full-size templates and cutting decisions for the flat web in a twisted composite wing.",
+    no_args_is_help=True,
+    add_completion=False,
+    pretty_exceptions_enable=False,
+)
+
+
+class UsageError(ValueError):
+    """An argument that cannot be used, in one line."""
+
+
+@app.command()
+def new(
+    path: Annotated[Path, typer.Argument(metavar="PATH", help="Where to write it.", show_default=False)],
+    units: Annotated[str, typer.Option(help='What bare lengths mean: "mm" or "in".')] = "mm",
+) -> None:
+    """Write a commented wing file to start from."""
+    from .shop import starter
+
+    text = starter.text(_one_of(units, {"mm": "mm", "in": "in"}, "--units"))  # type: ignore[arg-type]
+    try:
+        with path.open("x", encoding="utf-8") as file:
+            file.write(text)
+    except FileExistsError:
+        raise UsageError(f"{path}: wanted a new file, got one that exists") from None
+    except OSError as fault:
+        raise UsageError(f"{path}: wanted a file that can be written, got {_reason(fault)}") from None
+    typer.echo(f"wrote {path}; next: wrywing check {path}")
+
+
+@app.command()
+def check(wing: WingPath, as_json: AsJson = False) -> None:
+    """Say what a wing file describes and what is doubtful about it."""
+    from dataclasses import asdict
+
+    from .export import table
+    from .shop import describe
+
+    job = _job(wing)
+    if as_json:
+        typer.echo(table.to_json(asdict(describe.facts(job))))
+        return
+    for what, figures in describe.lines(job):
+        typer.echo(f"{what:<9} {figures}")
+    for doubt in describe.doubts(job):
+        typer.echo(f"{'doubt':<9} {doubt}")
+
+
+@app.command()
+def bevels(
+    wing: WingPath,
+    every: Annotated[str | None, typer.Option(help="Distance between rows; 50 mm or 2 in unless given.")] = None,
+    at: Annotated[str | None, typer.Option(help="Places along the web instead: 0,120,240.", show_default=False)] = None,
+    as_json: AsJson = False,
+    as_csv: AsCsv = False,
+) -> None:
+    """Print the table along the web: heights, bevels, crown, gap and cut of both edges."""
+    from dataclasses import asdict
+
+    from .export import table
+    from .shop import weigh as scales
+
+    job = _job(wing)
+    try:
+        rows = job.rows(_places(job, every, at))
+    except ValueError as fault:
+        raise UsageError(f"--at: {fault}") from None
+    if as_json:
+        typer.echo(table.to_json(table.bevels_record(job, rows)))
+    elif as_csv:
+        typer.echo(table.to_csv([asdict(row) for row in rows]), nl=False)
+    else:
+        for shown in table.bevels(job, rows):
+            _show(shown)
+        if job.record.web.edge == "set bevel":
+            _show(table.runs(job))
+            typer.echo(f"Rounding to the saw's steps costs {job.wording.mass(scales.rounding(job))} of filler.")
+
+
+@app.command()
+def weigh(
+    wing: WingPath,
+    thickness: Annotated[
+        str | None, typer.Option(help="Sheets to try: 4,6,8. Usual ones from 3 to 20 mm unless given.")
+    ] = None,
+    edge: Annotated[str | None, typer.Option(help='Edge cuts to try: "square,full bevel". All unless given.')] = None,
+    cant: Annotated[
+        str | None, typer.Option(help='Cants to try: "0,5,least filler". The stated one unless given.')
+    ] = None,
+    as_json: AsJson = False,
+    as_csv: AsCsv = False,
+) -> None:
+    """Say what each sheet thickness, edge cut and cant costs, and which one to take."""
+    from .export import table
+    from .shop import weigh as scales
+
+    job = _job(wing)
+    sheets, edges = _sheets(job, thickness), _edges(edge)
+    cants = _cants(job, cant)
+    found = _with_progress(scales.candidates(job, sheets, edges, cants), len(sheets) * len(edges) * len(cants))
+    verdict, saving = scales.verdict(found, job), scales.saving(job)
+    if as_json:
+        typer.echo(table.to_json(table.weighed_record(job, found, verdict, saving)))
+    elif as_csv:
+        typer.echo(table.to_csv(table.candidate_records(found, verdict)), nl=False)
+    else:
+        _show(table.weighed(job, found, verdict))
+        typer.echo(verdict.sentence)
+        typer.echo(scales.saving_sentence(saving, job))
+
+
+@app.command()
+def templates(
+    wing: WingPath,
+    out: Annotated[Path, typer.Option(help="The folder to write into.", show_default=False)],
+    formats: Annotated[str, typer.Option(help="Any of dxf,svg,pdf.")] = "dxf,svg,pdf",
+    hand: Annotated[str, typer.Option(help="right, left or both: right,left.")] = "right",
+    paper: Annotated[str | None, typer.Option(help="a4, letter, ...; a4, or letter for a file in inches.")] = None,
+) -> None:
+    """Write every drawing at full size."""
+    from .export import folder
+    from .shop import sheets
+
+    job = _job(wing)
+    writers = _writers(job, _paper(job, paper))
+    kinds = _list_of(formats, {kind: (kind, write) for kind, write in writers.items()}, "--formats")
+    hands: list[Hand] = _list_of(hand, {"right": "right", "left": "left"}, "--hand")
+    files: dict[str, bytes] = {}
+    records = []
+    for side in hands:
+        for drawing in sheets.drawings(job, side):
+            for kind, write in kinds:
+                path = f"{drawing.name}-{drawing.hand}.{kind}"
+                files[path] = write(drawing)
+                records.append({"path": path, "format": kind, "drawing": drawing.name, "hand": drawing.hand})
+    folder.write(out, files, records, stamp=job.stamp)
+    typer.echo(f"wrote {len(files)} files and manifest.json to {out}")
+
+
+def _writers(job: Job, paper: Paper) -> dict[str, Callable[[Any], bytes]]:
+    """How each format is written; a format's library is imported when its first drawing comes."""
+
+    def dxf(drawing: Any) -> bytes:
+        from .export import dxf
+
+        return dxf.render(drawing, wing=job.record.name)
+
+    def svg(drawing: Any) -> bytes:
+        from .export import svg
+
+        return svg.render(drawing, wing=job.record.name)
+
+    def pdf(drawing: Any) -> bytes:
+        from .export import pdf
+
+        return pdf.render(drawing, paper, wing=job.record.name, units=job.record.units)
+
+    return {"dxf": dxf, "svg": svg, "pdf": pdf}
+
+
+def _job(wing: Path) -> Job:
+    from .shop import job
+
+    return job.load(wing)
+
+
+def _show(shown: Any) -> None:
+    from rich.console import Console
+
+    console = Console(width=None if sys.stdout.isatty() else 100)
+    console.print(shown.rich())
+
+
+def _with_progress(found: Any, total: int) -> list[Any]:
+    """List what an iterator gives, with a bar on stderr once that takes more than a second."""
+    import time
+
+    from rich.console import Console
+    from rich.progress import Progress
+
+    out: list[Any] = []
+    start = time.monotonic()
+    with Progress(console=Console(stderr=True), transient=True, disable=not sys.stderr.isatty()) as bar:
+        task = bar.add_task("weighing", total=total, visible=False)
+        for item in found:
+            out.append(item)
+            bar.update(task, advance=1, visible=time.monotonic() - start > 1.0)
+    return out
+
+
+def _places(job: Job, every: str | None, at: str | None) -> Any:
+    if at is not None:
+        return [_length(job, part, "--at") for part in _parts(at, "--at")]
+    default = "2 in" if job.record.units == "in" else "50 mm"
+    step = _length(job, default if every is None else every, "--every")
+    if step < 0.1:
+        raise UsageError(f"--every: wanted a length of 0.1 mm or more, got {every!r}")
+    return job.places(step)
+
+
+def _sheets(job: Job, thickness: str | None) -> list[float]:
+    from .shop import stock
+
+    if thickness is None:
+        return list(stock.usual_sheets(job.record.units))
+    sheets = [_length(job, part, "--thickness") for part in _parts(thickness, "--thickness")]
+    if min(sheets) <= 0.0:
+        raise UsageError(f"--thickness: wanted lengths above 0, got {thickness!r}")
+    return sheets
+
+
+def _edges(edge: str | None) -> list[Treatment]:
+    from .shop.weigh import TREATMENTS
+
+    return list(TREATMENTS) if edge is None else _list_of(edge, {t: t for t in TREATMENTS}, "--edge")
+
+
+def _cants(job: Job, cant: str | None) -> list[float | str]:
+    import math
+
+    from .shop import units
+
+    if cant is None:
+        return [math.degrees(job.cant)]
+    cants: list[float | str] = []
+    for part in _parts(cant, "--cant"):
+        if part in ("least filler", "least gap"):
+            cants.append(part)
+            continue
+        try:
+            angle = units.angle(part)
+        except ValueError as fault:
+            raise UsageError(f"--cant: wanted {fault}") from None
+        if abs(angle) > 45.0:
+            raise UsageError(f"--cant: wanted angles within 45 degrees, got {part!r}")
+        cants.append(angle)
+    return cants
+
+
+def _paper(job: Job, name: str | None) -> Paper:
+    from .shop import stock
+
+    try:
+        return stock.paper(name or ("letter" if job.record.units == "in" else "a4"))
+    except ValueError as fault:
+        raise UsageError(f"--paper: wanted {fault}") from None
+
+
+def _length(job: Job, text: str, option: str) -> float:
+    from .shop import units
+
+    try:
+        return units.length(text, job.record.units)
+    except ValueError as fault:
+        raise UsageError(f"{option}: wanted {fault}") from None
+
+
+def _parts(text: str, option: str) -> list[str]:
+    parts = [part.strip() for part in text.split(",")]
+    if not all(parts):
+        raise UsageError(f"{option}: wanted a list with commas between, got {text!r}")
+    return parts
+
+
+def _one_of(text: str, known: dict[str, _Value], option: str) -> _Value:
+    if text not in known:
+        raise UsageError(f"{option}: wanted one of {', '.join(known)}, got {text!r}")
+    return known[text]
+
+
+def _list_of(text: str, known: dict[str, _Value], option: str) -> list[_Value]:
+    return [_one_of(part, known, option) for part in dict.fromkeys(_parts(text, option))]
+
+
+def _reason(fault: OSError) -> str:
+    return (fault.strerror or str(fault)).lower()
+
+
+def main() -> NoReturn:
+    """Run the command line; every error is one line on stderr and exit status 2."""
+    try:
+        status = app(standalone_mode=False)
+    except KeyboardInterrupt:
+        _fail("stopped", 130)
+    except BrokenPipeError:
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        raise SystemExit(1) from None
+    except Exception as fault:
+        if hasattr(fault, "exit_code") and hasattr(fault, "format_message"):
+            _fail(f"wrywing: {fault.format_message()}", 2)
+        if _is_the_users(fault):
+            _fail(str(fault), 2)
+        _fail(f"wrywing: a fault of the program itself, please report it: {type(fault).__name__}: {fault}", 1)
+    raise SystemExit(status if isinstance(status, int) else 0)
+
+
+def _is_the_users(fault: Exception) -> bool:
+    """Whether an error is one that a user can cause, with a line of its own."""
+    from .export.folder import FolderError
+    from .shop.wingfile import WingError
+
+    return isinstance(fault, UsageError | WingError | FolderError)
+
+
+def _fail(text: str, status: int) -> NoReturn:
+    print(" ".join(text.split()), file=sys.stderr)
+    raise SystemExit(status)

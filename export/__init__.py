@@ -1,0 +1,1 @@
+"""Drawings, meshes and tables to bytes; one module for each format."""

@@ -1,0 +1,193 @@
+"""Tables and records of results: for the screen, as JSON and as CSV, all from the same figures."""
+
+from __future__ import annotations
+
+import csv
+import io
+import json
+import math
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import asdict, dataclass, replace
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from ..geom.web import SIDES
+from ..shop.job import EdgeRow, Job, Row
+from ..shop.weigh import Candidate, Saving, Verdict
+from ..shop.wording import degrees
+
+if TYPE_CHECKING:
+    from rich.table import Table as RichTable
+
+
+@dataclass(frozen=True)
+class Table:
+    """A table of texts for the screen; `marked` rows stand out."""
+
+    title: str
+    heads: tuple[str, ...]
+    rows: tuple[tuple[str, ...], ...]
+    marked: frozenset[int] = frozenset()
+
+    def rich(self) -> RichTable:
+        """Give the table as rich shows it."""
+        from rich import box
+        from rich.table import Table as RichTable
+
+        shown = RichTable(title=self.title, title_justify="left", box=box.SIMPLE_HEAD, pad_edge=False, padding=(0, 1))
+        for i, head in enumerate(self.heads):
+            words = all(not any(c.isdigit() for c in row[i]) for row in self.rows)
+            shown.add_column(head, justify="left" if words else "right", no_wrap=True)
+        for i, row in enumerate(self.rows):
+            shown.add_row(*row, style="bold" if i in self.marked else None)
+        return shown
+
+
+def to_json(record: object) -> str:
+    """JSON with what has no number (the figures of a web that cannot be made) as null."""
+    return json.dumps(_finite(record), indent=2, ensure_ascii=False)
+
+
+def _finite(value: Any) -> Any:
+    if isinstance(value, Mapping):
+        return {key: _finite(item) for key, item in value.items()}
+    if isinstance(value, list | tuple):
+        return [_finite(item) for item in value]
+    return None if isinstance(value, float) and not math.isfinite(value) else value
+
+
+def to_csv(records: Sequence[Mapping[str, Any]]) -> str:
+    """CSV with a line of names; a record inside a record becomes columns ``outer_inner``."""
+    flat = [dict(_flat(record)) for record in records]
+    out = io.StringIO()
+    writer = csv.DictWriter(out, fieldnames=list(flat[0]) if flat else [], lineterminator="\n")
+    writer.writeheader()
+    writer.writerows(flat)
+    return out.getvalue()
+
+
+def _flat(record: Mapping[str, Any], before: str = "") -> Iterable[tuple[str, Any]]:
+    for key, value in record.items():
+        if isinstance(value, Mapping):
+            yield from _flat(value, f"{before}{key}_")
+        else:
+            yield f"{before}{key}", _finite(value)
+
+
+def bevels(job: Job, rows: Sequence[Row]) -> list[Table]:
+    """The bevel table of each edge for the screen, in the wing file's units."""
+    return [_edge_table(job, rows, side) for side in SIDES]
+
+
+def _edge_table(job: Job, rows: Sequence[Row], side: str) -> Table:
+    put = job.wording.column
+    heads = ("s", "y", "thick", "front", "rear", "bevel", "crown", "gap", "cut front", "cut rear")
+
+    def line(row: Row) -> tuple[str, ...]:
+        edge: EdgeRow = getattr(row, side)
+        return (
+            put(row.s, 1),
+            put(row.y, 1),
+            put(row.thickness),
+            put(edge.front),
+            put(edge.rear),
+            degrees(edge.bevel, 2),
+            put(edge.crown, 3),
+            put(edge.gap),
+            put(edge.cut_front),
+            put(edge.cut_rear),
+        )
+
+    title = f"{side} edge, {job.record.web.edge} (lengths in {job.record.units})"
+    return Table(title, heads, tuple(line(row) for row in rows))
+
+
+def bevels_record(job: Job, rows: Sequence[Row]) -> dict[str, Any]:
+    """The bevel table as a record: lengths in mm, angles in degrees."""
+    web: dict[str, Any] = {
+        "length": job.web.plane.length,
+        "cant": float(np.degrees(job.cant)),
+        "edge": job.record.web.edge,
+    }
+    if job.record.web.edge == "set bevel":
+        web["runs"] = {side: runs_record(job, side) for side in SIDES}
+        web["rounding_mm3"] = job.rounding
+    return {"name": job.record.name, "stamp": job.stamp, "web": web, "rows": [asdict(row) for row in rows]}
+
+
+def runs_record(job: Job, side: Any) -> list[dict[str, float]]:
+    """Saw settings along an edge: mm and degrees."""
+    return [
+        {"start": run.start, "stop": run.stop, "angle": float(np.degrees(run.angle))} for run in job.web.cut(side).runs
+    ]
+
+
+def runs(job: Job) -> Table:
+    """Saw settings for the screen."""
+    put = job.wording.column
+    rows = tuple(
+        (side, put(run["start"], 1), put(run["stop"], 1), degrees(run["angle"], 2))
+        for side in SIDES
+        for run in runs_record(job, side)
+    )
+    return Table(f"saw settings (lengths in {job.record.units})", ("edge", "from s", "to s", "saw"), rows)
+
+
+def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
+    """The candidates for the screen, in the wing file's units, the chosen one marked."""
+    words = job.wording
+    unit = words.mass_unit
+    heads = ("", "sheet", "edge", "cant", "runs", "foam", "filler", "total", "gap", "bevel", "swing", "verdict")
+    rows = []
+    for c in found:
+        mark = "→" if c is verdict.chosen else ""
+        start = (mark, words.plain(c.thickness), c.edge, degrees(c.cant))
+        if c.outside:
+            rows.append((*start, *[""] * 7, "leaves the section"))
+            continue
+        rows.append(
+            (
+                *start,
+                str(c.runs) if c.runs else "",
+                words.mass_column(c.masses.foam),
+                words.mass_column(c.masses.filler),
+                words.mass_column(c.masses.total),
+                words.column(c.gap),
+                f"{c.bevel:.1f}°",
+                f"{c.swing:.1f}°",
+                _verdict(job, c),
+            )
+        )
+    marked = frozenset(i for i, c in enumerate(found) if c is verdict.chosen)
+    title = f"{job.record.name}: what a web costs (lengths in {job.record.units}, masses in {unit})"
+    return Table(title, heads, tuple(rows), marked)
+
+
+def _verdict(job: Job, candidate: Candidate) -> str:
+    if job.record.limits is None:
+        return ""
+    return ", ".join(miss.limit for miss in candidate.misses) or "meets limits"
+
+
+def weighed_record(job: Job, found: Sequence[Candidate], verdict: Verdict, saving: Saving | None) -> dict[str, Any]:
+    """The candidates and the verdict as a record: mm, degrees, grams."""
+    return {
+        "name": job.record.name,
+        "stamp": job.stamp,
+        "candidates": candidate_records(found, verdict),
+        "verdict": verdict.sentence,
+        "saving": None if saving is None else asdict(saving),
+    }
+
+
+def candidate_records(found: Sequence[Candidate], verdict: Verdict) -> list[dict[str, Any]]:
+    """One record for each candidate."""
+    out = []
+    for c in found:
+        record = asdict(replace(c, misses=()))
+        del record["misses"]
+        weights = record.pop("masses") | {"filler": c.masses.filler, "total": c.masses.total}
+        missed = {miss.limit: miss.over for miss in c.misses}
+        out.append(record | {"masses": weights, "misses": missed, "fits": c.fits, "chosen": c is verdict.chosen})
+    return out

@@ -1,0 +1,1 @@
+"""Shapes as numbers: millimetres and radians; no file, no material."""

@@ -1,0 +1,124 @@
+"""The web blank: the outline of each face of the sheet, and the marks that stand on it, in the web's own (s, h)."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+import numpy as np
+from numpy.typing import NDArray
+
+from .seat import Cut
+from .web import Plane
+
+Array = NDArray[np.float64]
+FaceName = Literal["front", "rear"]
+FACES: tuple[FaceName, FaceName] = ("front", "rear")
+
+_FINE = np.linspace(0.0, 1.0, 9)[:-1]  # places in a cell at which its quadratic is drawn
+_SPARE = 10.0  # mm by which an edge is carried on before the rib planes cut it
+
+
+@dataclass(frozen=True)
+class Face:
+    """One face of the blank.
+
+    Attributes
+    ----------
+    name
+        ``front`` (n = -t/2) or ``rear`` (n = +t/2).
+    top, bottom
+        (k, 2) the two edges in (s, h), s ascending, from rib plane y1 to rib plane y2.
+    """
+
+    name: FaceName
+    top: Array
+    bottom: Array
+
+    def outline(self) -> Array:
+        """(k, 2) closed outline, anticlockwise in (s, h), first point not repeated."""
+        return np.concatenate([self.bottom, self.top[::-1]])
+
+    def area(self) -> float:
+        """Area inside the outline, mm^2."""
+        x, y = self.outline().T
+        return float(x @ np.roll(y, -1) - y @ np.roll(x, -1)) / 2.0
+
+    def heights(self, s: float) -> tuple[float, float]:
+        """Bottom and top of the face at s."""
+        return float(np.interp(s, *self.bottom.T)), float(np.interp(s, *self.top.T))
+
+
+def face(web: Plane, top: Cut, bottom: Cut, name: FaceName) -> Face:
+    """One face of the sheet, its edges cut and its ends at the rib planes."""
+    return Face(name, _edge_line(web, top, name), _edge_line(web, bottom, name))
+
+
+def rib_line(web: Plane, of: Face, thickness: float, y: float) -> Array:
+    """(2, 2) the line from the bottom to the top edge of a face along which the rib plane `y` meets it."""
+    n = (-0.5 if of.name == "front" else 0.5) * thickness
+    ends = []
+    for line in (of.bottom, of.top):
+        ahead = line[:, 0] - web.s_at_rib(y, line[:, 1], n)
+        h = float(np.interp(0.0, ahead, line[:, 1]))
+        ends.append([float(web.s_at_rib(y, h, n)), h])
+    return np.array(ends)
+
+
+def register_places(front: Face, rear: Face, *, apart: float = 500.0, inset: float = 25.0) -> Array:
+    """(k, 2) places (s, h), three or more, that lie on both faces: a pin pushed square through the sheet hits both.
+
+    They stand on the web line where it runs well inside the sheet, else at mid-height, and are spaced unevenly, so that
+    a face cannot be laid on end for end.
+    """
+    start = max(f.outline()[:, 0].min() for f in (front, rear)) + inset
+    stop = min(f.outline()[:, 0].max() for f in (front, rear)) - inset
+    if stop - start < 2.0 * inset:
+        start, stop = start - inset / 2.0, stop + inset / 2.0
+    count = max(3, int(np.ceil((stop - start) / apart)) + 1)
+    share = np.linspace(0.0, 1.0, count)
+    share[1:-1] -= 0.12 / (count - 1)
+    places = []
+    for s in start + share * (stop - start):
+        low = max(f.heights(float(s))[0] for f in (front, rear))
+        high = min(f.heights(float(s))[1] for f in (front, rear))
+        margin = 0.25 * (high - low)
+        places.append([s, 0.0 if low + margin < 0.0 < high - margin else (low + high) / 2.0])
+    return np.array(places)
+
+
+def _edge_line(web: Plane, cut: Cut, name: FaceName) -> Array:
+    """(k, 2) one edge of one face, cut off by the rib planes at both ends."""
+    n = cut.survey.n[..., 0 if name == "front" else -1]
+    line = np.column_stack([_fine(v).ravel() for v in (cut.survey.s, cut.at(n))])
+    last = [cut.survey.s[-1, 2], cut.at(n)[-1, 2]]
+    line = np.concatenate([line, [last]])
+    line = np.concatenate([[_carried(line[1], line[0])], line, [_carried(line[-2], line[-1])]])
+    for rib, outer, end in zip(web.ends, (1.0, -1.0), (n[0, 0], n[-1, 2]), strict=True):
+        past = outer * (line[:, 0] - web.s_at_rib(rib, line[:, 1], end))
+        line = _cut_off(line, past)
+    return line
+
+
+def _fine(cells: Array) -> Array:
+    """(C, 8) values along each cell of the quadratic through its three places."""
+    a, b, c = (v[:, None] for v in cells.T)
+    x = _FINE
+    return np.asarray(a * (2 * x - 1) * (x - 1) + 4 * b * x * (1 - x) + c * x * (2 * x - 1))
+
+
+def _carried(before: Array, end: Array) -> Array:
+    """A point `_SPARE` mm beyond `end`, straight on from `before`."""
+    step = end - before
+    return np.asarray(end + step * (_SPARE / abs(step[0])))
+
+
+def _cut_off(line: Array, past: Array) -> Array:
+    """The part of a line where `past` is positive, with the crossing put in."""
+    inside = past > 0.0
+    crossing = int(np.flatnonzero(inside[1:] != inside[:-1])[0])
+    share = past[crossing] / (past[crossing] - past[crossing + 1])
+    point = line[crossing] + share * (line[crossing + 1] - line[crossing])
+    if inside[crossing + 1]:
+        return np.concatenate([[point], line[crossing + 1 :]])
+    return np.concatenate([line[: crossing + 1], [point]])

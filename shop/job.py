@@ -1,0 +1,330 @@
+"""One wing file's results, each computed once, when first asked for."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import cached_property
+from pathlib import Path
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from ..geom import blank, cant, seat, washout, web
+from ..geom.loft import Loft
+from ..geom.seat import Aim, Cut, Run, Survey, Treatment
+from ..geom.web import SIDES, NothingInside, OffSection, Plane, Side
+from . import wingfile
+from .wingfile import Loaded, WingError
+from .wording import Wording
+
+Array = NDArray[np.float64]
+
+COARSE = 40.0  # mm, cells of the surveys that a search makes
+SWEEP = np.radians(1.0)
+CLOSE = np.radians(0.005)
+FINE_SAW = 20  # a saw this many times finer than the real one stands for one without steps
+
+
+@dataclass(frozen=True)
+class EdgeRow:
+    """One edge at one place: heights in mm in the web plane, angles in degrees."""
+
+    front: float
+    rear: float
+    bevel: float
+    crown: float
+    gap: float
+    cut_front: float
+    cut_rear: float
+
+
+@dataclass(frozen=True)
+class Row:
+    """Both edges at one place s; y is the rib plane there."""
+
+    s: float
+    y: float
+    thickness: float
+    top: EdgeRow
+    bottom: EdgeRow
+
+
+@dataclass(frozen=True)
+class BuiltWeb:
+    """A web as it would be cut: its plane, the survey of skin and seat over it, and its two edges."""
+
+    plane: Plane
+    survey: Survey
+    top: Cut
+    bottom: Cut
+
+    def cut(self, side: Side) -> Cut:
+        """The cut of one edge."""
+        return self.top if side == "top" else self.bottom
+
+    @cached_property
+    def filler(self) -> float:
+        """Filler at both edges, mm^3."""
+        return self.top.filler + self.bottom.filler
+
+    @cached_property
+    def gap(self) -> float:
+        """Largest gap at either edge, mm."""
+        return float(max(self.top.gap.max(), self.bottom.gap.max()))
+
+    @cached_property
+    def sheet(self) -> float:
+        """Volume of the sheet, mm^3."""
+        return seat.sheet_volume(self.top, self.bottom)
+
+    @cached_property
+    def faces(self) -> tuple[blank.Face, blank.Face]:
+        """Front and rear face of the blank."""
+        front, rear = (blank.face(self.plane, self.top, self.bottom, name) for name in blank.FACES)
+        return front, rear
+
+    def cut_bevels(self) -> tuple[float, float]:
+        """Largest angle that is cut, and how far the cut turns along the edge where it turns most; degrees."""
+        angles = [np.degrees(np.arctan(c.slope)) for c in (self.top, self.bottom)]
+        return float(max(np.abs(a).max() for a in angles)), float(max(np.ptp(a) for a in angles))
+
+
+class Job:
+    """What a wing file leads to.
+
+    Parameters
+    ----------
+    loaded
+        The checked wing file with its sections and stock.
+    """
+
+    def __init__(self, loaded: Loaded) -> None:
+        self.record, self.stock, self.stamp, self.path = (
+            loaded.record,
+            loaded.stock,
+            loaded.stamp,
+            loaded.path,
+        )
+        self._sections = loaded.sections
+
+    @cached_property
+    def wording(self) -> Wording:
+        """How figures are written for this file's reader."""
+        return Wording(self.record.units)
+
+    def error(self, key: str, text: str) -> WingError:
+        """The one-line error for a key of this wing file."""
+        return WingError(self.path, key, text)
+
+    @cached_property
+    def loft(self) -> Loft:
+        """The panel's surfaces."""
+        wing = self.record.wing
+        y = [s.y for s in wing.stations]
+        law = washout.smooth if wing.planform == "smooth" else washout.straight
+        return Loft(
+            y=np.array(y),
+            sections=self._sections,
+            planform=law(y, [[s.chord, s.le, s.z] for s in wing.stations]),
+            washout=self._washout(),
+            skin=washout.straight(*self._skin_table()),
+            axis=wing.twist_axis,
+        )
+
+    def _washout(self) -> washout.Law:
+        wing = self.record.wing
+        y = np.array([s.y for s in wing.stations])
+        if wing.washout.law == "table":
+            places, angles = zip(*(wing.washout.points or ()), strict=True)
+            return washout.smooth(places, np.radians(angles))
+        angles = np.radians([s.washout if s.washout is not None else np.nan for s in wing.stations])
+        if wing.washout.law == "power":
+            return washout.Power(y[[0, -1]], float(angles[0]), float(angles[-1]), wing.washout.exponent or 1.0)
+        return (washout.straight if wing.washout.law == "straight" else washout.smooth)(y, angles)
+
+    def _skin_table(self) -> tuple[Sequence[float], Sequence[float]]:
+        thickness, stations = self.record.skin.thickness, self.record.wing.stations
+        if isinstance(thickness, float):
+            return (stations[0].y, stations[-1].y), (thickness, thickness)
+        y, value = zip(*thickness, strict=True)
+        return y, value
+
+    @cached_property
+    def cant(self) -> float:
+        """The web's cant, radians: stated, square to a rib's chord line, or the best for the stated edge."""
+        stated = self.record.web.cant
+        if stated.kind == "angle":
+            return float(np.radians(stated.value or 0.0))
+        if stated.kind == "square":
+            ends, line = self.record.web.ends, self.record.web.line
+            return web.cant_square_at(self.loft, ends=ends, line=line, y=stated.value or 0.0)
+        return self.best_cant("gap" if stated.kind == "least gap" else "filler")[0]
+
+    def best_cant(
+        self, aim: Aim, thickness: float | None = None, treatment: Treatment | None = None
+    ) -> tuple[float, float]:
+        """Cant within the stated limit that makes the filler (mm^3) or the largest gap (mm) least, and that figure.
+
+        Raises
+        ------
+        WingError
+            If the web fits inside the wing at no cant that may be tried.
+        """
+        limit = float(np.radians(self.record.web.cant_limit))
+
+        def figure(angle: float) -> float:
+            try:
+                survey = self.survey(angle, thickness, longest=COARSE)
+            except (OffSection, NothingInside):
+                return float("inf")
+            built = self.fit(angle, survey, treatment)
+            return built.filler if aim == "filler" else built.gap
+
+        angle, least = cant.least(figure, -limit, limit, step=float(SWEEP), close=float(CLOSE))
+        if not np.isfinite(least):
+            limits = f"{-np.degrees(limit):g} to {np.degrees(limit):g} degrees"
+            raise self.error(
+                "web.cant_limit",
+                f"wanted a cant at which the web fits inside the wing, got none from {limits}",
+            )
+        return angle, least
+
+    def plane_at(self, angle: float) -> Plane:
+        """The web plane at a cant in radians."""
+        return web.plane(self.loft, ends=self.record.web.ends, line=self.record.web.line, cant=angle)
+
+    @cached_property
+    def thickness(self) -> seat.Along:
+        """Thickness of the web along s."""
+        return seat.constant(self.record.web.thickness)
+
+    @cached_property
+    def depth(self) -> dict[Side, seat.Along]:
+        """What lies between skin and web at each edge."""
+        return {side: seat.constant(self.record.web.bond) for side in SIDES}
+
+    def survey(self, angle: float, thickness: float | None = None, *, longest: float = 20.0) -> Survey:
+        """Skin and seat over a web of a given cant (radians) and, unless the stated one, thickness (mm)."""
+        sheet = self.thickness if thickness is None else seat.constant(thickness)
+        return seat.survey(self.loft, self.plane_at(angle), thickness=sheet, depth=self.depth, longest=longest)
+
+    def fit(self, angle: float, survey: Survey, treatment: Treatment | None = None) -> BuiltWeb:
+        """Cut both edges of a surveyed web, as the wing file states unless told otherwise."""
+        treatment = treatment or self.record.web.edge
+        top, bottom = (self._cut(survey, side, treatment) for side in SIDES)
+        return BuiltWeb(self.plane_at(angle), survey, top, bottom)
+
+    def _cut(self, survey: Survey, side: Side, treatment: Treatment) -> Cut:
+        if treatment != "set bevel":
+            return seat.cut(survey, side, treatment)
+        return seat.cut(survey, side, treatment, self._runs(survey, side, self.record.web.angle_step))
+
+    def _runs(self, survey: Survey, side: Side, step: float) -> tuple[Run, ...]:
+        angles = seat.saw_angles(survey, side, float(np.radians(step)))
+        stated = self.record.web
+        try:
+            return seat.best_runs(survey, side, runs=stated.runs, angles=angles, aim=stated.aim)
+        except ValueError as fault:
+            raise self.error("web.runs", f"wanted {fault}") from None
+
+    @cached_property
+    def web(self) -> BuiltWeb:
+        """The web as stated.
+
+        Raises
+        ------
+        WingError
+            If it does not fit inside the wing; the key at fault is named.
+        """
+        try:
+            return self.fit(self.cant, self.survey(self.cant))
+        except OffSection as fault:
+            raise self._outside(fault) from None
+        except NothingInside as fault:
+            text = f"wanted a skin that leaves room for the web, got {fault}"
+            raise self.error("skin.thickness", text) from None
+
+    def _outside(self, fault: OffSection) -> WingError:
+        """Which key is to blame for a web that leaves the section: the line, the cant, the thickness or the skin."""
+        upright, s = self.plane_at(0.0), np.array([fault.s])
+        y = float(upright.origin[1] + fault.s * upright.s[1])
+        skin = self.loft.skin(np.array([y]), np.array([y]))[0]
+
+        def fits(plane: Plane, n: ArrayLike, depth: ArrayLike) -> bool:
+            return not any(np.isnan(web.edge(self.loft, plane, s[:, None], n, side, depth).h).any() for side in SIDES)
+
+        sides = self.thickness(s)[:, None] * np.array([[-0.5, 0.5]])
+        here = f"the {fault.side} edge leaves the section at s = {fault.s:.0f} mm (rib y = {y:.0f} mm)"
+        if not fits(upright, 0.0, -skin):
+            return self.error("web.line", f"wanted a web line inside the section, got one where {here}")
+        if not fits(self.plane_at(self.cant), 0.0, -skin):
+            return self.error("web.cant", f"wanted a cant that keeps the web inside the wing, got one where {here}")
+        if not fits(self.plane_at(self.cant), sides, -skin):
+            return self.error("web.thickness", f"wanted faces inside the section, got a web where {here}")
+        return self.error("skin.thickness", f"wanted a skin that leaves room for the web, got one where {here}")
+
+    @cached_property
+    def rounding(self) -> float:
+        """Filler in mm^3 that a set bevel costs more than it would with a saw that has no steps; 0 for other edges."""
+        if self.record.web.edge != "set bevel":
+            return 0.0
+        step = self.record.web.angle_step / FINE_SAW
+        survey = self.web.survey
+        ideal = [seat.cut(survey, side, "set bevel", self._runs(survey, side, step)) for side in SIDES]
+        return self.web.filler - sum(c.filler for c in ideal)
+
+    def places(self, every: float) -> Array:
+        """Places s from end to end of the web line, `every` mm apart and both ends."""
+        length = self.web.plane.length
+        return np.append(np.arange(0.0, length - 1e-6, every), length)
+
+    def rows(self, places: ArrayLike) -> list[Row]:
+        """The bevel table at places s (k,) in mm.
+
+        Raises
+        ------
+        ValueError
+            If a place lies beyond the web line.
+        """
+        s = np.asarray(places, dtype=float)
+        plane = self.web.plane
+        beyond = s[(s < 0.0) | (s > plane.length + 1e-9) | ~np.isfinite(s)]
+        if beyond.size:
+            raise ValueError(f"wanted places from 0 to {plane.length:.1f} mm, got {beyond[0]:g}")
+        thickness = self.thickness(s)
+        n = thickness[:, None] / 2.0 * seat.lobatto(self.web.survey.n.shape[-1])[0]
+        edges = {side: self._edge_rows(side, s, n, thickness) for side in SIDES}
+        y = plane.origin[1] + s * plane.s[1]
+        return [
+            Row(float(s[i]), float(y[i]), float(thickness[i]), edges["top"][i], edges["bottom"][i])
+            for i in range(len(s))
+        ]
+
+    def _edge_rows(self, side: Side, s: Array, n: Array, thickness: Array) -> list[EdgeRow]:
+        skin = web.edge(self.loft, self.web.plane, s[:, None], n, side).h
+        bedded = web.edge(self.loft, self.web.plane, s[:, None], n, side, self.depth[side](s)[:, None]).h
+        slope = seat.slope_at(self.web.cut(side), s, bedded, thickness)
+        height = seat.rest(bedded, n, slope, side)
+        gap = seat.clearance(bedded, n, height, slope, side).max(axis=1)
+        columns = (
+            skin[:, 0],
+            skin[:, -1],
+            np.degrees(web.bevel(skin[:, 0], skin[:, -1], thickness)),
+            seat.crown(skin, n, side),
+            gap,
+            height + slope * n[:, 0],
+            height + slope * n[:, -1],
+        )
+        return [EdgeRow(*map(float, row)) for row in zip(*columns, strict=True)]
+
+
+def load(path: str | Path) -> Job:
+    """The job of a wing file.
+
+    Raises
+    ------
+    WingError
+        If the file cannot be used; one line that names the file and the key.
+    """
+    return Job(wingfile.load(Path(path)))

@@ -1,0 +1,325 @@
+"""What the workshop buys: sheets, fillers, adhesives, cloths and paper, each figure with its source.
+
+Names are generic; a wing file adds its own or overrides a figure under ``[materials."name"]``.
+"""
+
+from __future__ import annotations
+
+import difflib
+from collections.abc import Mapping
+from dataclasses import dataclass, field, fields, replace
+from typing import Any, TypeVar
+
+from .units import MM_PER_INCH, Units, shown
+
+PRACTICE = "common practice"
+OWN = "the wing file"
+
+
+@dataclass(frozen=True)
+class Family:
+    """A family of sheet materials: may a hot wire touch it, and why; usual sheets of both systems, in mm."""
+
+    hot_wire: bool
+    why: str
+    sheets_mm: tuple[float, ...]
+    sheets_in: tuple[float, ...]
+
+
+@dataclass(frozen=True)
+class Foam:
+    """Sheet material for a web or a core, foam or light wood: density in kg/m^3, sheet thicknesses in mm."""
+
+    name: str
+    density: float
+    family: str
+    sheets_mm: tuple[float, ...]
+    sheets_in: tuple[float, ...]
+    hot_wire: bool
+    why: str
+    source: str = PRACTICE
+
+
+@dataclass(frozen=True)
+class Filler:
+    """A resin paste that fills gaps: density in kg/m^3 as mixed."""
+
+    name: str
+    density: float
+    source: str = PRACTICE
+
+
+@dataclass(frozen=True)
+class Adhesive:
+    """A laminating resin or glue: density in kg/m^3, cured."""
+
+    name: str
+    density: float
+    source: str = PRACTICE
+
+
+@dataclass(frozen=True)
+class Cloth:
+    """A reinforcing cloth: dry areal weight in g/m^2, density of the fibre itself in kg/m^3."""
+
+    name: str
+    areal_weight: float
+    fibre_density: float
+    source: str = PRACTICE
+
+
+@dataclass(frozen=True)
+class Paper:
+    """A sheet of paper, upright: width and height in mm."""
+
+    name: str
+    width: float
+    height: float
+    source: str
+
+
+Material = Foam | Filler | Adhesive | Cloth
+_M = TypeVar("_M", bound=Material)
+KINDS: dict[str, type[Material]] = {"foam": Foam, "filler": Filler, "adhesive": Adhesive, "cloth": Cloth}
+
+
+def _inches(*sizes: float) -> tuple[float, ...]:
+    return tuple(round(size * MM_PER_INCH, 4) for size in sizes)
+
+
+USUAL_MM = (3.0, 4.0, 5.0, 6.0, 8.0, 10.0, 12.0, 15.0, 20.0, 25.0, 30.0)
+USUAL_IN = _inches(1 / 8, 3 / 16, 1 / 4, 3 / 8, 1 / 2, 5 / 8, 3 / 4, 1)
+_ONLY = "only polystyrene and polypropylene foams are cut with a hot wire"
+_FUMES = "cut with a hot wire in moving air: its fumes are harmful too"
+
+# Sheet thicknesses and what a hot wire does to each family: common practice.
+FAMILIES: dict[str, Family] = {
+    "extruded polystyrene": Family(
+        True, _FUMES, (3, 6, 10, 20, 30, 40, 50, 60, 80, 100), _inches(1 / 4, 1 / 2, 3 / 4, 1, 1.5, 2)
+    ),
+    "expanded polystyrene": Family(
+        True, _FUMES, (10, 20, 30, 40, 50, 60, 80, 100), _inches(1 / 2, 3 / 4, 1, 1.5, 2, 3, 4)
+    ),
+    "expanded polypropylene": Family(
+        True, _FUMES, (3, 5, 6, 8, 10, 15, 20, 30, 40), _inches(1 / 8, 1 / 4, 3 / 8, 1 / 2, 3 / 4, 1, 1.5, 2)
+    ),
+    "cross-linked PVC": Family(
+        False, f"PVC foam gives off poisonous gas under a hot wire; {_ONLY}", USUAL_MM, USUAL_IN
+    ),
+    "polyurethane": Family(
+        False,
+        f"polyurethane foam gives off poisonous gas under a hot wire; {_ONLY}",
+        (5, 10, 15, 20, 25, 30, 40, 50),
+        _inches(1 / 4, 3 / 8, 1 / 2, 3 / 4, 1, 1.5, 2),
+    ),
+    "PET": Family(
+        False,
+        f"what PET foam gives off under a hot wire is harmful; {_ONLY}",
+        (5, 8, 10, 12, 15, 20, 25, 30),
+        _inches(1 / 4, 3 / 8, 1 / 2, 3 / 4, 1),
+    ),
+    "PMI": Family(
+        False,
+        f"PMI foam gives off poisonous gas under a hot wire; {_ONLY}",
+        (2, 3, 4, 5, 6, 8, 10, 12, 15, 20),
+        _inches(1 / 8, 3 / 16, 1 / 4, 3 / 8, 1 / 2, 3 / 4),
+    ),
+    "wood": Family(
+        False,
+        f"wood chars under a hot wire and can catch fire; {_ONLY}",
+        (1, 1.5, 2, 2.5, 3, 4, 5, 6, 8, 10, 12, 15, 20),
+        _inches(1 / 32, 1 / 16, 3 / 32, 1 / 8, 3 / 16, 1 / 4, 3 / 8, 1 / 2, 3 / 4),
+    ),
+    "other": Family(False, f"what this material gives off under a hot wire is not known; {_ONLY}", USUAL_MM, USUAL_IN),
+}
+
+
+def _foam(name: str, family: str, density: float, source: str = PRACTICE) -> Foam:
+    kin = FAMILIES[family]
+    return Foam(name, density, family, kin.sheets_mm, kin.sheets_in, kin.hot_wire, kin.why, source)
+
+
+# The number in a foam's name is its density in kg/m^3, in a cloth's its areal weight in g/m^2.
+_FOAMS: tuple[Foam, ...] = (
+    *(_foam(f"extruded polystyrene {d}", "extruded polystyrene", d) for d in (28, 33, 45)),
+    *(_foam(f"expanded polystyrene {d}", "expanded polystyrene", d) for d in (15, 20, 30)),
+    *(_foam(f"expanded polypropylene {d}", "expanded polypropylene", d) for d in (20, 30, 45)),
+    *(_foam(f"pvc foam {d}", "cross-linked PVC", d) for d in (48, 60, 80, 100, 130)),
+    *(_foam(f"polyurethane foam {d}", "polyurethane", d) for d in (32, 64, 96)),
+    *(_foam(f"pet foam {d}", "PET", d) for d in (80, 100)),
+    *(_foam(f"pmi foam {d}", "PMI", d) for d in (52, 75)),
+    *(_foam(f"balsa {d}", "wood", d) for d in (100, 160, 220)),
+    _foam("sitka spruce", "wood", 430),
+)
+_FILLERS = (
+    Filler("microballoon paste", 600),
+    Filler("cotton-fibre paste", 1150),
+    Filler("cotton and microballoon paste", 850),
+    Filler("silica-thickened epoxy", 1200),
+)
+_ADHESIVES = (Adhesive("laminating epoxy", 1150), Adhesive("epoxy glue", 1200))
+_CLOTHS = (
+    *(Cloth(f"glass cloth {w}", w, 2550) for w in (25, 49, 80, 105, 160, 200, 280)),
+    *(Cloth(f"carbon cloth {w}", w, 1780) for w in (93, 160, 200)),
+    *(Cloth(f"aramid cloth {w}", w, 1440) for w in (61, 110, 170)),
+)
+
+_ALL: tuple[Material, ...] = (*_FOAMS, *_FILLERS, *_ADHESIVES, *_CLOTHS)
+_USUAL = {material.name: material for material in _ALL}
+
+_ISO, _ASME = "ISO 216", "ASME Y14.1"
+PAPERS: dict[str, Paper] = {
+    paper.name: paper
+    for paper in (
+        Paper("a4", 210, 297, _ISO),
+        Paper("a3", 297, 420, _ISO),
+        Paper("a2", 420, 594, _ISO),
+        Paper("a1", 594, 841, _ISO),
+        Paper("a0", 841, 1189, _ISO),
+        Paper("letter", 215.9, 279.4, _ASME),
+        Paper("legal", 215.9, 355.6, PRACTICE),
+        Paper("tabloid", 279.4, 431.8, _ASME),
+    )
+}
+
+
+class MaterialError(ValueError):
+    """What is wrong with one figure of a wing file's material; `key` names the figure."""
+
+    def __init__(self, key: str, text: str) -> None:
+        super().__init__(text)
+        self.key = key
+
+
+@dataclass(frozen=True)
+class Stock:
+    """Everything that can be asked for by name; capitals and spacing do not matter.
+
+    Examples
+    --------
+    >>> stock = Stock().with_material("PVC foam 80", {"density": 83.0})
+    >>> stock.find("pvc foam 80", Foam).density, stock.find("pvc foam 80", Foam).hot_wire
+    (83.0, False)
+    """
+
+    materials: Mapping[str, Material] = field(default_factory=lambda: _USUAL)
+
+    def find(self, name: str, kind: type[_M]) -> _M:
+        """Material of that name and kind; ValueError with the nearest known names if there is none."""
+        found = self.materials.get(_plain(name))
+        if isinstance(found, kind):
+            return found
+        names = [known for known, material in self.materials.items() if isinstance(material, kind)]
+        got = f"{shown(name)}, which is {_a(_kind_of(found))}" if found else shown(name)
+        raise ValueError(f"a known {_kind_name(kind)}, got {got} (nearest: {_nearest(name, names)})")
+
+    def with_material(self, name: str, given: Mapping[str, Any]) -> Stock:
+        """Stock with a new material, or with figures of a known one overridden.
+
+        Parameters
+        ----------
+        name : str
+            As it stands in the wing file.
+        given : mapping
+            Only what is stated there: `kind` (needed for a new material) and any of `density` and
+            `fibre_density` in kg/m^3, `areal_weight` in g/m^2, `sheets` in mm, `family`, `hot_wire`,
+            `source`.
+
+        Raises
+        ------
+        MaterialError
+            A figure is missing, out of place or unsafe; its text says what was wanted and what was got.
+        """
+        figures = dict(given)
+        known = self.materials.get(_plain(name))
+        kind = figures.pop("kind", known and _kind_of(known))
+        if kind is None:
+            raise MaterialError("kind", f"is missing, wanted {_or(KINDS)}, as {shown(name)} is not in stock")
+        if known and kind != _kind_of(known):
+            raise MaterialError("kind", f"wanted {_kind_of(known)!r}, as stock has this name, got {kind!r}")
+        made = _overridden(known, figures) if known else _new(kind, _plain(name), figures)
+        return Stock({**self.materials, made.name: made})
+
+
+def usual_sheets(units: Units, low: float = 3.0, high: float = 20.0, foam: Foam | None = None) -> tuple[float, ...]:
+    """Sheet thicknesses in mm that shops of the mm or the inch system keep, from `low` to `high` mm.
+
+    >>> usual_sheets("in", high=10.0)
+    (3.175, 4.7625, 6.35, 9.525)
+    """
+    metric, inch = (foam.sheets_mm, foam.sheets_in) if foam else (USUAL_MM, USUAL_IN)
+    return tuple(float(size) for size in (inch if units == "in" else metric) if low <= size <= high)
+
+
+def paper(name: str) -> Paper:
+    """Find a paper by its name, capitals or not; ValueError if there is none.
+
+    >>> paper("A4").height
+    297
+    """
+    try:
+        return PAPERS[_plain(name)]
+    except KeyError:
+        raise ValueError(f"a paper size, {_or(PAPERS)}, got {shown(name)}") from None
+
+
+def _new(kind: str, name: str, figures: dict[str, Any]) -> Material:
+    """Make a material that stock does not have."""
+    needed = ("areal_weight", "fibre_density") if kind == "cloth" else ("density",)
+    for key in needed:
+        if key not in figures:
+            raise MaterialError(key, f"is missing, wanted for a new {kind}")
+    if kind == "foam":
+        return _overridden(_foam(name, figures.pop("family", "other"), figures["density"]), figures)
+    _refuse_strays(KINDS[kind], figures)
+    return KINDS[kind](name, **{"source": OWN, **figures})
+
+
+def _overridden(known: Material, figures: dict[str, Any]) -> Material:
+    """Material with some figures changed; the wing file becomes their source."""
+    _refuse_strays(type(known), figures)
+    changes = {"source": known.source if not figures else OWN, **figures}
+    if isinstance(known, Foam):
+        if figures.get("family", known.family) != known.family:
+            got = figures["family"]
+            raise MaterialError("family", f"wanted {known.family!r}, as stock has this name, got {got!r}")
+        if figures.get("hot_wire") and not FAMILIES[known.family].hot_wire:
+            raise MaterialError("hot_wire", f"wanted false, got true: {FAMILIES[known.family].why}")
+        if figures.get("hot_wire") is False and known.hot_wire:
+            changes["why"] = "the wing file says so"
+        if "sheets" in changes:
+            changes["sheets_mm"] = changes["sheets_in"] = tuple(sorted(changes.pop("sheets")))
+    return replace(known, **changes)
+
+
+def _refuse_strays(kind: type[Material], figures: Mapping[str, Any]) -> None:
+    allowed = {f.name for f in fields(kind)} | ({"sheets"} if kind is Foam else set())
+    for key in figures:
+        if key not in allowed:
+            raise MaterialError(key, f"wanted none for {_a(_kind_name(kind))}, got {shown(figures[key])}")
+
+
+def _kind_name(kind: type[object]) -> str:
+    return kind.__name__.lower()
+
+
+def _kind_of(material: Material) -> str:
+    return _kind_name(type(material))
+
+
+def _a(noun: str) -> str:
+    return f"an {noun}" if noun[0] in "aeiou" else f"a {noun}"
+
+
+def _or(names: Mapping[str, object]) -> str:
+    *most, last = (f'"{name}"' for name in names)
+    return f"{', '.join(most)} or {last}"
+
+
+def _plain(name: str) -> str:
+    return " ".join(name.lower().split())
+
+
+def _nearest(name: str, names: list[str]) -> str:
+    near = difflib.get_close_matches(_plain(name), names, n=3, cutoff=0.4) or names[:3]
+    return ", ".join(f'"{known}"' for known in near)

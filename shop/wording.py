@@ -1,0 +1,72 @@
+"""Figures as the builder reads them: in the wing file's units, with the digits that matter in a workshop."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from .units import MM_PER_INCH, Units
+
+GRAMS_PER_OUNCE = 28.349523125
+_MM2_PER_SQUARE_FOOT = (12.0 * MM_PER_INCH) ** 2
+
+
+@dataclass(frozen=True)
+class Wording:
+    """Lengths, areas and masses in words.
+
+    Examples
+    --------
+    >>> Wording("in").length(6.35), Wording("mm").length(6.35)
+    ('0.25 in', '6.35 mm')
+    """
+
+    units: Units
+
+    @property
+    def mass_unit(self) -> str:
+        """Grams, or ounces in a wing file in inches."""
+        return "oz" if self.units == "in" else "g"
+
+    def length(self, mm: float) -> str:
+        """Length with its unit, without needless noughts."""
+        return f"{self.plain(mm)} {self.units}"
+
+    def plain(self, mm: float) -> str:
+        """Length without its unit or needless noughts: 0.01 mm or 0.001 in."""
+        text = self.column(mm, 3 if self.units == "in" else 2)
+        return text.rstrip("0").rstrip(".") if "." in text else text
+
+    def column(self, mm: float, digits: int | None = None) -> str:
+        """Length without its unit, always as many digits, for a column: 0.01 mm or 0.001 in unless told otherwise."""
+        if digits is None:
+            digits = 3 if self.units == "in" else 2
+        return _tidy(f"{mm / MM_PER_INCH if self.units == 'in' else mm:.{digits}f}")
+
+    def area(self, mm2: float) -> str:
+        """Area in square metres or square feet."""
+        if self.units == "in":
+            return f"{mm2 / _MM2_PER_SQUARE_FOOT:.2f} sq ft"
+        return f"{mm2 * 1e-6:.3f} m²"
+
+    def mass(self, grams: float) -> str:
+        """Mass with its unit."""
+        return f"{self.mass_column(grams)} {self.mass_unit}"
+
+    def mass_column(self, grams: float) -> str:
+        """Mass without its unit: 0.1 g or 0.01 oz."""
+        return _tidy(f"{grams / GRAMS_PER_OUNCE:.2f}" if self.units == "in" else f"{grams:.1f}")
+
+
+def degrees(angle: float, digits: int = 1) -> str:
+    """Angle with its sign and the degree mark.
+
+    >>> degrees(4.26), degrees(-0.04), degrees(-3.0, 2)
+    ('+4.3°', '0.0°', '-3.00°')
+    """
+    text = _tidy(f"{angle:.{digits}f}")
+    return f"{text}°" if text.startswith("-") or not text.strip("0.") else f"+{text}°"
+
+
+def _tidy(text: str) -> str:
+    """`text` without the minus sign of a rounded nought."""
+    return text[1:] if text.startswith("-") and not text.strip("-0.") else text
