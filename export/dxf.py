@@ -54,15 +54,23 @@ def render(drawing: Drawing, *, wing: str = "") -> bytes:
         document.header["$MEASUREMENT"] = 1
         _add_layers(document)
         _describe(document, drawing, wing)
-        space = document.modelspace()
-        drawing.play(_DxfPen(space))
-        x0, y0, x1, y1 = drawing.bounds()
-        space.reset_extents((x0, y0, 0.0), (x1, y1, 0.0))
-        space.reset_limits((x0, y0), (x1, y1))
-        document.set_modelspace_vport(max(y1 - y0, (x1 - x0) / 2.0), ((x0 + x1) / 2.0, (y0 + y1) / 2.0))
+        drawing.play(_DxfPen(document.modelspace()))
+        _frame(document, drawing)
         stream = io.StringIO()
         document.write(stream)
     return document.encode(stream.getvalue())
+
+
+def _frame(document: ezdxf.document.Drawing, drawing: Drawing) -> None:
+    """Say how far the drawing reaches, and show all of it when the file is opened."""
+    x0, y0, x1, y1 = drawing.bounds()
+    low, high = (x0, y0, 0.0), (x1, y1, 0.0)
+    space = document.modelspace()
+    space.reset_extents(low, high)
+    space.reset_limits(low[:2], high[:2])
+    # ezdxf would leave out a corner at the origin
+    document.header["$EXTMIN"], document.header["$EXTMAX"] = low, high
+    document.set_modelspace_vport(max(y1 - y0, (x1 - x0) / 2.0), ((x0 + x1) / 2.0, (y0 + y1) / 2.0))
 
 
 def _add_layers(document: ezdxf.document.Drawing) -> None:

@@ -21,7 +21,10 @@ Floats = NDArray[np.float64]
 N = 256  # intervals per side of the shared parameter grid
 
 _GRID = np.arange(-N, N + 1) / N
-# All in parts of the chord:
+_FEWEST = 7  # points; fewer are no section
+_FEW = 20  # points; fewer leave much to guess
+
+# In parts of the chord:
 _REPEAT = 5e-5  # points closer than this are one point
 _AT_ORIGIN = 1e-4  # a file whose outline passes its origin this closely ...
 _ON_AXIS = 5e-4  # ... and whose trailing edge lies this close to its x axis keeps its own axes
@@ -29,8 +32,6 @@ _STAGGER = 5e-3  # ends of the two sides further apart than this: one of them st
 _SHORT = 0.02  # a side that stops short by no more is carried on straight
 _FOLD = 5e-4  # a side that folds back by no more is read past the fold
 _CROSSED = 0.01  # sides that cross by more are no section
-_FEWEST = 7  # points; fewer are no section
-_FEW = 20  # a file with fewer points leaves much to guess
 
 
 @dataclass(frozen=True, eq=False)

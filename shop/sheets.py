@@ -122,7 +122,7 @@ def _ticks(job: Job, view: _View, layout: Layout) -> list[Stroke]:
     last = min(view.face.top[-1, 0], view.face.bottom[-1, 0])
     places = np.arange(np.ceil(max(0.0, first) / step), np.floor(min(last, job.web.plane.length) / step) + 1) * step
     strokes = []
-    for i, row in enumerate(job.rows(places)):
+    for row in job.rows(places):
         low, high = view.face.heights(row.s)
         deep = min(TICK, 0.2 * (high - low))
         for side, at, inwards in (("top", high, -1.0), ("bottom", low, 1.0)):
@@ -131,7 +131,7 @@ def _ticks(job: Job, view: _View, layout: Layout) -> list[Stroke]:
             x, out = view.sense * row.s, view.beyond("top" if side == "top" else "bottom", row.s, 6.0)
             below = -SMALL if side == "bottom" else 0.0
             layout.write(Label(degrees(angle), x, out - inwards * 1.5 + below, SMALL, anchor="middle"))
-            if i % 2 == 0:
+            if round(row.s / step) % 2 == 0:
                 text = f"s {job.wording.plain(row.s)}"
                 layout.write(Label(text, x, out - inwards * (1.5 + _LINE * SMALL) + below, SMALL, anchor="middle"))
     return strokes
@@ -226,7 +226,8 @@ def _clear_of_datum(view: _View, s: float, share: float, height: float) -> float
 def _write_titles(job: Job, view: _View, layout: Layout, hand: Hand) -> None:
     """Title block under the root end of the face."""
     lines = [
-        (f"{job.record.name}: web blank, {view.face.name.upper()} face, {hand.upper()} hand", LARGE),
+        (job.record.name, LARGE),
+        (f"web blank, {view.face.name.upper()} face, {hand.upper()} hand", LARGE),
         *((text, PLAIN) for text in _notes(job, view.face)),
     ]
     start = view.face.bottom[0, 0]
@@ -249,7 +250,7 @@ def _notes(job: Job, face: Face) -> list[str]:
     return [
         f"{words.length(stated.thickness)} {stated.foam}, cant {degrees(np.degrees(job.cant))}, "
         f"bond line {words.length(stated.bond)}",
-        f"As seen from the {face.name}: tape it to the {face.name} face; pins through the {PIN:g} mm holes register both faces",
+        f"As seen from the {face.name}; pins through the {PIN:g} mm holes register it with the other face",
         f"{edges[stated.edge][0].upper()}{edges[stated.edge][1:]}",
         "At each tick: bevel of the skin, positive where the edge rises aft",
         f"Wing file revision {job.stamp}",

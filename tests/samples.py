@@ -37,9 +37,7 @@ def blank(long=2100.0):
     notes = ("Seen from the front", "PVC foam, 8 mm thick")
     labels += [Label(note, 100.0, 14.0 - 5.0 * i) for i, note in enumerate(notes)]
     holes = tuple(Hole(x, 5.0, 6.0) for x in (60.0, long / 2.0, long - 60.0))
-    return Drawing(
-        "blank", "Web blank, front face", "3fa9c1d2", "right", tuple(strokes), holes, tuple(labels), notes
-    )
+    return Drawing("blank", "Web blank, front face", "3fa9c1d2", "right", tuple(strokes), holes, tuple(labels), notes)
 
 
 def core():

@@ -317,13 +317,31 @@ def test_points_that_hold_no_section() -> None:
     for points, why in (
         (LOOP * [-1.0, 1.0], "x running aft from the nose, got a chord line at 180"),
         (LOOP[:, ::-1], "x running aft from the nose, got a chord line at 90"),
-        (LOOP[:101], "folds|one line|reach|turn back"),
+        (LOOP[:101], "got points that never turn back"),
         (LOOP * 1e300, "a chord between"),
         (np.full((20, 2), np.nan), "nan or infinity"),
         (np.ones(20), "7 points or more"),
     ):
         with pytest.raises(ValueError, match=f"^holds no section: wanted .*{why}"):
             from_points(points, "points")
+
+
+@settings(max_examples=60, deadline=None)
+@given(st.data())
+def test_a_spoilt_file_gives_a_section_or_one_line(data: st.DataObject) -> None:
+    text = rows(LOOP[::4])
+    for _ in range(data.draw(st.integers(1, 3))):
+        at = data.draw(st.integers(0, len(text)))
+        cut = data.draw(st.integers(0, 200))
+        text = (
+            text[:at]
+            + data.draw(st.sampled_from(["", " ", "\n", "x", ",", "-", "9", "1e99", "nan", "\0"]))
+            + text[at + cut :]
+        )
+    try:
+        assert np.all(np.isfinite(parse(text, "file").coef))
+    except ValueError as error:
+        assert re.fullmatch(r"holds no section: wanted .+, got .+", str(error))
 
 
 @pytest.mark.parametrize(("data", "got"), [(b"", "empty"), (b" \r\n", "empty"), (bytes(range(256)) * 9, "not text")])

@@ -100,9 +100,7 @@ def test_nasa_wing_two_ways(cant):
 def test_nasa_patches_have_converged():
     pytest.importorskip("OCP")
     places = Web(), np.linspace(10, 1900, 12), [-3.175, 3.175]
-    coarse, fine = (
-        np.array(kernel.reference_edges(NASA_WING, *places, grid=g)) for g in (kernel.GRID, (40, 28))
-    )
+    coarse, fine = (np.array(kernel.reference_edges(NASA_WING, *places, grid=g)) for g in (kernel.GRID, (40, 28)))
     assert_allclose(coarse, fine, atol=1e-5)
 
 

@@ -11,7 +11,8 @@ from pydantic import ValidationError
 from wrywing.geom import airfoil
 from wrywing.shop import wingfile
 from wrywing.shop.stock import Cloth, Foam
-from wrywing.shop.wingfile import Cant, WingError, load
+from wrywing.shop.values import Cant
+from wrywing.shop.wingfile import WingError, load
 
 MARSH = """\
 name  = "Marsh survey wing, outer panel"

@@ -1,0 +1,296 @@
+"""The wing file's records, one class for each table: what may be stated, in mm, degrees and grams.
+
+Each field carries the description that an error quotes when it is missing or of the wrong type, and from which the
+table of keys is made.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from typing import Annotated, Literal, Self
+
+from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationInfo, model_validator
+
+from .units import MM_PER_INCH, Units
+from .values import (
+    Areal,
+    Cant,
+    Density,
+    Inside,
+    KeyedError,
+    Length,
+    NotNegative,
+    OnChord,
+    OneOrRows,
+    Positive,
+    Text,
+    Tilt,
+    Twist,
+    Where,
+    file_units,
+    fit,
+    read_angle,
+    read_cant,
+    read_family,
+    read_fraction,
+    read_mass,
+)
+
+
+class _Record(BaseModel):
+    model_config = ConfigDict(frozen=True, extra="forbid")
+
+
+def _said(length: float, units: Units) -> str:
+    """Length in mm as an error gives it, in the file's units."""
+    return f"{length / MM_PER_INCH:.6g} in" if units == "in" else f"{length:.6g} mm"
+
+
+def _ascending(places: Iterable[tuple[Where, float]], units: Units) -> None:
+    """Raise a KeyedError at the first y that is not above the one before it."""
+    before = -float("inf")
+    for where, y in places:
+        if y <= before:
+            raise KeyedError(where, f"wanted y above the one before, {_said(before, units)}, got {_said(y, units)}")
+        before = y
+
+
+class Station(_Record):
+    """One section of the wing, where it stands and how far it is turned."""
+
+    y: NotNegative = Field(description="the distance out along the span from the panel's origin, a length")
+    chord: Positive = Field(description="the section's chord, a length above 0")
+    le: Length = Field(
+        default=0.0,
+        description="how far the leading edge is aft of the panel's origin, before washout, a length",
+    )
+    z: Length = Field(default=0.0, description="the height of the twist axis, a length")
+    airfoil: Text = Field(description='the section: "naca 2412" or other 4 or 5 digits, or a file of coordinates')
+    washout: Twist | None = Field(
+        default=None, description="the washout, nose down positive, in degrees from -60 to 60"
+    )
+
+
+class Washout(_Record):
+    """How the washout runs from station to station."""
+
+    law: Literal["smooth", "straight", "power", "table"] = Field(
+        default="smooth",
+        description='"smooth" or "straight" through the stations, "power" from root to tip, or "table"',
+    )
+    exponent: Annotated[
+        float | None,
+        BeforeValidator(fit(read_fraction, "a number from 1 to 20", lambda v: 1 <= v <= 20)),
+    ] = Field(default=None, description='the exponent of law "power", a number from 1 to 20')
+    points: Annotated[tuple[tuple[Length, Twist], ...], Field(min_length=2)] | None = Field(
+        default=None,
+        description='the rows of law "table", two or more [y, degrees], y ascending over all stations',
+    )
+
+    @model_validator(mode="after")
+    def _law(self, info: ValidationInfo) -> Self:
+        for key, law in (("exponent", "power"), ("points", "table")):
+            given = getattr(self, key) is not None
+            if given and self.law != law:
+                raise KeyedError((key,), f'wanted only with law = "{law}", got law = "{self.law}"')
+            if self.law == law and not given:
+                raise KeyedError((key,), f"is missing, wanted {type(self).model_fields[key].description}")
+        places = ((("points", i), row[0]) for i, row in enumerate(self.points or ()))
+        _ascending(places, file_units(info))
+        return self
+
+
+class Wing(_Record):
+    """The outer shape of one panel, as a right-hand one."""
+
+    twist_axis: OnChord = Field(default=0.25, description="the chord fraction each section turns about, from 0 to 1")
+    planform: Literal["straight", "smooth"] = Field(
+        default="straight", description='how chord, le and z run between stations: "straight" or "smooth"'
+    )
+    stations: tuple[Station, ...] = Field(
+        min_length=2, description="the stations, two or more [[wing.stations]], root outwards"
+    )
+    washout: Washout = Field(
+        default=Washout(), description="how the washout runs from station to station, a table [wing.washout]"
+    )
+
+    @model_validator(mode="after")
+    def _outwards(self, info: ValidationInfo) -> Self:
+        places = ((("stations", i, "y"), station.y) for i, station in enumerate(self.stations))
+        _ascending(places, file_units(info))
+        return self
+
+    @model_validator(mode="after")
+    def _washouts(self, info: ValidationInfo) -> Self:
+        law, last = self.washout.law, len(self.stations) - 1
+        for i, station in enumerate(self.stations):
+            needed = law in ("smooth", "straight") or (law == "power" and i in (0, last))
+            if needed and station.washout is None:
+                places = "the first and last station" if law == "power" else "every station"
+                raise KeyedError(
+                    ("stations", i, "washout"),
+                    f'is missing, wanted degrees at {places} with washout law "{law}"',
+                )
+            if not needed and station.washout is not None:
+                raise KeyedError(
+                    ("stations", i, "washout"),
+                    f'wanted none here with washout law "{law}", got {station.washout:g}',
+                )
+        if points := self.washout.points:
+            _covers(points, (self.stations[0].y, self.stations[-1].y), "stations", ("washout", "points"), info)
+        return self
+
+
+def _covers(
+    rows: tuple[tuple[float, float], ...],
+    span: tuple[float, float],
+    what: str,
+    where: Where,
+    info: ValidationInfo,
+) -> None:
+    """Raise a KeyedError if rows [y, value] stop short of the span."""
+    low, high, first, last = (_said(y, file_units(info)) for y in (*span, rows[0][0], rows[-1][0]))
+    if rows[0][0] > span[0] or rows[-1][0] < span[1]:
+        raise KeyedError(where, f"wanted rows that cover the {what}, {low} to {high}, got {first} to {last}")
+
+
+class Skin(_Record):
+    """The skin between the outer surface and the web."""
+
+    thickness: OneOrRows = Field(
+        description="the skin's thickness, a length above 0, or two or more rows [y, thickness]"
+    )
+
+    @model_validator(mode="after")
+    def _outwards(self, info: ValidationInfo) -> Self:
+        if not isinstance(self.thickness, float):
+            places = ((("thickness", i), row[0]) for i, row in enumerate(self.thickness))
+            _ascending(places, file_units(info))
+        return self
+
+
+class Facing(_Record):
+    """Cloth laid on both faces of the web."""
+
+    cloth: Text | None = Field(default=None, description="the cloth's name in stock")
+    areal_weight: Areal | None = Field(
+        default=None, description="in place of a cloth: dry areal weight of one layer, in g/m^2 where bare"
+    )
+    layers: int = Field(strict=True, ge=1, le=100, description="the layers on each face, a whole number of 1 or more")
+    resin_fraction: Annotated[
+        float, BeforeValidator(fit(read_fraction, "a fraction from 0 to 0.95", lambda v: 0 <= v <= 0.95))
+    ] = Field(default=0.5, description="the resin's share of the facing's mass, from 0 to 0.95")
+
+    @model_validator(mode="after")
+    def _one_weight(self) -> Self:
+        if self.cloth is None and self.areal_weight is None:
+            raise KeyedError(("cloth",), "is missing, wanted a cloth, or areal_weight in its place")
+        if self.cloth is not None and self.areal_weight is not None:
+            raise KeyedError(("areal_weight",), f"wanted none beside a cloth, got {self.areal_weight:g}")
+        return self
+
+
+class Web(_Record):
+    """The shear web: a flat sheet between upper and lower skin."""
+
+    ends: tuple[Length, Length] = Field(description="the ribs [y1, y2] where the web starts and stops, lengths")
+    line: tuple[Inside, Inside] = Field(
+        description="the chord fractions [f1, f2] of the web line at its two ends, between 0 and 1"
+    )
+    thickness: Positive = Field(description="the web sheet's thickness, a length above 0")
+    cant: Annotated[Cant, BeforeValidator(read_cant)] = Field(
+        default=Cant("angle", 0.0),
+        description='degrees, top leaning aft positive; or "square at Y", "least filler", "least gap"',
+    )
+    cant_limit: Tilt = Field(
+        default=15.0,
+        description="how far a search for the best cant may tip the web either way, in degrees up to 45",
+    )
+    edge: Literal["square", "set bevel", "full bevel"] = Field(
+        default="full bevel", description='how both long edges are cut: "square", "set bevel" or "full bevel"'
+    )
+    runs: int = Field(
+        default=1,
+        strict=True,
+        ge=1,
+        description="the saw settings along each edge with a set bevel, a whole number of 1 or more",
+    )
+    angle_step: Tilt = Field(
+        default=0.5, description="the step to which the saw's angle can be set, in degrees up to 45"
+    )
+    aim: Literal["filler", "gap"] = Field(
+        default="filler", description='what a set bevel\'s runs make least: "filler" or the largest "gap"'
+    )
+    bond: NotNegative = Field(default=0.0, description="the bond line between web and skin, a length of 0 or more")
+    foam: Text = Field(description="the web sheet's material, a foam in stock")
+    filler: Text = Field(description="what fills the gaps, a filler in stock")
+    adhesive: Text = Field(default="laminating epoxy", description="what bonds the web, an adhesive in stock")
+    facing: Facing | None = Field(default=None, description="the cloth on both faces of the web, a table [web.facing]")
+
+    @model_validator(mode="after")
+    def _outwards(self, info: ValidationInfo) -> Self:
+        _ascending(((("ends", i), y) for i, y in enumerate(self.ends)), file_units(info))
+        return self
+
+
+class Limits(_Record):
+    """What a choice of web must meet."""
+
+    max_gap: NotNegative | None = Field(default=None, description="the largest gap to be filled, a length")
+    max_bevel: Annotated[
+        float | None,
+        BeforeValidator(fit(read_angle, "an angle from 0 to 45 degrees", lambda v: 0 <= v <= 45)),
+    ] = Field(default=None, description="the steepest bevel the workshop can cut, in degrees up to 45")
+    min_thickness: NotNegative | None = Field(default=None, description="the thinnest web sheet, a length")
+    max_mass: Annotated[float | None, BeforeValidator(fit(read_mass, "a mass above 0", lambda v: v > 0))] = Field(
+        default=None, description="the heaviest web, filler and bond line included, in grams where bare"
+    )
+
+
+class Material(_Record):
+    """A material of the workshop's own, or figures that override those in stock."""
+
+    kind: Literal["foam", "filler", "adhesive", "cloth"] | None = Field(
+        default=None, description='for a new material: "foam", "filler", "adhesive" or "cloth"'
+    )
+    density: Density | None = Field(default=None, description="the density, in kg/m^3 where bare")
+    areal_weight: Areal | None = Field(default=None, description="a cloth's dry areal weight, in g/m^2 where bare")
+    fibre_density: Density | None = Field(
+        default=None, description="the density of a cloth's fibre, in kg/m^3 where bare"
+    )
+    family: Annotated[str | None, BeforeValidator(read_family)] = Field(
+        default=None, description="a new foam's family, which says whether a hot wire may touch it"
+    )
+    sheets: Annotated[tuple[Positive, ...], Field(min_length=1)] | None = Field(
+        default=None, description="the sheet thicknesses a foam comes in, one or more lengths in a list"
+    )
+    hot_wire: bool | None = Field(default=None, strict=True, description="true or false: may a hot wire touch the foam")
+    source: Text | None = Field(default=None, description="where the figures come from, a line of text")
+
+
+class WingFile(_Record):
+    """A whole wing file, in mm, degrees and grams."""
+
+    name: Text = Field(description="what the wing is called, a line of text in quotes")
+    units: Units = Field(default="mm", description='what a bare length means: "mm" or "in"')
+    wing: Wing = Field(description="the panel's outer shape, a table [wing]")
+    skin: Skin = Field(description="the skin, a table [skin]")
+    web: Web = Field(description="the shear web, a table [web]")
+    limits: Limits | None = Field(default=None, description="what a choice of web must meet, a table [limits]")
+    materials: dict[str, Material] = Field(
+        default={}, description='materials added or overridden, tables [materials."name"]'
+    )
+
+    @model_validator(mode="after")
+    def _web_inside(self, info: ValidationInfo) -> Self:
+        low, high = self.wing.stations[0].y, self.wing.stations[-1].y
+        places: list[tuple[Where, float]] = [(("web", "ends", i), y) for i, y in enumerate(self.web.ends)]
+        if self.web.cant.kind == "square" and self.web.cant.value is not None:
+            places.append((("web", "cant"), self.web.cant.value))
+        for where, y in places:
+            if not low <= y <= high:
+                limits = f"{_said(low, self.units)} to {_said(high, self.units)}"
+                raise KeyedError(where, f"wanted y within the stations, {limits}, got {_said(y, self.units)}")
+        if not isinstance(self.skin.thickness, float):
+            _covers(self.skin.thickness, self.web.ends, "web's ends", ("skin", "thickness"), info)
+        return self

@@ -1,0 +1,292 @@
+"""Printed sheets: measured with another library, cut along their marks and put together again."""
+
+import io
+import re
+from collections import deque
+from itertools import combinations
+
+import numpy as np
+import pdfplumber
+import pytest
+import shapely
+from hypothesis import given, settings
+from hypothesis import strategies as st
+from samples import A4, LETTER, WING, Sheet, blank, card, core
+
+from wrywing.export import pdf, tiles
+from wrywing.geom.drawing import Drawing, Label, Role, Stroke
+
+MM = 25.4 / 72.0  # published: ISO 32000-1, 8.3.2.3, user space unit
+GLUE = 10.0
+UPRIGHT = Drawing(
+    "rib", "Rib 7", "3fa9c1d2", "left", (Stroke(core().strokes[0].points[:, ::-1], Role.CUT_OUTSIDE, True),)
+)
+CASES = {
+    "blank on a4": (blank(), A4, "mm"),
+    "blank on letter": (blank().mirrored("left"), LETTER, "in"),
+    "core on a4": (core(), A4, "mm"),
+    "rib on letter": (UPRIGHT, LETTER, "in"),
+    "card on a4": (card(), A4, "mm"),
+    "blank on a roll": (blank(), Sheet("roll", 420.0, 2400.0), "mm"),
+}
+
+
+class Page:
+    """One page's lines and boxes in mm from its lower left corner."""
+
+    def __init__(self, page):
+        self.page = page
+        self.size = np.array([page.width, page.height], dtype=float) * MM
+        self.lines, self.widths, self.colours = [], [], []
+        for mark in page.lines + page.curves + [r for r in page.rects if r["stroke"]]:
+            pts = np.array(mark["pts"]) * MM * [1.0, -1.0] + [0.0, self.size[1]]
+            if mark["object_type"] != "line" and mark["path"][-1][0] == "h":
+                pts = np.vstack([pts, pts[:1]])
+            self.lines.append(shapely.LineString(pts))
+            self.widths.append(mark["linewidth"])
+            self.colours.append(tuple(mark["stroking_color"]))
+        self.blocks = [self.box(r) for r in page.rects if r["fill"] and not r["stroke"]]
+        self.text = page.extract_text()
+
+    def box(self, thing):
+        return shapely.box(*(np.array([thing["x0"], thing["y0"], thing["x1"], thing["y1"]]) * MM))
+
+    def outline(self):
+        """Lines of the widest pen in black: the outside cut."""
+        return shapely.union_all(
+            [s for s, w, c in zip(self.lines, self.widths, self.colours, strict=True) if w == 0.35 and not any(c)]
+        )
+
+    def furniture(self):
+        """Fine lines in black or grey that are not the drawing's."""
+        greys = {(round(k / 255, 3),) * 3 for k in (0, 80, 176)}
+        return [
+            s
+            for s, w, c in zip(self.lines, self.widths, self.colours, strict=True)
+            if w < 0.3 and tuple(np.round(c, 3)) in greys
+        ]
+
+    def window(self):
+        """The largest rectangle that furniture lines bound: the frame."""
+        long = sorted(self.furniture(), key=lambda s: -s.length)
+        upright = [s for s in long if s.bounds[2] - s.bounds[0] < 1e-6][:2]
+        level = [s for s in long if s.bounds[3] - s.bounds[1] < 1e-6][:2]
+        return shapely.union_all(upright + level).bounds
+
+    def crosses(self):
+        """Centres of the register marks outside the window."""
+        short = [s for s in self.furniture() if abs(s.length - 5.0) < 1e-3]
+        return [
+            np.array(a.centroid.coords[0]) for a, b in combinations(short, 2) if a.centroid.distance(b.centroid) < 1e-3
+        ]
+
+    def seams(self):
+        """Where it is cut (left, top) and where neighbours come to lie (right, bottom), from its crosses."""
+        x0, y0, x1, y1 = self.window()
+        found = self.crosses()
+        above, below = (sorted(x for x, y in found if (y > y1) == up and x0 - 1 < x < x1) for up in (True, False))
+        assert np.allclose(above, below, atol=1e-3)
+        left, right = (sorted(y for x, y in found if (x > x1) == far and not x0 - 1 < x < x1) for far in (False, True))
+        assert np.allclose(left, right, atol=1e-3)
+        middle = (x0 + x1) / 2.0, (y0 + y1) / 2.0
+        return {
+            "left": next((x for x in above if x < middle[0]), None),
+            "right": next((x for x in above if x > middle[0]), None),
+            "top": next((y for y in left if y > middle[1]), None),
+            "bottom": next((y for y in left if y < middle[1]), None),
+        }
+
+    def place(self):
+        """Row and column, as the sheet's mark says."""
+        row, column = re.search(r"\b([A-Z])(\d+)$", self.text, re.MULTILINE).groups()
+        return ord(row) - ord("A"), int(column) - 1
+
+
+@pytest.fixture(scope="module", params=CASES)
+def case(request):
+    drawing, paper, units = CASES[request.param]
+    data = pdf.render(drawing, paper, wing=WING, units=units)
+    with pdfplumber.open(io.BytesIO(data)) as file:
+        yield drawing, paper, units, file, [Page(p) for p in file.pages]
+
+
+def test_asks_not_to_be_scaled(case):
+    # published: ISO 32000-1, 12.2
+    catalog = pdfplumber.utils.resolve(case[3].doc.catalog)
+    assert pdfplumber.utils.resolve(catalog["ViewerPreferences"])["PrintScaling"].name == "None"
+
+
+def test_pages_are_the_paper(case):
+    _, paper, _, _, pages = case
+    for page in pages:
+        assert sorted(page.size) == pytest.approx(sorted((paper.width, paper.height)), abs=0.001)
+
+
+def test_bars_measure_true_on_every_page(case):
+    _, _, units, _, pages = case
+    length, words = {"mm": (100.0, "100 mm"), "in": (4 * 25.4, "4 in")}[units]
+    for page in pages:
+        for axis in (0, 1):
+            bars = [
+                s
+                for s in page.furniture()
+                if s.length > 99.0
+                and abs(s.length - (s.bounds[2 + axis] - s.bounds[axis])) < 1e-6
+                and not any(s.distance(shapely.Point(c)) < 0.01 for c in shapely.box(*page.window()).exterior.coords)
+            ]
+            assert [s.length for s in bars] == pytest.approx([length], abs=0.05)
+            ends = [
+                s for s in page.furniture() if s.length == pytest.approx(3.0, abs=0.01) and s.distance(bars[0]) < 0.01
+            ]
+            assert abs(ends[0].centroid.coords[0][axis] - ends[1].centroid.coords[0][axis]) == pytest.approx(
+                length, abs=0.05
+            )
+        assert words in page.text
+
+
+def test_every_page_says_what_it_belongs_to(case):
+    drawing, _, _, file, pages = case
+    hand = {"right": "right-hand panel", "left": "left-hand panel", "both": "either hand"}[drawing.hand]
+    for number, page in enumerate(pages, start=1):
+        for words in (
+            "Mowe survey wing, outer panel",
+            drawing.title,
+            hand,
+            drawing.stamp,
+            f"page {number} of {len(pages)}",
+            "Print at 100 %, unscaled",
+        ):
+            assert words in page.text
+    assert drawing.title in file.metadata["Title"]
+    assert drawing.stamp in file.metadata["Subject"]
+
+
+def test_no_page_is_blank_and_none_repeats_another(case):
+    pages = case[4]
+    assert all(page.outline().length > 1.0 for page in pages)
+    assert len({page.place() for page in pages}) == len(pages)
+
+
+def test_sheets_cut_along_their_marks_give_the_outline(case):
+    drawing, _, _, _, pages = case
+    by_place = {page.place(): page for page in pages}
+    at = {min(by_place): np.zeros(2)}
+    queue = deque(at)
+    while queue:
+        row, column = queue.popleft()
+        here = by_place[row, column].seams()
+        for there, mine, other, axis in (
+            ((row, column + 1), "right", "left", 0),
+            ((row, column - 1), "left", "right", 0),
+            ((row + 1, column), "bottom", "top", 1),
+            ((row - 1, column), "top", "bottom", 1),
+        ):
+            assert (here[mine] is not None) == (there in by_place)
+            if there in by_place and there not in at:
+                step = np.zeros(2)
+                step[axis] = here[mine] - by_place[there].seams()[other]
+                at[there] = at[row, column] + step
+                queue.append(there)
+    assert len(at) == len(pages)
+    joined = shapely.union_all(
+        [shapely.transform(showing(page), lambda p, place=place: p + at[place]) for place, page in by_place.items()]
+    )
+    ring = shapely.LinearRing(drawing.strokes[0].points)
+    shift = np.array(ring.bounds[:2]) - joined.bounds[:2]
+    joined = shapely.transform(joined, lambda p: p + shift)
+    assert off(ring, joined) < 0.05
+    assert off(joined, ring) < 0.05
+    assert joined.length == pytest.approx(ring.length, abs=0.05)
+
+
+def showing(page):
+    """What is left to see of a page's outline when it is trimmed and its neighbours lie on its glue strips."""
+    seams = page.seams()
+    x0, y0, x1, y1 = page.window()
+    trim = [seams["left"] or x0, seams["bottom"] or y0, seams["right"] or x1, seams["top"] or y1]
+    return page.outline().intersection(shapely.box(*trim))
+
+
+def off(line, other):
+    """Largest distance from points of `line`, a millimetre apart, to `other`."""
+    points = shapely.points(shapely.get_coordinates(shapely.segmentize(line, 1.0)))
+    return shapely.distance(points, other).max()
+
+
+def test_furniture_stays_clear(case):
+    pages = case[4]
+    for page in pages:
+        window = shapely.box(*page.window())
+        lines = [s for s in page.furniture() if s.distance(window.exterior) > 0.05 or s.length < 2.0]
+        inner = [s for s in page.furniture() if abs(s.length - 4.0) < 1e-3]
+        assert all(s.distance(page.outline()) > 2.0 for s in inner)
+        outside = [s for s in lines if s not in inner]
+        words = [page.box(w) for w in page.page.extract_words(keep_blank_chars=True) if w["upright"]]
+        words += [page.box(c) for c in page.page.chars if not c["upright"]]
+        words = [w for w in words if not window.contains(w)]
+        sheet = shapely.box(8.0, 8.0, *(page.size - 8.0))
+        for thing in outside + page.blocks + words:
+            assert window.buffer(-0.01).disjoint(thing)
+            assert sheet.buffer(0.15).covers(thing)
+        rules = [s for s in outside if s.length > 0.1]
+        for word in words:
+            assert all(word.disjoint(line) for line in rules + page.blocks)
+        flat = [w for w in words if w.bounds[2] - w.bounds[0] > 8.0]
+        assert all(a.disjoint(b) for a, b in combinations(flat, 2))
+
+
+def test_text_and_lines_are_large_enough(case):
+    for page in case[4]:
+        assert min(page.widths) >= 0.2
+        # Helvetica's capitals are 0.718 of its size (published: Adobe Core 14 metrics, from memory)
+        assert min(c["size"] for c in page.page.chars) * MM * 0.718 >= 2.2 - 1e-3
+
+
+def test_labels_can_be_searched_where_they_are_drawn():
+    drawing = card()
+    with pdfplumber.open(io.BytesIO(pdf.render(drawing, A4))) as file:
+        page = Page(file.pages[0])
+        assert drawing.labels[0].text in page.text
+        word = file.pages[0].search(re.escape(drawing.labels[0].text))[0]
+        (x, y), ring = page.outline().bounds[:2], drawing.strokes[0].points
+        x0, _, x1, _ = drawing.labels[0].box().bounds
+        shift = x - ring[:, 0].min()
+        assert word["x0"] * MM - shift == pytest.approx(x0, abs=0.1)
+        assert word["x1"] * MM - shift == pytest.approx(x1, abs=0.1)
+
+
+def test_too_small_a_paper_is_refused():
+    with pytest.raises(ValueError, match=r"^paper card: wanted at least \S+ x \S+ mm, got 105 x 148 mm$"):
+        pdf.render(card(), Sheet("card", 105.0, 148.0))
+
+
+def test_fewest_pages():
+    counts = {}
+    for paper in (A4, LETTER):
+        with pdfplumber.open(io.BytesIO(pdf.render(blank(), paper))) as file:
+            counts[paper.name] = len(file.pages)
+    # 2102 mm in steps of 256 mm (A4 sideways) or 238.4 mm, and one glue strip
+    assert counts == {"a4": 9, "letter": 9}
+    with pdfplumber.open(io.BytesIO(pdf.render(card(), A4))) as file:
+        assert len(file.pages) == 1
+
+
+LINES = st.lists(
+    st.tuples(st.floats(-900, 900), st.floats(-900, 900), st.floats(-300, 300), st.floats(-300, 300)),
+    min_size=1,
+    max_size=6,
+)
+
+
+@settings(max_examples=40, deadline=None)
+@given(LINES)
+def test_whatever_is_drawn_shows_somewhere_and_every_sheet_shows_something(ends):
+    shapes = np.array([shapely.LineString([(x, y), (x + dx, y + dy + 1.0)]) for x, y, dx, dy in ends], dtype=object)
+    layout = tiles.plan(shapes, A4, margins=(15.0, 30.0, 15.0, 15.0), least=(50.0, 50.0))
+    shown = []
+    for tile in layout.tiles:
+        parts = [shapely.LineString(p) for _, parts in tiles.clip(shapes, tile.window) for p in parts]
+        assert parts
+        shown += parts
+    missed = shapely.union_all(shapes).difference(shapely.union_all(shown).buffer(0.005))
+    assert missed.length < 0.05
