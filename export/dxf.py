@@ -56,6 +56,8 @@ def render(drawing: Drawing, *, wing: str = "") -> bytes:
         _describe(document, drawing, wing)
         drawing.play(_DxfPen(document.modelspace()))
         _frame(document, drawing)
+        for kind in sorted(document.entitydb.dxf_types_in_use()):  # ezdxf would take them in a set's order
+            document.classes.add_class(kind)
         stream = io.StringIO()
         document.write(stream)
     return document.encode(stream.getvalue())

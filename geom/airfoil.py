@@ -40,7 +40,7 @@ class Section:
 
     t < 0 is the lower side, t = 0 the foremost point, t > 0 the upper side. The chord fraction is
     p(t) = nose + (1 - nose) t**2 on both sides; q(t), the height over the chord line, is a piecewise cubic
-    (Hermite) on the uniform grid t = -1, -1 + 1/N, ... 1.
+    of continuous slope on the uniform grid t = -1, -1 + 1/N, ... 1.
 
     Attributes
     ----------
@@ -278,7 +278,7 @@ def naca(code: str) -> Section:
     """Section of a NACA 4- or 5-digit code: "2412", "0012", "23012", "23112" (reflexed).
 
     Thickness by NACA Report 460 (open trailing edge, last coefficient -0.1015), laid off square to the mean
-    line; mean lines as in `mean_line`. The section's cubics stay within 1e-8 of the chord of these formulas.
+    line; mean lines as in `mean_line`. The section's cubics stay within about 1e-8 chord of these formulas.
     Where the formulas break, at the mean line's joint, they round it off: by 1e-7 for 2412, by 2e-6 for 4424.
 
     Raises
@@ -374,7 +374,7 @@ def from_points(points: ArrayLike, name: str) -> Section:
 
 def _tidy(points: Floats) -> Floats:
     """Points from the lower trailing edge round the nose to the upper one, about 1 long, each once."""
-    if points.ndim != 2 or points.shape[1] != 2 or len(points) < _FEWEST:
+    if len(points) < _FEWEST:
         raise _no_section(f"{_FEWEST} points or more", f"{len(points)}")
     if not np.all(np.isfinite(points)):
         raise _no_section("plain numbers", "nan or infinity among them")
@@ -447,8 +447,8 @@ def _framed(points: Floats) -> tuple[Floats, float]:
     chord = float(np.hypot(*(tail - start)))
     cos, sin = (tail - start) / chord
     turn = float(np.degrees(np.arctan2(sin, cos)))
-    if abs(turn) > 45.0:
-        raise _no_section("x running aft from the nose", f"a chord line at {abs(turn):.0f} degrees")
+    if abs(turn) > 30.0:
+        raise _no_section("x running aft from the nose, within 30 degrees", f"a chord line at {abs(turn):.0f} degrees")
     return (points - start) @ np.array([[cos, -sin], [sin, cos]]) / chord, turn
 
 

@@ -3,7 +3,6 @@
 from dataclasses import dataclass
 
 import numpy as np
-
 from wrywing.geom.drawing import Drawing, Hole, Label, Role, Stroke
 
 WING = "Möwe survey wing, outer panel"

@@ -246,7 +246,7 @@ def test_flat_sides_stay_flat() -> None:
 
 
 @settings(max_examples=20, deadline=None)
-@given(st.floats(-40, 40), st.floats(0.01, 3000), st.floats(-5, 5), st.floats(-5, 5))
+@given(st.floats(-29, 29), st.floats(0.01, 3000), st.floats(-5, 5), st.floats(-5, 5))
 def test_drawn_anywhere_at_any_size(degrees: float, size: float, dx: float, dy: float) -> None:
     # Off its own axes an outline is laid on its chord line, wherever and however large it was drawn.
     drawn = np.add(LOOP, 2.0)
@@ -315,12 +315,12 @@ def test_what_holds_no_section(text: str, why: str) -> None:
 
 def test_points_that_hold_no_section() -> None:
     for points, why in (
-        (LOOP * [-1.0, 1.0], "x running aft from the nose, got a chord line at 180"),
-        (LOOP[:, ::-1], "x running aft from the nose, got a chord line at 90"),
+        (LOOP * [-1.0, 1.0], "x running aft from the nose, within 30 degrees, got a chord line at 180"),
+        (LOOP @ [[0.8, 0.6], [-0.6, 0.8]] + 1.0, "got a chord line at 37 degrees"),
         (LOOP[:101], "got points that never turn back"),
         (LOOP * 1e300, "a chord between"),
         (np.full((20, 2), np.nan), "nan or infinity"),
-        (np.ones(20), "7 points or more"),
+        (LOOP[:6], "7 points or more, got 6"),
     ):
         with pytest.raises(ValueError, match=f"^holds no section: wanted .*{why}"):
             from_points(points, "points")
@@ -339,9 +339,10 @@ def test_a_spoilt_file_gives_a_section_or_one_line(data: st.DataObject) -> None:
             + text[at + cut :]
         )
     try:
-        assert np.all(np.isfinite(parse(text, "file").coef))
+        said = None if np.all(np.isfinite(parse(text, "file").coef)) else "not finite"
     except ValueError as error:
-        assert re.fullmatch(r"holds no section: wanted .+, got .+", str(error))
+        said = str(error)
+    assert said is None or re.fullmatch(r"holds no section: wanted .+, got .+", said)
 
 
 @pytest.mark.parametrize(("data", "got"), [(b"", "empty"), (b" \r\n", "empty"), (bytes(range(256)) * 9, "not text")])

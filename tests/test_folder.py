@@ -6,7 +6,6 @@ import os
 from pathlib import Path
 
 import pytest
-
 from wrywing.export import folder
 from wrywing.export.folder import FolderError
 
@@ -37,7 +36,7 @@ def test_manifest_says_what_was_written(tmp_path):
     }
     assert manifest["files"][0].keys() == {"path", "format", "drawing", "hand", "sha256"}
     assert seen(out) == OLD
-    assert os.listdir(out.parent) == ["out"]
+    assert list(out.parent.iterdir()) == [out]
 
 
 def test_next_run_replaces_its_own_and_leaves_the_users(tmp_path):
@@ -84,7 +83,7 @@ def test_a_manifest_cannot_reach_outside(tmp_path, listed):
 def test_a_file_in_place_of_the_folder(tmp_path):
     (tmp_path / "out").write_bytes(b"mine")
     for place in (tmp_path / "out", tmp_path / "out" / "deeper"):
-        with pytest.raises(FolderError, match="wanted a folder.*, got a file"):
+        with pytest.raises(FolderError, match=r"wanted a folder.*, got a file"):
             put(place, NEW)
     assert seen(tmp_path) == {"out": b"mine"}
 

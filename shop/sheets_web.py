@@ -1,0 +1,252 @@
+"""The web blank on paper: each face as one looks at it, with its marks and lettering."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+import shapely
+from numpy.typing import NDArray
+
+from ..geom import blank, web
+from ..geom.blank import Face
+from ..geom.drawing import Drawing, Hand, Hole, Label, Role, Stroke, thin
+from ..geom.web import Side
+from .job import Job
+from .layout import Layout, Spot
+from .units import MM_PER_INCH
+from .wording import degrees
+
+Array = NDArray[np.float64]
+
+PIN = 3.0  # mm, diameter of the register holes
+TICK = 4.0
+SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+_LINE = 1.7  # line spacing, in heights
+
+
+def web_blank(job: Job, hand: Hand = "right") -> list[Drawing]:
+    """Front and rear face of the web blank, each as one looks at it, to be taped to its own side.
+
+    The front face is seen from the front, so that s runs to the left on a right-hand panel.
+    """
+    return [_face_sheet(job, face, hand) for face in job.web.faces]
+
+
+@dataclass(frozen=True)
+class _View:
+    """A face as it is looked at: x on the sheet is s, or -s seen from the front."""
+
+    face: Face
+    sense: float
+
+    def on(self, points: Array) -> Array:
+        return np.asarray(points * [self.sense, 1.0])
+
+    def edge(self, side: Side) -> Array:
+        return self.face.top if side == "top" else self.face.bottom
+
+    def h(self, side: Side, s: float) -> float:
+        return self.face.heights(s)[1 if side == "top" else 0]
+
+    def beyond(self, side: Side, s: float, half: float) -> float:
+        """Outermost h of an edge within `half` of s, where lettering clears it."""
+        line = self.edge(side)
+        near = line[(line[:, 0] > s - half) & (line[:, 0] < s + half), 1]
+        ends = [self.h(side, s - half), self.h(side, s + half)]
+        return float(np.max([*near, *ends]) if side == "top" else np.min([*near, *ends]))
+
+
+def _face_sheet(job: Job, face: Face, hand: Hand) -> Drawing:
+    view = _View(face, -1.0 if face.name == "front" else 1.0)
+    layout = Layout()
+    outline = [thin(view.on(line)) for line in (face.bottom, face.top[::-1])]
+    strokes = [Stroke(np.concatenate(outline), Role.CUT_OUTSIDE, closed=True)]
+    inside = shapely.Polygon(strokes[0].points)
+    layout.keep_clear(inside.exterior)
+    strokes += _datum(view, inside)
+    strokes += _ribs(job, view)
+    strokes += _ticks(job, view, layout)
+    strokes += _saw_marks(job, view, layout)
+    for stroke in strokes[1:]:
+        layout.keep_clear(shapely.LineString(stroke.points))
+    places = view.on(blank.register_places(*job.web.faces))
+    holes = tuple(Hole(float(x), float(y), PIN) for x, y in places)
+    for hole in holes:
+        layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(PIN / 2.0 + 0.5))
+    strokes += _directions(view, layout, inside)
+    _write_inside(job, view, layout, inside, hand)
+    _write_titles(job, view, layout, hand)
+    drawing = Drawing(
+        name=f"web-{face.name}",
+        title=f"Web blank, {face.name} face",
+        stamp=job.stamp,
+        strokes=tuple(strokes),
+        holes=holes,
+        labels=tuple(layout.labels),
+        notes=tuple(_notes(job, face)),
+    )
+    return drawing if hand == "right" else drawing.mirrored(hand)
+
+
+def _datum(view: _View, inside: shapely.Polygon) -> list[Stroke]:
+    """The web line, wherever it runs inside the face."""
+    x0, _, x1, _ = inside.bounds
+    shown = inside.intersection(shapely.LineString([[x0 - 1.0, 0.0], [x1 + 1.0, 0.0]]))
+    parts = [g for g in getattr(shown, "geoms", [shown]) if g.length > 1.0]
+    return [Stroke(np.asarray(g.coords), Role.ENGRAVE) for g in parts]
+
+
+def _ribs(job: Job, view: _View) -> list[Stroke]:
+    """Lines of the stations' rib planes."""
+    return [Stroke(view.on(line), Role.ENGRAVE) for _, line in _rib_lines(job, view)]
+
+
+def _rib_lines(job: Job, view: _View) -> list[tuple[float, Array]]:
+    y1, y2 = job.record.web.ends
+    middle = [s.y for s in job.record.wing.stations if y1 + 1.0 < s.y < y2 - 1.0]
+    plane = job.web.plane
+    thickness = [float(job.thickness(plane.s_at_rib(y, 0.0, 0.0))) for y in middle]
+    return [(y, blank.rib_line(plane, view.face, t, y)) for y, t in zip(middle, thickness, strict=True)]
+
+
+def _ticks(job: Job, view: _View, layout: Layout) -> list[Stroke]:
+    """Ticks along both edges with the skin's bevel there in tenths of a degree, and s at every other one."""
+    step = 2.0 * MM_PER_INCH if job.record.units == "in" else 50.0
+    first = max(view.face.top[0, 0], view.face.bottom[0, 0])
+    last = min(view.face.top[-1, 0], view.face.bottom[-1, 0])
+    places = np.arange(np.ceil(max(0.0, first) / step), np.floor(min(last, job.web.plane.length) / step) + 1) * step
+    strokes = []
+    for row in job.rows(places):
+        low, high = view.face.heights(row.s)
+        deep = min(TICK, 0.2 * (high - low))
+        for side, at, inwards in (("top", high, -1.0), ("bottom", low, 1.0)):
+            strokes.append(Stroke(view.on(np.array([[row.s, at], [row.s, at + inwards * deep]])), Role.ENGRAVE))
+            angle = row.top.bevel if side == "top" else row.bottom.bevel
+            x, out = view.sense * row.s, view.beyond("top" if side == "top" else "bottom", row.s, 6.0)
+            below = -SMALL if side == "bottom" else 0.0
+            layout.write(Label(degrees(angle), x, out - inwards * 1.5 + below, SMALL, anchor="middle"))
+            if round(row.s / step) % 2 == 0:
+                text = f"s {job.wording.plain(row.s)}"
+                layout.write(Label(text, x, out - inwards * (1.5 + _LINE * SMALL) + below, SMALL, anchor="middle"))
+    return strokes
+
+
+def _saw_marks(job: Job, view: _View, layout: Layout) -> list[Stroke]:
+    """Where the saw is set anew along a set bevel, and to what."""
+    strokes = []
+    for side in web.SIDES:
+        runs = job.web.cut(side).runs
+        outwards = 1.0 if side == "top" else -1.0
+        for run in runs:
+            start, stop = max(run.start, view.edge(side)[0, 0]), min(run.stop, view.edge(side)[-1, 0])
+            middle = (start + stop) / 2.0
+            far = 1.5 + 2.0 * _LINE * SMALL + (PLAIN if side == "bottom" else 0.0)
+            out = view.beyond(side, middle, 20.0) + outwards * far
+            text = f"saw {degrees(np.degrees(run.angle), 2)}"
+            layout.write(Label(text, view.sense * middle, out, PLAIN, anchor="middle"))
+            if run is not runs[0]:
+                at = view.h(side, run.start)
+                deep = 0.35 * (view.h("top", run.start) - view.h("bottom", run.start))
+                mark = np.array([[run.start, at], [run.start, at - outwards * deep]])
+                strokes.append(Stroke(view.on(mark), Role.ENGRAVE))
+    return strokes
+
+
+def _directions(view: _View, layout: Layout, inside: shapely.Polygon) -> list[Stroke]:
+    """Arrows that say which edge is up, wherever one fits, and the names of the two ends beyond them."""
+    ends = {
+        "ROOT": (view.face.bottom[0], view.face.top[0], -1.0),
+        "TIP": (view.face.bottom[-1], view.face.top[-1], 1.0),
+    }
+    for text, (low, high, outwards) in ends.items():
+        s = min(low[0], high[0]) - 3.0 if outwards < 0 else max(low[0], high[0]) + 3.0
+        turned = 90.0
+        # Baseline on the side away from the end, whichever way the face is looked at.
+        x = view.sense * s + (PLAIN if view.sense * outwards > 0 else 0.0)
+        middle = (low[1] + high[1]) / 2.0
+        layout.write(Label(text, x, middle, PLAIN, turned, "middle"))
+    strokes: list[Stroke] = []
+    start, stop = view.face.top[0, 0], view.face.top[-1, 0]
+    for wanted in np.arange(start + 60.0, stop - 20.0, 400.0):
+        for s in wanted + np.arange(0.0, 40.0, 5.0):
+            low, high = view.face.heights(float(s))
+            middle, tall = (max(0.0, low) + high) / 2.0, 7.0
+            x = view.sense * s
+            box = shapely.box(x - 4.5, middle - tall / 2.0 - 1.0, x + 4.5, middle + tall / 2.0 + 1.0)
+            if layout.free(box, inside):
+                foot, head = middle - tall / 2.0, middle + tall / 2.0
+                shaft = np.array([[x - 3.0, foot], [x - 3.0, head]])
+                barbs = np.array([[x - 4.2, head - 2.0], [x - 3.0, head], [x - 1.8, head - 2.0]])
+                strokes += [Stroke(shaft, Role.NOTE), Stroke(barbs, Role.NOTE)]
+                layout.labels.append(Label("UP", x - 1.2, middle - SMALL / 2.0, SMALL))
+                layout.keep_clear(box)
+                break
+    return strokes
+
+
+def _write_inside(job: Job, view: _View, layout: Layout, inside: shapely.Polygon, hand: Hand) -> None:
+    """What must stay on the piece once it is cut out: ribs, the datum, face, hand and stamp."""
+    for y, line in _rib_lines(job, view):
+        low, high = line
+        text = f"y {job.wording.plain(y)}"
+        spots = [
+            Spot(
+                view.sense * (low[0] + share * (high[0] - low[0])) + aside, low[1] + share * (high[1] - low[1]), anchor
+            )
+            for share in (0.75, 0.25, 0.6, 0.4)
+            for aside, anchor in ((2.0, "start"), (-2.0, "end"))
+        ]
+        layout.put(text, spots, within=inside)
+    start, stop = view.face.bottom[0, 0], view.face.bottom[-1, 0]
+    piece = f"{view.face.name.upper()} FACE, {hand} hand, {job.stamp}"
+    for text, shares in ((piece, (0.5, 0.35, 0.65)), ("web line", (0.0,))):
+        for height in (PLAIN, SMALL):
+            spots = [
+                Spot(view.sense * s, _clear_of_datum(view, s, share, height), "middle")
+                for s in np.arange(start + 20.0, stop - 20.0, 5.0)
+                for share in shares
+            ]
+            if layout.put(text, spots, height=height, within=inside):
+                break
+
+
+def _clear_of_datum(view: _View, s: float, share: float, height: float) -> float:
+    """Baseline for a text in the lower part of a face: just under the datum at share 0, lower with a larger one."""
+    low, high = view.face.heights(s)
+    ceiling = 0.0 if low < 0.0 < high else high
+    return ceiling - 1.2 - height - share * max(0.0, ceiling - low - 2.4 - height)
+
+
+def _write_titles(job: Job, view: _View, layout: Layout, hand: Hand) -> None:
+    """Title block under the root end of the face."""
+    lines = [
+        (job.record.name, LARGE),
+        (f"web blank, {view.face.name.upper()} face, {hand.upper()} hand", LARGE),
+        *((text, PLAIN) for text in _notes(job, view.face)),
+    ]
+    start = view.face.bottom[0, 0]
+    wide = max(Label(text, 0.0, 0.0, height).box().bounds[2] for text, height in lines)
+    low = min(view.face.bottom[view.face.bottom[:, 0] < start + wide + 10.0, 1])
+    y = low - 1.5 - 2.0 * _LINE * SMALL - (2.0 * PLAIN if job.web.bottom.runs else 0.0) - 4.0
+    for text, height in lines:
+        y -= _LINE * height
+        layout.write(Label(text, view.sense * start, y, height, anchor="start" if view.sense > 0 else "end"))
+
+
+def _notes(job: Job, face: Face) -> list[str]:
+    """What must be known to use the sheet."""
+    stated, words = job.record.web, job.wording
+    edges = {
+        "square": "both edges cut square: this outline serves both faces",
+        "set bevel": "both edges cut with the saw set to the angle marked for each run",
+        "full bevel": "both edges cut from this outline to that of the other face",
+    }
+    return [
+        f"{words.length(stated.thickness)} {stated.foam}, cant {degrees(np.degrees(job.cant))}, "
+        f"bond line {words.length(stated.bond)}",
+        f"As seen from the {face.name}; pins through the {PIN:g} mm holes register it with the other face",
+        f"{edges[stated.edge][0].upper()}{edges[stated.edge][1:]}",
+        "At each tick: bevel of the skin, positive where the edge rises aft",
+        f"Wing file revision {job.stamp}",
+    ]
