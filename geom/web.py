@@ -106,7 +106,7 @@ def plane(loft: Loft, *, ends: tuple[float, float], line: tuple[float, float], c
     s = along / length
     up = np.array([0.0, 0.0, 1.0]) - s[2] * s
     up /= np.linalg.norm(up)
-    aft = np.cross(s, up)
+    aft = np.cross(s, up) * np.sign(s[1])  # aft on a left-hand panel too, whose s runs towards -y
     c, k = np.cos(cant), np.sin(cant)
     return Plane(root, s, c * up + k * aft, c * aft - k * up, length, cant, ends, line)
 
