@@ -131,6 +131,7 @@ def weigh(
         typer.echo(table.to_csv(table.candidate_records(found, verdict)), nl=False)
     else:
         _show(table.weighed(job, found, verdict))
+        typer.echo(table.WEIGHED_NOTE)
         typer.echo(verdict.sentence)
         typer.echo(scales.saving_sentence(saving, job))
 

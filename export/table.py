@@ -21,6 +21,13 @@ if TYPE_CHECKING:
     from rich.table import Table as RichTable
 
 
+WEIGHED_NOTE = (
+    "gap: the largest to be filled. bevel, swing: the largest angle cut, and how far it turns along an edge.\n"
+    "other: what bonds the web and lies on it. limits: met, or the ones that are broken."
+)
+_SHORT = {"max_gap": "gap", "max_bevel": "bevel", "min_thickness": "thin", "max_mass": "heavy"}
+
+
 @dataclass(frozen=True)
 class Table:
     """A table of texts for the screen; `marked` rows stand out."""
@@ -35,7 +42,7 @@ class Table:
         from rich import box
         from rich.table import Table as RichTable
 
-        shown = RichTable(title=self.title, title_justify="left", box=box.SIMPLE_HEAD, pad_edge=False, padding=(0, 1))
+        shown = RichTable(title=self.title, title_justify="left", box=box.SIMPLE_HEAD, pad_edge=False, padding=(0, 1, 0, 0))
         for i, head in enumerate(self.heads):
             words = all(not any(c.isdigit() for c in row[i]) for row in self.rows)
             shown.add_column(head, justify="left" if words else "right", no_wrap=True)
@@ -138,13 +145,13 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
     """The candidates for the screen, in the wing file's units, the chosen one marked."""
     words = job.wording
     unit = words.mass_unit
-    heads = ("", "sheet", "edge", "cant", "runs", "foam", "filler", "total", "gap", "bevel", "swing", "verdict")
+    heads = ("", "sheet", "edge", "cant", "runs", "foam", "filler", "other", "total", "gap", "bevel", "swing", "limits")
     rows = []
     for c in found:
         mark = "→" if c is verdict.chosen else ""
         start = (mark, words.plain(c.thickness), c.edge, degrees(c.cant))
         if c.outside:
-            rows.append((*start, *[""] * 7, "leaves the section"))
+            rows.append((*start, *[""] * 8, "no room"))
             continue
         rows.append(
             (
@@ -152,6 +159,7 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
                 str(c.runs) if c.runs else "",
                 words.mass_column(c.masses.foam),
                 words.mass_column(c.masses.filler),
+                words.mass_column(c.masses.total - c.masses.foam - c.masses.filler),
                 words.mass_column(c.masses.total),
                 words.column(c.gap),
                 f"{c.bevel:.1f}°",
@@ -167,7 +175,7 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
 def _verdict(job: Job, candidate: Candidate) -> str:
     if job.record.limits is None:
         return ""
-    return ", ".join(miss.limit for miss in candidate.misses) or "meets limits"
+    return ", ".join(_SHORT[miss.limit] for miss in candidate.misses) or "met"
 
 
 def weighed_record(job: Job, found: Sequence[Candidate], verdict: Verdict, saving: Saving | None) -> dict[str, Any]:

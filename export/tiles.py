@@ -15,6 +15,7 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
+Place = tuple[int, int]  # row and column
 Box = tuple[float, float, float, float]
 Shapes = NDArray[Any]  # of shapely geometries
 
@@ -104,7 +105,7 @@ def plan(shapes: Shapes, paper: Paper, *, margins: Box, least: tuple[float, floa
         If the paper is too small for the margins and the smallest window.
     """
     tree = shapely.STRtree(shapes)
-    x0, y0, x1, y1 = shapely.total_bounds(shapes)
+    x0, y0, x1, y1 = map(float, shapely.total_bounds(shapes))
     bounds = (x0 - _PAD, y0 - _PAD, x1 + _PAD, y1 + _PAD)
     sizes = [(min(paper.width, paper.height), max(paper.width, paper.height))]
     sizes.insert(int(y1 - y0 >= x1 - x0), sizes[0][::-1])
@@ -142,9 +143,35 @@ def _grids(bounds: Box, window: tuple[float, float]) -> Iterator[list[Tile]]:
 
 
 def _needed(tree: shapely.STRtree, grid: Sequence[Tile]) -> tuple[Tile, ...]:
-    """Keep the sheets of `grid` with a mark that no other of them shows."""
+    """Keep the sheets of `grid` with a mark that no other of them shows, and those that hold these together."""
     boxes = shapely.box(*np.array([tile.own() for tile in grid]).T)
-    return tuple(grid[i] for i in np.unique(tree.query(boxes, predicate="intersects")[0]))
+    marked = np.unique(tree.query(boxes, predicate="intersects")[0])
+    places = _joined({(grid[i].row, grid[i].column) for i in marked})
+    return tuple(tile for tile in grid if (tile.row, tile.column) in places)
+
+
+def _joined(places: set[Place]) -> set[Place]:
+    """Add what it takes to lead from each place to every other: a sheet on its own would lose its distance."""
+    places = set(places)
+    while apart := places - (reached := _reach(places)):
+        here, there = min(
+            product(sorted(reached), sorted(apart)),
+            key=lambda pair: abs(pair[0][0] - pair[1][0]) + abs(pair[0][1] - pair[1][1]),
+        )
+        rows, columns = (range(min(ends), max(ends) + 1) for ends in zip(here, there, strict=True))
+        places |= {(row, here[1]) for row in rows} | {(there[0], column) for column in columns}
+    return places
+
+
+def _reach(places: set[Place]) -> set[Place]:
+    """Places that can be reached from the first of `places` side by side."""
+    reached: set[Place] = set()
+    edge = {min(places)}
+    while edge:
+        reached |= edge
+        beside = {p for r, c in edge for p in ((r - 1, c), (r + 1, c), (r, c - 1), (r, c + 1))}
+        edge = (beside & places) - reached
+    return reached
 
 
 def clip(shapes: Shapes, window: Box) -> list[tuple[int, list[NDArray[np.float64]]]]:

@@ -65,9 +65,7 @@ class Label:
 
     def place(self, points: ArrayLike) -> NDArray[np.float64]:
         """Points (k, 2) of a line of text that starts at (0, 0) along +x, to where the label stands."""
-        back = {"start": 0.0, "middle": 0.5, "end": 1.0}[self.anchor] * lettering.width(
-            self.text, self.height
-        )
+        back = {"start": 0.0, "middle": 0.5, "end": 1.0}[self.anchor] * lettering.width(self.text, self.height)
         c, s = np.cos(np.radians(self.angle)), np.sin(np.radians(self.angle))
         moved = (np.asarray(points, dtype=float) - [back, 0.0]) @ np.array([[c, s], [-s, c]])
         return np.asarray(moved + np.array([self.x, self.y]))

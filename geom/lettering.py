@@ -17,8 +17,8 @@ _CAP = 21.0  # height of a capital in the glyphs' own units
 _BASE = 9.0  # the baseline stands this far below the glyphs' origin
 _RAISED = 3.0  # points and commas of this set float that far above the baseline
 _DEGREE = np.pi * np.arange(9) / 4.0
-_PLAIN = str.maketrans("−–—×µμ‘’“”øØłŁ", "---xuu''\"\"oOlL")
-_PLAIN |= str.maketrans({"±": "+/-", "ß": "ss", "æ": "ae", "Æ": "AE"})
+_PLAIN = dict(zip(map(ord, "−–—×µμ‘’“”øØłŁ"), "---xuu''\"\"oOlL", strict=True))
+_PLAIN |= {ord("±"): "+/-", ord("ß"): "ss", ord("æ"): "ae", ord("Æ"): "AE"}
 
 
 @cache

@@ -9,7 +9,8 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
-from functools import cached_property
+from functools import cache, cached_property
+from itertools import pairwise
 from typing import Literal
 
 import numpy as np
@@ -23,6 +24,7 @@ Treatment = Literal["square", "set bevel", "full bevel"]
 Aim = Literal["filler", "gap"]
 
 
+@cache
 def lobatto(count: int) -> tuple[Array, Array]:
     """Gauss-Lobatto nodes and weights on [-1, 1], ends included; exact to degree ``2 count - 3``.
 
@@ -30,7 +32,9 @@ def lobatto(count: int) -> tuple[Array, Array]:
     """
     top = np.polynomial.legendre.Legendre.basis(count - 1)
     nodes = np.concatenate([[-1.0], np.sort(top.deriv().roots().real), [1.0]])
-    return nodes, 2.0 / (count * (count - 1) * top(nodes) ** 2)
+    weights = 2.0 / (count * (count - 1) * top(nodes) ** 2)
+    nodes.flags.writeable = weights.flags.writeable = False
+    return nodes, weights
 
 
 @dataclass(frozen=True)
@@ -285,8 +289,7 @@ def _bounds(low0: float, low1: float, high0: float, high1: float, corners: Array
     marks = np.unique(np.concatenate([[low0, low1], inside, [high0, high1]]))
     marks = marks[np.concatenate([[True], np.diff(marks) > 1e-6])]
     pieces = [
-        np.linspace(a, b, max(1, int(np.ceil((b - a) / longest - 1e-9))), endpoint=False)
-        for a, b in zip(marks[:-1], marks[1:], strict=True)
+        np.linspace(a, b, max(1, int(np.ceil((b - a) / longest - 1e-9))), endpoint=False) for a, b in pairwise(marks)
     ]
     return np.concatenate([*pieces, marks[-1:]])
 

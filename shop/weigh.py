@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
+from functools import cache
 from itertools import product
 from typing import get_args
 
@@ -135,7 +136,7 @@ def candidates(
                 yield _candidate(job, angle, thickness, edge, lambda t, a=angle: job.survey(a, t))
         else:
             angle = float(np.radians(stated))
-            surveys = _surveys(job, angle, max(thicknesses))
+            surveys = cache(_surveys(job, angle, max(thicknesses)))
             for thickness, edge in product(thicknesses, edges):
                 yield _candidate(job, angle, thickness, edge, surveys)
 

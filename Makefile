@@ -1,0 +1,43 @@
+PYTHON ?= python3
+VENV   ?= .venv
+BIN    := $(VENV)/bin
+OUT    ?= out
+
+.PHONY: demo test lint bench clean
+
+demo: $(VENV)/.run
+	@for wing in examples/*.toml; do \
+		name=$$(basename $$wing .toml); \
+		echo; echo "== $$wing"; \
+		$(BIN)/wrywing check $$wing && \
+		$(BIN)/wrywing templates $$wing --out $(OUT)/$$name --hand right,left || exit $$?; \
+	done
+	@echo; echo "The templates are in $(OUT)/: open the PDFs to print, the SVGs to look, the DXFs for a router."
+
+test: $(VENV)/.dev
+	$(BIN)/python -m pytest -n 2
+
+lint: $(VENV)/.dev
+	$(BIN)/ruff check .
+	$(BIN)/ruff format --check .
+	@# mypy does not follow an editable install into the repository's root: it is shown a plain copy.
+	rm -rf build/typed
+	$(BIN)/pip install -q --no-deps --target build/typed .
+	cd build && MYPYPATH=typed ../$(BIN)/mypy --config-file ../pyproject.toml -p wrywing
+
+bench: $(VENV)/.dev
+	@for script in tests/bench/bench_*.py; do echo "== $$script"; $(BIN)/python $$script || exit $$?; done
+
+$(VENV)/bin/python:
+	$(PYTHON) -m venv $(VENV)
+
+$(VENV)/.run: pyproject.toml | $(VENV)/bin/python
+	$(BIN)/python -m pip install -q -e .
+	touch $@
+
+$(VENV)/.dev: pyproject.toml | $(VENV)/bin/python
+	$(BIN)/python -m pip install -q -e ".[dev]"
+	touch $@ $(VENV)/.run
+
+clean:
+	rm -rf build $(OUT) $(VENV) *.egg-info
