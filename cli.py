@@ -15,6 +15,7 @@ if TYPE_CHECKING:
     from .geom.seat import Treatment
     from .shop.job import Job
     from .shop.stock import Paper
+    from .shop.units import Units
 
 WingPath = Annotated[Path, typer.Argument(metavar="WING.toml", help="The wing file.", show_default=False)]
 AsJson = Annotated[bool, typer.Option("--json", help="Print JSON: lengths in mm, angles in degrees, masses in grams.")]
@@ -43,7 +44,8 @@ def new(
     """Write a commented wing file to start from."""
     from .shop import starter
 
-    text = starter.text(_one_of(units, {"mm": "mm", "in": "in"}, "--units"))  # type: ignore[arg-type]
+    kinds: dict[str, Units] = {"mm": "mm", "in": "in"}
+    text = starter.text(_one_of(units, kinds, "--units"))
     try:
         with path.open("x", encoding="utf-8") as file:
             file.write(text)
@@ -85,11 +87,12 @@ def bevels(
 
     from .export import table
     from .shop import weigh as scales
+    from .shop.job import OffWeb
 
     job = _job(wing)
     try:
         rows = job.rows(_places(job, every, at))
-    except ValueError as fault:
+    except OffWeb as fault:
         raise UsageError(f"--at: {fault}") from None
     if as_json:
         typer.echo(table.to_json(table.bevels_record(job, rows)))

@@ -22,8 +22,8 @@ if TYPE_CHECKING:
 
 
 WEIGHED_NOTE = (
-    "gap: the largest to be filled. bevel, swing: the largest angle cut, and how far it turns along an edge.\n"
-    "other: what bonds the web and lies on it. limits: met, or the ones that are broken."
+    "gap: the largest to be filled; bevel, swing: the largest angle cut, and how far it turns along\n"
+    "an edge; other: what bonds the web and lies on it; limits: met, or the ones that are broken"
 )
 _SHORT = {"max_gap": "gap", "max_bevel": "bevel", "min_thickness": "thin", "max_mass": "heavy"}
 
@@ -42,7 +42,8 @@ class Table:
         from rich import box
         from rich.table import Table as RichTable
 
-        shown = RichTable(title=self.title, title_justify="left", box=box.SIMPLE_HEAD, pad_edge=False, padding=(0, 1, 0, 0))
+        look: dict[str, Any] = {"box": box.SIMPLE_HEAD, "pad_edge": False, "padding": (0, 1, 0, 0)}
+        shown = RichTable(title=self.title, title_justify="left", **look)
         for i, head in enumerate(self.heads):
             words = all(not any(c.isdigit() for c in row[i]) for row in self.rows)
             shown.add_column(head, justify="left" if words else "right", no_wrap=True)

@@ -36,8 +36,9 @@ def least(
     values = np.array([figure(float(k)) for k in angles])
     padded = np.concatenate([[np.inf], values, [np.inf]])
     hollows = np.flatnonzero((values <= padded[:-2]) & (values <= padded[2:]) & np.isfinite(values))
+    hollows = hollows[np.argsort(values[hollows])]
     found = [(float(angles[i]), float(values[i])) for i in hollows]
-    for i in sorted(hollows, key=lambda i: values[i])[:3]:
+    for i in hollows[:3]:
         about = (float(angles[max(i - 1, 0)]), float(angles[min(i + 1, len(angles) - 1)]))
         result = minimize_scalar(figure, bounds=about, method="bounded", options={"xatol": close})
         found.append((float(result.x), float(result.fun)))

@@ -141,7 +141,8 @@ class Loft:
         point, by_t, by_y = self.outer(t, y, at)
         y = np.asarray(y, dtype=float)
         skin = self.skin(y, y if at is None else np.asarray(at, dtype=float))[0]
-        return point - (skin + depth)[..., None] * _unit(np.cross(by_t, by_y)), by_t, by_y
+        under = skin + np.asarray(depth, dtype=float)
+        return point - under[..., None] * _unit(np.cross(by_t, by_y)), by_t, by_y
 
     def chord_point(self, fraction: float, y: float) -> Array:
         """Point (3,) of the twisted chord line at a chord fraction."""
@@ -161,4 +162,4 @@ class Loft:
 
 
 def _unit(v: Array) -> Array:
-    return v / np.sqrt(np.einsum("...i,...i->...", v, v))[..., None]
+    return np.asarray(v / np.sqrt(np.einsum("...i,...i->...", v, v))[..., None])

@@ -73,7 +73,7 @@ class NothingInside(ValueError):
     """Top and bottom of the web meet or cross at `s`."""
 
     def __init__(self, s: float, height: float) -> None:
-        super().__init__(f"a web of {height:.2f} mm is left at s = {s:.0f} mm")
+        super().__init__(f"{height:.2f} mm of height at s = {s:.0f} mm")
         self.s, self.height = s, height
 
 
@@ -157,7 +157,7 @@ def _meet(
     side: Side,
     depth: ArrayLike,
 ) -> Edge:
-    """Where, over the layer n of the web, the surface under the skin stands at the distance `want` in direction `along`.
+    """Where, over the layer n of the web, the surface under the skin is the distance `want` off in direction `along`.
 
     Newton's method on the two surface coordinates with the outer surface's tangents in place of the inner one's. Each
     round leaves about depth x curvature of the error, a few parts in a thousand under a skin. The bay that a place
@@ -195,4 +195,5 @@ def bevel(front: ArrayLike, rear: ArrayLike, thickness: ArrayLike) -> Array:
     >>> float(np.degrees(bevel(0.0, 1.0, 1.0)).round(9))
     45.0
     """
-    return np.arctan((np.asarray(rear, dtype=float) - np.asarray(front, dtype=float)) / thickness)
+    rise = np.asarray(rear, dtype=float) - np.asarray(front, dtype=float)
+    return np.asarray(np.arctan(rise / np.asarray(thickness, dtype=float)))

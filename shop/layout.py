@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 
-import shapely
+from shapely.geometry.base import BaseGeometry
 
 from ..geom.drawing import Anchor, Label, Role
 
@@ -27,13 +27,13 @@ class Layout:
     """The labels placed so far, and what else is in their way."""
 
     labels: list[Label] = field(default_factory=list)
-    _taken: list[shapely.Geometry] = field(default_factory=list)
+    _taken: list[BaseGeometry] = field(default_factory=list)
 
-    def keep_clear(self, shape: shapely.Geometry) -> None:
+    def keep_clear(self, shape: BaseGeometry) -> None:
         """Let no later label touch `shape`."""
         self._taken.append(shape)
 
-    def free(self, shape: shapely.Geometry, within: shapely.Geometry | None = None) -> bool:
+    def free(self, shape: BaseGeometry, within: BaseGeometry | None = None) -> bool:
         """Whether `shape`, with some air round it, touches nothing and, if asked, lies inside `within`."""
         roomy = shape.buffer(_AIR, join_style="mitre")
         if within is not None and not within.contains(roomy):
@@ -47,7 +47,7 @@ class Layout:
         *,
         height: float = 2.5,
         role: Role = Role.NOTE,
-        within: shapely.Geometry | None = None,
+        within: BaseGeometry | None = None,
     ) -> bool:
         """Write `text` at the first spot with room for it; False, and nothing written, if there is none."""
         for spot in spots:

@@ -3,6 +3,7 @@
 from dataclasses import dataclass
 
 import numpy as np
+
 from wrywing.geom.drawing import Drawing, Hole, Label, Role, Stroke
 
 WING = "Möwe survey wing, outer panel"

@@ -10,6 +10,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from numpy.typing import NDArray
+
 from wrywing.geom.airfoil import N, Section, from_points, mean_line, naca, naca_code, parse, read
 
 Floats = NDArray[np.float64]

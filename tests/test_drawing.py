@@ -5,6 +5,7 @@ import pytest
 import shapely
 from hypothesis import given
 from hypothesis import strategies as st
+
 from wrywing.geom import lettering
 from wrywing.geom.drawing import Drawing, Hole, Label, Role, Stroke, thin
 

@@ -12,6 +12,7 @@ import numpy as np
 import pytest
 import shapely
 from samples import A4, WING, blank, card
+
 from wrywing.export import dxf, pdf, svg
 from wrywing.geom.drawing import Role
 

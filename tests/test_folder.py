@@ -6,6 +6,7 @@ import os
 from pathlib import Path
 
 import pytest
+
 from wrywing.export import folder
 from wrywing.export.folder import FolderError
 

@@ -13,6 +13,7 @@ import shapely
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from samples import A4, LETTER, WING, Sheet, blank, card, core
+
 from wrywing.export import pdf, tiles
 from wrywing.geom.drawing import Drawing, Hole, Role, Stroke
 

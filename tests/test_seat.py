@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from itertools import combinations, product
+from itertools import combinations, pairwise, product
 from pathlib import Path
 
 import numpy as np
@@ -10,6 +10,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from wings import Bent, loft, slab
+
 from wrywing.geom import cant as cants
 from wrywing.geom import seat, web
 from wrywing.geom.airfoil import naca
@@ -121,7 +122,7 @@ def test_more_runs_never_need_more_filler(slopes, crown):
     survey = made(slope, 8.0, crown)
     angles = seat.saw_angles(survey, "top", np.radians(1.0))
     needs = [fill(survey, "set bevel", runs, angles).filler for runs in (1, 2, 3, 4)]
-    assert all(b <= a + 1e-9 for a, b in zip(needs, needs[1:], strict=False))
+    assert all(b <= a + 1e-9 for a, b in pairwise(needs))
 
 
 @given(tangents, st.floats(0.0, 0.3), st.integers(1, 3))

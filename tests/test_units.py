@@ -6,6 +6,7 @@ import sys
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
 from wrywing.shop import units
 
 READERS = [

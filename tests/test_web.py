@@ -9,6 +9,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from wings import Bent, ellipse, loft, slab, upside_down
+
 from wrywing.geom import web
 from wrywing.geom.airfoil import naca
 from wrywing.geom.loft import Loft
@@ -32,6 +33,7 @@ def test_edges_and_bevels_agree_with_a_cad_kernel_on_the_nasa_wing(cant, tmp_pat
     # Published: NASA/TP-2016-219072; independent kernel: Open CASCADE, offset surface cut by the layer planes.
     pytest.importorskip("OCP", reason="no Open CASCADE on this machine")
     import kernel
+
     from wrywing.shop import job as jobs
 
     path = tmp_path / "nasa.toml"

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 
 import numpy as np
+
 from wrywing.geom import washout
 from wrywing.geom.airfoil import N, Section
 from wrywing.geom.loft import Loft

@@ -1,0 +1,261 @@
+"""The command line: what it prints, what it refuses in one line, and that a refusal leaves the disk alone."""
+
+from __future__ import annotations
+
+import csv
+import io
+import json
+import subprocess
+import sys
+import tomllib
+from pathlib import Path
+
+import pytest
+
+from wrywing import cli
+
+EXAMPLES = Path(__file__).parent.parent / "examples"
+
+GOOD = """
+name = "plain"
+[wing]
+[[wing.stations]]
+y = 0
+chord = 300
+airfoil = "naca 2412"
+washout = 0
+[[wing.stations]]
+y = 1000
+chord = 200
+le = 100
+airfoil = "naca 2412"
+washout = 6
+[skin]
+thickness = 1
+[web]
+ends = [0, 980]
+line = [0.3, 0.3]
+thickness = 6
+edge = "square"
+foam = "pvc foam 80"
+filler = "microballoon paste"
+"""
+
+
+@pytest.fixture
+def run(monkeypatch, capsys):
+    """Run the program on some arguments: exit status, what it printed, what it complained of."""
+
+    def go(*words):
+        monkeypatch.setattr(sys, "argv", ["wrywing", *map(str, words)])
+        with pytest.raises(SystemExit) as ended:
+            cli.main()
+        return ended.value.code or 0, *capsys.readouterr()
+
+    return go
+
+
+@pytest.fixture
+def wing(tmp_path):
+    def write(*changes):
+        text = GOOD
+        for old, new in changes:
+            assert old in text
+            text = text.replace(old, new)
+        path = tmp_path / "wing.toml"
+        path.write_text(text)
+        return path
+
+    return write
+
+
+KINKED = """washout = 6
+[[wing.stations]]
+y = 2000
+chord = 200
+le = 800
+airfoil = "naca 2412"
+washout = 6
+"""
+# Parse-level faults stand in test_wingfile; these need the geometry.
+OUTSIDE = [
+    ("line = [0.3, 0.3]", "line = [0.002, 0.3]", "web.thickness", "leaves the section at s ="),
+    ("washout = 6\n[skin]", KINKED + "[skin]", "web.line", "leaves the section at s ="),
+    ("thickness = 6", "thickness = 500", "web.thickness", "leaves the section at s ="),
+    ("[skin]\nthickness = 1", "[skin]\nthickness = 14", "skin.thickness", "wanted a skin that leaves room"),
+    ("line = [0.3, 0.3]\nthickness = 6", "cant = 45\nline = [0.012, 0.012]\nthickness = 4", "web.cant", "leaves"),
+    ("ends = [0, 980]", "ends = [0, 1200]", "web.ends", "got"),
+    ("ends = [0, 980]", "ends = [-5, 980]", "web.ends", "got"),
+    ("line = [0.3, 0.3]", "line = [0.3, 1.2]", "web.line", "got 1.2"),
+]
+
+
+@pytest.mark.parametrize(("old", "new", "key", "words"), OUTSIDE)
+def test_webs_that_do_not_fit_the_wing_are_refused_in_one_line(run, wing, tmp_path, old, new, key, words):
+    more = {"web.cant": ("thickness = 1", "thickness = 0.1"), "web.line": ("ends = [0, 980]", "ends = [0, 1950]")}
+    path = wing((old, new), *([more[key]] if "leaves" in words and key in more else []))
+    out = tmp_path / "out"
+    for words_of in (("bevels", path), ("templates", path, "--out", out)):
+        status, printed, complaint = run(*words_of)
+        assert (status, printed) == (2, "")
+        assert complaint.startswith(f"wing.toml: {key}")
+        assert words in complaint
+        assert complaint.count("\n") == 1
+    assert not out.exists()
+
+
+@pytest.mark.parametrize(
+    ("arguments", "words"),
+    [
+        (["bevels", "nowhere.toml"], "nowhere.toml: no such file"),
+        (["bevels", "WING", "--every", "3 kg"], "--every: wanted a length"),
+        (["bevels", "WING", "--every", "0"], "--every: wanted"),
+        (["bevels", "WING", "--at", "0,,5"], "--at: wanted a list"),
+        (["bevels", "WING", "--at", "0,99999"], "--at: wanted places from 0 to"),
+        (["weigh", "WING", "--thickness", ""], "--thickness: wanted a list"),
+        (["weigh", "WING", "--thickness", "thick"], "--thickness: wanted a length"),
+        (["weigh", "WING", "--thickness", "0"], "--thickness: wanted lengths above 0"),
+        (["weigh", "WING", "--edge", "round"], "--edge: wanted one of square, set bevel, full bevel, got 'round'"),
+        (["weigh", "WING", "--cant", "80"], "--cant: wanted angles within 45 degrees"),
+        (["templates", "WING", "--out", "OUT", "--formats", "png"], "--formats: wanted one of dxf, svg, pdf"),
+        (["templates", "WING", "--out", "OUT", "--hand", "upper"], "--hand: wanted one of right, left"),
+        (["templates", "WING", "--out", "OUT", "--paper", "a9"], "--paper: wanted a paper size"),
+        (["templates", "WING"], "--out"),
+        (["new", "WING"], "wanted a new file, got one that exists"),
+        (["new", "no/such/folder.toml"], "no such file or directory"),
+        (["new", "fresh.toml", "--units", "cm"], "--units: wanted one of mm, in, got 'cm'"),
+        (["bevel", "WING"], "bevel"),
+        (["check"], "WING.toml"),
+    ],
+)
+def test_wrong_arguments_get_one_line_and_change_nothing(run, wing, tmp_path, monkeypatch, arguments, words):
+    monkeypatch.chdir(tmp_path)
+    path = wing()
+    before = path.read_bytes()
+    given = [{"WING": str(path), "OUT": "out"}.get(word, word) for word in arguments]
+    status, printed, complaint = run(*given)
+    assert (status, printed) == (2, "")
+    assert words in complaint
+    assert complaint.count("\n") == 1
+    assert [p.name for p in tmp_path.iterdir()] == ["wing.toml"]
+    assert path.read_bytes() == before
+
+
+def test_an_output_folder_that_cannot_be_written_loses_nothing(run, wing, tmp_path):
+    file = tmp_path / "file"
+    file.write_text("mine")
+    for out in (file, file / "below"):
+        status, _, complaint = run("templates", wing(), "--out", out)
+        assert status == 2
+        assert complaint.count("\n") == 1
+        assert str(file) in complaint
+    assert file.read_text() == "mine"
+
+
+@pytest.mark.parametrize("units", ["mm", "in"])
+def test_a_new_file_is_one_that_check_takes(run, tmp_path, units):
+    path = tmp_path / "my.toml"
+    assert run("new", path, "--units", units)[0] == 0
+    assert tomllib.loads(path.read_text())["units"] == units
+    status, printed, _ = run("check", path)
+    assert status == 0
+    assert "doubt" not in printed
+
+
+def test_check_describes_in_a_dozen_lines(run):
+    status, printed, _ = run("check", EXAMPLES / "saltpan.toml")
+    assert status == 0
+    for word in ("span", "area", "chords", "washout", "steepest", "web", "height", "bevel", "filler"):
+        assert word in printed
+    figures = json.loads(run("check", EXAMPLES / "saltpan.toml", "--json")[1])
+    assert figures["span"] == 1400.0
+
+
+@pytest.mark.parametrize(
+    ("changes", "doubt"),
+    [
+        ([("washout = 6\n[skin]", KINKED[:-2] + "2\n[skin]")], "the washout reverses at y 1000"),
+        ([("line = [0.3, 0.3]", "line = [0.02, 0.02]")], "of the leading edge at y"),
+        ([("washout = 6", "washout = 25")], "beyond 15°"),
+    ],
+)  # fmt: skip
+def test_check_says_what_is_doubtful(run, wing, changes, doubt):
+    _, printed, _ = run("check", wing(*changes))
+    assert any(line.startswith("doubt") and doubt in line for line in printed.splitlines())
+
+
+def test_a_crossed_trailing_edge_is_doubtful(run, wing, tmp_path):
+    from wrywing.geom.airfoil import naca
+
+    section = naca("2412")
+    t = [i / 40.0 for i in range(40, -41, -1)]
+    rows = [f"{v * v:.6f} {float(section.q(v)) - 0.003 * v * v * v:.6f}" for v in t]
+    (tmp_path / "crossed.dat").write_text("\n".join(rows))
+    _, printed, _ = run("check", wing(('"naca 2412"', '"crossed.dat"')))
+    assert "doubt     crossed.dat: the trailing edge is crossed" in printed
+
+
+def test_bevels_json_is_as_documented_and_csv_holds_the_same(run):
+    path = EXAMPLES / "saltpan.toml"
+    record = json.loads(run("bevels", path, "--at", "0,120,240", "--json")[1])
+    assert set(record) == {"name", "stamp", "web", "rows"}
+    assert {"length", "cant", "edge"} <= set(record["web"])
+    assert [row["s"] for row in record["rows"]] == [0.0, 120.0, 240.0]
+    edge = {"front", "rear", "bevel", "crown", "gap", "cut_front", "cut_rear"}
+    for row in record["rows"]:
+        assert set(row) == {"s", "y", "thickness", "top", "bottom"}
+        assert set(row["top"]) == set(row["bottom"]) == edge
+    lines = list(csv.DictReader(io.StringIO(run("bevels", path, "--at", "0,120,240", "--csv")[1])))
+    assert [float(line["top_bevel"]) for line in lines] == [row["top"]["bevel"] for row in record["rows"]]
+
+
+def test_the_screen_fits_a_hundred_columns(run):
+    for words in (("bevels",), ("weigh",), ("check",)):
+        for name in ("saltpan.toml", "highmoor.toml"):
+            _, printed, _ = run(*words, EXAMPLES / name)
+            tables = [line for line in printed.splitlines() if not line.startswith(("Take", "With"))]
+            assert max(map(len, tables)) <= 100
+            assert "…" not in printed
+
+
+def test_weigh_json_marks_one_candidate_and_gives_the_saving(run):
+    record = json.loads(run("weigh", EXAMPLES / "saltpan.toml", "--thickness", "5,6", "--json")[1])
+    assert len(record["candidates"]) == 6
+    assert sum(c["chosen"] for c in record["candidates"]) == 1
+    assert {"stated", "best", "filler_stated", "filler_best"} == set(record["saving"])
+
+
+def test_limits_nothing_meets_are_an_answer_not_an_error(run, wing):
+    status, printed, _ = run("weigh", wing(("[web]", "[limits]\nmax_mass = 1\n[web]")), "--thickness", "5")
+    assert status == 0
+    assert "misses max_mass by" in printed
+
+
+def test_templates_are_written_as_the_manifest_says_and_twice_the_same(run, tmp_path):
+    import hashlib
+
+    for out in ("a", "b"):
+        assert run("templates", EXAMPLES / "saltpan.toml", "--out", tmp_path / out, "--hand", "right,left")[0] == 0
+    manifest = json.loads((tmp_path / "a" / "manifest.json").read_text())
+    assert {f["format"] for f in manifest["files"]} >= {"dxf", "svg", "pdf"}
+    assert {f["hand"] for f in manifest["files"]} >= {"right", "left"}
+    for file in manifest["files"]:
+        data = (tmp_path / "a" / file["path"]).read_bytes()
+        assert hashlib.sha256(data).hexdigest() == file["sha256"]
+        assert (tmp_path / "b" / file["path"]).read_bytes() == data
+
+
+def test_a_fault_of_the_program_shows_no_traceback(run, wing, monkeypatch):
+    monkeypatch.setattr(cli, "_job", lambda path: 1 / 0)
+    status, _, complaint = run("check", wing())
+    assert status == 1
+    assert complaint.count("\n") == 1
+    assert "ZeroDivisionError" in complaint
+
+
+def test_help_needs_no_heavy_library():
+    code = "import sys; sys.argv = ['wrywing', '--help']\nfrom wrywing import cli\n"
+    code += "try:\n cli.main()\nexcept SystemExit: pass\n"
+    code += "print(sorted({'numpy', 'scipy', 'shapely', 'ezdxf', 'pydantic'} & set(sys.modules)))"
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
+    assert done.stdout.strip().endswith("[]")

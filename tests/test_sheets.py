@@ -1,0 +1,130 @@
+"""The web blank's drawings: what they measure, what they carry, and that nothing lies on anything."""
+
+from __future__ import annotations
+
+from itertools import combinations
+from pathlib import Path
+
+import numpy as np
+import pytest
+import shapely
+
+from wrywing.geom import web
+from wrywing.geom.drawing import Role
+from wrywing.shop import job as jobs
+from wrywing.shop.sheets_web import web_blank
+
+EXAMPLES = Path(__file__).parent.parent / "examples"
+WINGS = ["saltpan.toml", "highmoor.toml"]
+
+
+@pytest.fixture(scope="module", params=WINGS)
+def job(request):
+    return jobs.load(EXAMPLES / request.param)
+
+
+def outline(drawing):
+    (cut,) = (s for s in drawing.strokes if s.role is Role.CUT_OUTSIDE)
+    assert cut.closed
+    return cut.points
+
+
+def test_outlines_follow_the_cut_within_a_hundredth(job):
+    for drawing, sense, n in zip(web_blank(job), (-1.0, 1.0), (-0.5, 0.5), strict=True):
+        ring = shapely.Polygon(outline(drawing))
+        assert ring.is_valid
+        assert ring.exterior.is_ccw == (sense > 0)
+        s = np.linspace(5.0, job.web.plane.length - 5.0, 300)
+        for row in job.rows(s):
+            for edge in (row.top, row.bottom):
+                h = edge.cut_front if n < 0 else edge.cut_rear
+                at_a_step = any(abs(row.s - run.start) < 20.0 for side in web.SIDES for run in job.web.cut(side).runs)
+                if not at_a_step:
+                    assert ring.exterior.distance(shapely.Point(sense * row.s, h)) < 0.01
+
+
+def test_outlines_have_no_more_points_than_a_hundredth_needs(job):
+    # Every inner point of an edge stands off the line between its neighbours by a fair share of the tolerance.
+    for drawing in web_blank(job):
+        points = outline(drawing)
+        fewer = shapely.simplify(shapely.LineString(np.vstack([points, points[:1]])), 0.003)
+        assert len(fewer.coords) >= 0.9 * (len(points) + 1)
+
+
+def test_ends_lie_on_the_rib_planes(job):
+    plane, t = job.web.plane, job.record.web.thickness
+    for face, n in zip(job.web.faces, (-t / 2, t / 2), strict=True):
+        for line in (face.top, face.bottom):
+            for (s, h), rib in zip(line[[0, -1]], job.record.web.ends, strict=True):
+                assert plane.point(s, h, n)[1] == pytest.approx(rib, abs=1e-4)
+
+
+def test_a_pin_pushed_square_through_the_sheet_hits_both_faces(job):
+    front, rear = web_blank(job)
+    assert len(front.holes) == len(rear.holes) >= 3
+    for a, b in zip(front.holes, rear.holes, strict=True):
+        assert (-a.x, a.y) == pytest.approx((b.x, b.y), abs=1e-12)
+    for drawing in (front, rear):
+        inside = shapely.Polygon(outline(drawing))
+        assert all(inside.contains(shapely.Point(h.x, h.y).buffer(h.diameter)) for h in drawing.holes)
+
+
+def test_ticks_stand_every_50_mm_or_2_in_with_the_local_bevel(job):
+    step = 50.8 if job.record.units == "in" else 50.0
+    rear = web_blank(job)[1]
+    bevels = [t for t in rear.labels if t.text.endswith("°") and not t.text.startswith("saw")]
+    rows = {round(row.s, 6): row for row in job.rows(np.arange(1, int(job.web.plane.length / step) + 1) * step)}
+    for s, row in rows.items():
+        here = sorted((t for t in bevels if abs(t.x - s) < 1e-6), key=lambda t: t.y)
+        assert [float(t.text[:-1]) for t in here] == [
+            pytest.approx(row.bottom.bevel, abs=0.0501),
+            pytest.approx(row.top.bevel, abs=0.0501),
+        ]
+    marks = [s.points for s in rear.strokes if len(s.points) == 2 and s.points[0, 0] == s.points[1, 0]]
+    assert {round(m[0, 0], 6) for m in marks} >= set(rows)
+
+
+@pytest.mark.parametrize("hand", ["right", "left"])
+def test_sheets_carry_what_the_workshop_must_know(job, hand):
+    for drawing in web_blank(job, hand):
+        face = "FRONT" if "front" in drawing.name else "REAR"
+        text = "\n".join(label.text for label in drawing.labels)
+        for word in ("ROOT", "TIP", "UP", face, f"{hand} hand", job.stamp, job.record.name, job.record.web.foam):
+            assert word in text
+        assert drawing.hand == hand
+
+
+@pytest.mark.parametrize("hand", ["right", "left"])
+def test_no_lettering_lies_on_other_lettering_or_on_holes_or_crosses_the_outline(job, hand):
+    for drawing in web_blank(job, hand):
+        boxes = [label.box() for label in drawing.labels]
+        for a, b in combinations(range(len(boxes)), 2):
+            assert not boxes[a].intersects(boxes[b]), (drawing.labels[a].text, drawing.labels[b].text)
+        ring = shapely.Polygon(outline(drawing)).exterior
+        for label, box in zip(drawing.labels, boxes, strict=True):
+            assert not box.intersects(ring), label.text
+            for hole in drawing.holes:
+                assert not box.intersects(shapely.Point(hole.x, hole.y).buffer(hole.diameter / 2)), label.text
+
+
+def test_the_left_hand_is_the_mirror_image(job):
+    for right, left in zip(web_blank(job, "right"), web_blank(job, "left"), strict=True):
+        a, b = (shapely.Polygon(outline(d) * f) for d, f in ((right, [1, 1]), (left, [-1, 1])))
+        assert a.symmetric_difference(b).area == pytest.approx(0.0, abs=1e-9)
+
+
+def test_a_square_cut_has_one_outline_but_for_its_ends():
+    job = jobs.load(EXAMPLES / "highmoor.toml")
+    built = job.fit(job.cant, job.survey(job.cant), "square")
+    front, rear = built.faces
+    s = np.linspace(20.0, built.plane.length - 20.0, 100)
+    for a, b in ((front.top, rear.top), (front.bottom, rear.bottom)):
+        np.testing.assert_allclose(np.interp(s, *a.T), np.interp(s, *b.T), atol=1e-9)
+
+
+def test_a_set_bevel_shows_where_the_saw_is_set_and_to_what():
+    job = jobs.load(EXAMPLES / "saltpan.toml")
+    for drawing in web_blank(job):
+        said = sorted(t.text for t in drawing.labels if t.text.startswith("saw"))
+        runs = [run for side in web.SIDES for run in job.web.cut(side).runs]
+        assert said == sorted(f"saw {np.degrees(run.angle):+.2f}°".replace("+0.00", "0.00") for run in runs)
