@@ -4,16 +4,18 @@ from __future__ import annotations
 
 import os
 import sys
-from collections.abc import Callable
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any, NoReturn, TypeVar
 
 import typer
 
 if TYPE_CHECKING:
+    from .export.bundle import Options
+    from .export.cover import Revision
     from .geom.drawing import Hand
     from .geom.seat import Treatment
     from .shop.job import Job
+    from .shop.nesting import Nesting
     from .shop.stock import Paper
     from .shop.units import Units
 
@@ -22,6 +24,8 @@ AsJson = Annotated[bool, typer.Option("--json", help="Print JSON: lengths in mm,
 AsCsv = Annotated[bool, typer.Option("--csv", help="Print CSV: lengths in mm, angles in degrees, masses in grams.")]
 
 _Value = TypeVar("_Value")
+_PATHS = ("csv", "nc")  # formats of a path, not of a drawing
+_MESHES = ("stl", "3mf", "glb")
 
 app = typer.Typer(
     name="wrywing",
@@ -61,7 +65,7 @@ def check(wing: WingPath, as_json: AsJson = False) -> None:
     """Say what a wing file describes and what is doubtful about it."""
     from dataclasses import asdict
 
-    from .export import table
+    from .export import table, table_strength
     from .shop import describe
 
     job = _job(wing)
@@ -69,9 +73,11 @@ def check(wing: WingPath, as_json: AsJson = False) -> None:
         typer.echo(table.to_json(asdict(describe.facts(job))))
         return
     for what, figures in describe.lines(job):
-        typer.echo(f"{what:<9} {figures}")
+        _say(what, figures)
     for doubt in describe.doubts(job):
-        typer.echo(f"{'doubt':<9} {doubt}")
+        _say("doubt", doubt)
+    for shown in table_strength.tables(job):
+        _show(shown)
 
 
 @app.command()
@@ -137,61 +143,120 @@ def weigh(
         typer.echo(table.WEIGHED_NOTE)
         typer.echo(verdict.sentence)
         typer.echo(scales.saving_sentence(saving, job))
+        for what, figures in scales.cautions(job):
+            _say(what, figures)
 
 
 @app.command()
 def templates(
     wing: WingPath,
     out: Annotated[Path, typer.Option(help="The folder to write into.", show_default=False)],
-    formats: Annotated[str, typer.Option(help="Any of dxf,svg,pdf.")] = "dxf,svg,pdf",
+    formats: Annotated[
+        str, typer.Option(help="Drawings: dxf,svg,pdf; csv: lists and a wire's path; nc: that path; solids: stl,3mf,glb.")
+    ] = "dxf,svg,pdf,csv,nc",
     hand: Annotated[str, typer.Option(help="right, left or both: right,left.")] = "right",
-    paper: Annotated[str | None, typer.Option(help="a4, letter, ...; a4, or letter for a file in inches.")] = None,
+    paper: Annotated[
+        str | None, typer.Option(help='a4 to a0, letter, legal, tabloid or "roll 610 mm"; else as the wing file says.')
+    ] = None,
+    dxf_version: Annotated[str, typer.Option(help="R12 for old controllers, R2000 or R2010.")] = "R2010",
+    arcs: Annotated[bool, typer.Option("--arcs", help="DXF: arcs where they replace many points.")] = False,
+    kerf: Annotated[str, typer.Option(help="DXF: what a laser burns away, 0.2mm; cuts are moved by half.")] = "0",
 ) -> None:
     """Write every drawing at full size."""
-    from .export import folder
+    from .export import bundle, contours, folder, tiles
     from .shop import sheets
+    from .shop.nesting import nestings
+    from .shop.sheets_stock import stock_sheets
 
     job = _job(wing)
-    writers = _writers(job, _paper(job, paper))
-    kinds = _list_of(formats, {kind: (kind, write) for kind, write in writers.items()}, "--formats")
+    kinds = _list_of(formats, {kind: kind for kind in (*bundle.FORMATS, *_PATHS, *_MESHES)}, "--formats")
     hands: list[Hand] = _list_of(hand, {"right": "right", "left": "left"}, "--hand")
-    files: dict[str, bytes] = {}
-    records = []
+    options = _options(job, paper, dxf_version, arcs, kerf)
+    laid = nestings(job, hands)
+    drawings = [drawing for side in hands for drawing in sheets.drawings(job, side)]
+    drawings += stock_sheets(job, laid, hands)
+    try:
+        made = bundle.build(drawings, [k for k in kinds if k in bundle.FORMATS], options, _revision(job))
+    except tiles.PaperError as fault:
+        raise (UsageError(f"--paper: {fault}") if paper else job.error("paper.size", str(fault))) from None
+    except contours.KerfError as fault:
+        raise UsageError(f"--kerf: {fault}") from None
     for side in hands:
-        for drawing in sheets.drawings(job, side):
-            for kind, write in kinds:
-                path = f"{drawing.name}-{drawing.hand}.{kind}"
-                files[path] = write(drawing)
-                records.append({"path": path, "format": kind, "drawing": drawing.name, "hand": drawing.hand})
-    folder.write(out, files, records, stamp=job.stamp)
-    typer.echo(f"wrote {len(files)} files and manifest.json to {out}")
+        for kind in (k for k in kinds if k in _PATHS):
+            for name, content in _paths(job, kind, side):
+                made.add(f"{name}-{side}.{kind}", kind, name, side, content)
+        for kind, name, content in _meshes(job, [k for k in kinds if k in _MESHES], side):
+            made.add(f"{name}-{side}.{kind}", kind, name, side, content)
+    for name, content in _lists(job, laid if len(hands) == 2 else None) if "csv" in kinds else ():
+        made.add(f"{name}.csv", "csv", name, "both", content)
+    folder.write(out, made.files, made.records, stamp=job.stamp)
+    typer.echo(f"wrote {len(made.files)} files and manifest.json to {out}")
 
 
-def _writers(job: Job, paper: Paper) -> dict[str, Callable[[Any], bytes]]:
-    """How each format is written; a format's library is imported when its first drawing comes."""
+def _options(job: Job, paper: str | None, version: str, arcs: bool, kerf: str) -> Options:
+    from .export.bundle import Options
+    from .export.dxf import VERSIONS
+    from .export.pdf import Print
 
-    def dxf(drawing: Any) -> bytes:
-        from .export import dxf
+    units = job.record.units
+    how = Print(_paper(job, paper), units, job.record.paper.printed(units))
+    burnt = _length(job, kerf, "--kerf")
+    if not 0.0 <= burnt <= 10.0:
+        raise UsageError(f"--kerf: wanted a length from 0 to 10 mm, got {kerf!r}")
+    return Options(how, _one_of(version.upper(), {v: v for v in VERSIONS}, "--dxf-version"), arcs, burnt)
 
-        return dxf.render(drawing, wing=job.record.name)
 
-    def svg(drawing: Any) -> bytes:
-        from .export import svg
+def _revision(job: Job) -> Revision:
+    from .export.cover import Revision
 
-        return svg.render(drawing, wing=job.record.name)
+    return Revision(job.record.name, job.stamp, job.record.date.isoformat() if job.record.date else "")
 
-    def pdf(drawing: Any) -> bytes:
-        from .export import pdf
 
-        return pdf.render(drawing, paper, wing=job.record.name, units=job.record.units)
+def _paths(job: Job, kind: str, hand: Hand) -> list[tuple[str, bytes]]:
+    """Name and content of each path of the hot wire; none where no machine is stated."""
+    from .export import wire
 
-    return {"dxf": dxf, "svg": svg, "pdf": pdf}
+    render = {"csv": wire.to_csv, "nc": wire.to_rs274}[kind]
+    return [(wire.name(found), render(job, found, hand)) for found in job.wire_paths]
+
+
+def _meshes(job: Job, kinds: list[str], hand: Hand) -> list[tuple[str, str, bytes]]:
+    """Format, name and content of each file of solids."""
+    if not kinds:
+        return []
+    from .export import mesh
+    from .shop.solids import solids
+
+    found, words = solids(job, hand), {"wing": job.record.name, "stamp": job.stamp}
+    return [(kind, name, content) for kind in kinds for name, content in mesh.files(found, kind, **words)]
+
+
+def _lists(job: Job, laid: list[Nesting] | None) -> list[tuple[str, bytes]]:
+    """Name and content of the cut list and the shopping list, which are for both hands."""
+    from dataclasses import asdict
+
+    from .export.table import to_csv
+    from .shop import cutlist, nesting, shopping
+
+    laid = nesting.nestings(job) if laid is None else laid
+    cuts = cutlist.cut_list(job, laid)
+    tables = {"cut-list": cuts, "shopping-list": shopping.shopping_list(job, laid, cuts)}
+    return [(name, to_csv([asdict(row) for row in rows]).encode()) for name, rows in tables.items()]
 
 
 def _job(wing: Path) -> Job:
     from .shop import job
 
     return job.load(wing)
+
+
+def _say(what: str, figures: str) -> None:
+    """Print figures beside what they are, broken before the hundredth column."""
+    import textwrap
+    from itertools import zip_longest
+
+    lines = textwrap.wrap(figures, 90, break_long_words=False, break_on_hyphens=False)
+    typer.echo("\n".join(f"{head:<10}{line}" for head, line in zip_longest([what], lines, fillvalue="")))
 
 
 def _show(shown: Any) -> None:
@@ -270,8 +335,9 @@ def _cants(job: Job, cant: str | None) -> list[float | str]:
 def _paper(job: Job, name: str | None) -> Paper:
     from .shop import stock
 
+    units = job.record.units
     try:
-        return stock.paper(name or ("letter" if job.record.units == "in" else "a4"))
+        return stock.paper(name or job.record.paper.size or ("letter" if units == "in" else "a4"), units)
     except ValueError as fault:
         raise UsageError(f"--paper: wanted {fault}") from None
 

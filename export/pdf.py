@@ -3,75 +3,101 @@
 from __future__ import annotations
 
 import io
-from typing import Literal
+from dataclasses import dataclass
 
 import numpy as np
 import shapely
-from numpy.typing import NDArray
 from reportlab.pdfbase.pdfmetrics import stringWidth
 from reportlab.pdfgen.canvas import Canvas
+from reportlab.pdfgen.pathobject import PDFPathObject
 
 from ..geom import lettering
-from ..geom.drawing import Drawing, Hole, Label, Role, Stroke
-from .furniture import CAP, LEAST_WINDOW, MARGINS, Furniture
-from .style import INKS, MILLIMETRES_PER_INCH, identity, one_line, title
+from ..geom.drawing import DIGITS, Drawing, Hole, Label, Role, Stroke
+from ..shop.stock import CHECK_BARS
+from ..shop.units import MM_PER_INCH, Units
+from .furniture import LEAST_WINDOW, MARGINS, Furniture
+from .marks import CAP, begin, open_file
+from .style import INKS, identity, one_line, title
 from .tiles import Paper, Shapes, Tile, clip, plan
 
-_POINT = MILLIMETRES_PER_INCH / 72.0  # PDF's unit (ISO 32000-1, 8.3.2.3), in mm
+_ROUND = 20.0  # sides of a quarter of a hole of radius 1 mm, four times as many for 16: within a thousandth of a mm
 
 
-def render(drawing: Drawing, paper: Paper, *, wing: str = "", units: Literal["mm", "in"] = "mm") -> bytes:
-    """`drawing` as a PDF file of as few pages as will hold it at full size.
+@dataclass(frozen=True)
+class Print:
+    """How drawings are printed.
+
+    Attributes
+    ----------
+    paper
+        The sheets to print on, used upright or sideways, or a roll.
+    units
+        Check bars of 100 mm, or of 4 in.
+    printed
+        How long the printer makes what should be 1 mm, across the sheet and along it; every page makes up for it.
+    """
+
+    paper: Paper
+    units: Units = "mm"
+    printed: tuple[float, float] = (1.0, 1.0)
+
+    @property
+    def corrected(self) -> str:
+        """What the pages say of a correction; nothing without one."""
+        if self.printed == (1.0, 1.0):
+            return ""
+        bar, digits = CHECK_BARS[self.units], 3 if self.units == "in" else 2
+        scale = MM_PER_INCH if self.units == "in" else 1.0
+        x, y = (f"{bar * p / scale:.{digits}f}".rstrip("0").rstrip(".") for p in self.printed)
+        return f"corrected for bars of x {x}, y {y} {self.units}"
+
+
+def render(drawing: Drawing, how: Print, *, wing: str = "") -> bytes:
+    """`drawing` as a PDF file; see `paged`."""
+    return paged(drawing, how, wing=wing)[0]
+
+
+def paged(drawing: Drawing, how: Print, *, wing: str = "") -> tuple[bytes, int]:
+    """`drawing` as a PDF file of as few pages as will hold it at full size, and how many these are.
 
     Parameters
     ----------
     drawing
-        What to write.
-    paper
-        The sheets to print on, used upright or sideways.
+        What to write, cleaned by `contours.clean`.
+    how
+        Paper, units and the printer's error.
     wing
         The wing's name, for the foot of every page.
-    units
-        Check bars of 100 mm, or of 4 in.
 
     Returns
     -------
-    bytes
+    bytes, int
         The file asks viewers not to scale it (ISO 32000-1, 12.2) and printers to use one side only.
 
     Raises
     ------
-    ValueError
+    PaperError
         If the paper is too small to hold what every page needs.
     """
     pen = _PdfPen()
     drawing.play(pen)
     shapes = np.array(pen.shapes, dtype=object)
-    layout = plan(shapes, paper, margins=MARGINS, least=LEAST_WINDOW)
+    layout = plan(shapes, how.paper, margins=MARGINS, least=LEAST_WINDOW, printed=how.printed)
     buffer = io.BytesIO()
-    size = (layout.width / _POINT, layout.height / _POINT)
-    # not compressed: zlib's output differs from one machine to the next
-    canvas = Canvas(buffer, pagesize=size, pageCompression=0, invariant=1, lang="en")
-    _describe(canvas, drawing, wing)
+    canvas = open_file(buffer, title(drawing, wing), identity(drawing))
+    who = identity(drawing) + (", print corrected" if how.corrected else "")
     for number, tile in enumerate(layout.tiles, start=1):
-        canvas.scale(1.0 / _POINT, 1.0 / _POINT)
-        canvas.setLineCap(1)
-        canvas.setLineJoin(1)
+        begin(canvas, layout.page)
         _show(canvas, tile, pen, shapes)
-        page = f"page {number} of {len(layout.tiles)}"
-        _furnish(Furniture(canvas, layout, tile), shapes, drawing, wing, units, page)
+        furniture = Furniture(canvas, layout, tile)
+        furniture.frame()
+        furniture.register(shapes)
+        furniture.seams()
+        furniture.bars(how.units, how.corrected)
+        furniture.foot(one_line(drawing.title), one_line(wing), who, f"page {number} of {len(layout.tiles)}")
         canvas.showPage()
     canvas.save()
-    return buffer.getvalue()
-
-
-def _describe(canvas: Canvas, drawing: Drawing, wing: str) -> None:
-    canvas.setTitle(title(drawing, wing))
-    canvas.setAuthor("wrywing")
-    canvas.setCreator("wrywing")
-    canvas.setSubject(identity(drawing))
-    canvas.setViewerPreference("PrintScaling", "None")
-    canvas.setViewerPreference("Duplex", "Simplex")
+    return buffer.getvalue(), len(layout.tiles)
 
 
 class _PdfPen:
@@ -80,8 +106,8 @@ class _PdfPen:
     def __init__(self) -> None:
         self.shapes: list[shapely.LineString] = []
         self.roles: list[Role] = []
-        self.holes: dict[int, Hole] = {}
         self.labels: list[Label] = []
+        self.middles: list[tuple[float, float]] = []
 
     def _take(self, shape: shapely.LineString, role: Role) -> None:
         self.shapes.append(shape)
@@ -89,54 +115,52 @@ class _PdfPen:
 
     def stroke(self, stroke: Stroke) -> None:
         shape = shapely.LinearRing if stroke.closed else shapely.LineString
-        self._take(shape(stroke.points), stroke.role)
+        self._take(shape(np.round(stroke.points, DIGITS) + 0.0), stroke.role)  # PDF knows no exponents
 
     def hole(self, hole: Hole) -> None:
-        self.holes[len(self.shapes)] = hole
-        self._take(shapely.Point(hole.x, hole.y).buffer(hole.diameter / 2.0, quad_segs=64).exterior, hole.role)
+        radius = hole.diameter / 2.0
+        turn = np.linspace(0.0, 2.0 * np.pi, 4 * int(np.ceil(_ROUND * np.sqrt(radius))), endpoint=False)
+        ring = [hole.x, hole.y] + radius * np.column_stack([np.cos(turn), np.sin(turn)])
+        self.stroke(Stroke(ring, hole.role, closed=True))
 
     def label(self, label: Label) -> None:
         self.labels.append(label)
-        for line in label.strokes():
-            self._take(shapely.LineString(line), label.role)
+        middle = label.box().centroid
+        self.middles.append((middle.x, middle.y))
+        lines = label.strokes()
+        if lines:
+            of = np.repeat(np.arange(len(lines)), [len(line) for line in lines])
+            self.shapes += shapely.linestrings(np.concatenate(lines), indices=of).tolist()
+            self.roles += [label.role] * len(lines)
 
 
 def _show(canvas: Canvas, tile: Tile, pen: _PdfPen, shapes: Shapes) -> None:
     """Draw what the tile's window shows, and its words again, unseen, to be searched and copied."""
     canvas.saveState()
     canvas.translate(MARGINS[0] - tile.window[0], MARGINS[1] - tile.window[1])
+    paths: dict[Role, list[str]] = {role: [] for role in Role}
     for index, parts in clip(shapes, tile.window):
-        ink = INKS[pen.roles[index]]
-        canvas.setStrokeColor(ink.hex)
-        canvas.setLineWidth(ink.width)
-        canvas.setDash(list(ink.dashes))
-        hole = pen.holes.get(index)
-        if hole and _closed(parts[0]):
-            canvas.circle(hole.x, hole.y, hole.diameter / 2.0)
-            continue
         for part in parts:
-            _polyline(canvas, part)
-    frame = shapely.box(*tile.window)
-    for label in pen.labels:
-        if label.text.strip() and frame.contains(label.box().centroid):
+            paths[pen.roles[index]] += _polyline(part.tolist())
+    for role, path in paths.items():
+        if path:
+            ink = INKS[role]
+            canvas.setStrokeColor(ink.hex)
+            canvas.setLineWidth(ink.width)
+            canvas.setDash(list(ink.dashes))
+            canvas.drawPath(PDFPathObject(path))
+    x0, y0, x1, y1 = tile.window
+    for label, (x, y) in zip(pen.labels, pen.middles, strict=True):
+        if x0 <= x < x1 and y0 <= y < y1 and label.text.strip():
             _unseen(canvas, label)
     canvas.restoreState()
 
 
-def _closed(points: NDArray[np.float64]) -> bool:
-    return len(points) > 3 and np.array_equal(points[0], points[-1])
-
-
-def _polyline(canvas: Canvas, points: NDArray[np.float64]) -> None:
-    closed = _closed(points)
-    first, *others = (points[:-1] if closed else points).tolist()
-    path = canvas.beginPath()
-    path.moveTo(*first)
-    for point in others:
-        path.lineTo(*point)
-    if closed:
-        path.close()
-    canvas.drawPath(path)
+def _polyline(points: list[list[float]]) -> list[str]:
+    """Operators of a path (ISO 32000-1, 8.5.2)."""
+    closed = len(points) > 3 and points[0] == points[-1]
+    steps = [f"{x} {y} l" for x, y in (points[:-1] if closed else points)]
+    return [f"{steps[0][:-1]}m", *steps[1:], *["h"] * closed]
 
 
 def _unseen(canvas: Canvas, label: Label) -> None:
@@ -145,7 +169,7 @@ def _unseen(canvas: Canvas, label: Label) -> None:
     size = label.height / CAP
     c, s = np.cos(np.radians(label.angle)), np.sin(np.radians(label.angle))
     text = canvas.beginText()
-    text.setTextTransform(c, s, -s, c, *label.place([[0.0, 0.0]])[0])
+    text.setTextTransform(c, s, -s, c, *np.round(label.place([[0.0, 0.0]])[0], DIGITS).tolist())
     text.setTextRenderMode(3)
     text.setFont("Helvetica", size)
     text.setHorizScale(100.0 * lettering.width(words, label.height) / stringWidth(words, "Helvetica", size))
@@ -153,13 +177,3 @@ def _unseen(canvas: Canvas, label: Label) -> None:
     canvas.saveState()
     canvas.drawText(text)
     canvas.restoreState()
-
-
-def _furnish(
-    furniture: Furniture, shapes: Shapes, drawing: Drawing, wing: str, units: Literal["mm", "in"], page: str
-) -> None:
-    furniture.frame()
-    furniture.register(shapes)
-    furniture.seams()
-    furniture.bars(units)
-    furniture.foot(one_line(drawing.title), one_line(wing), identity(drawing), page)

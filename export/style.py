@@ -6,8 +6,7 @@ from dataclasses import dataclass
 
 from ..geom.drawing import Drawing, Role
 
-MILLIMETRES_PER_INCH = 25.4
-_HANDS = {"right": "right-hand panel", "left": "left-hand panel", "both": "either hand"}
+_HANDS = {"right": "right-hand panel", "left": "left-hand panel", "both": "both hands"}
 
 
 @dataclass(frozen=True)

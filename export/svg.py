@@ -88,5 +88,5 @@ def _number(value: float) -> float:
 
 
 def _path(points: NDArray[np.float64], closed: bool = False) -> str:
-    steps = (np.round(points * [1.0, -1.0], 3) + 0.0).tolist()
-    return "M" + " ".join(f"{x},{y}" for x, y in steps) + ("Z" if closed else "")
+    steps = [f"{x},{y}" for x, y in (np.round(points * [1.0, -1.0], 3) + 0.0).tolist()]
+    return "M" + " ".join(steps) + ("Z" if closed else "")

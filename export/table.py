@@ -14,7 +14,7 @@ import numpy as np
 
 from ..geom.web import SIDES
 from ..shop.job import EdgeRow, Job, Row
-from ..shop.weigh import Candidate, Saving, Verdict
+from ..shop.weigh import Candidate, Saving, Verdict, cautions
 from ..shop.wording import degrees
 
 if TYPE_CHECKING:
@@ -26,6 +26,7 @@ WEIGHED_NOTE = (
     "an edge; other: what bonds the web and lies on it; limits: met, or the ones that are broken"
 )
 _SHORT = {"max_gap": "gap", "max_bevel": "bevel", "min_thickness": "thin", "max_mass": "heavy"}
+_SHORT |= {"core in shear": "core", "facings in shear": "facing"}  # their names among the checks of strength
 
 
 @dataclass(frozen=True)
@@ -152,7 +153,7 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
         mark = "→" if c is verdict.chosen else ""
         start = (mark, words.plain(c.thickness), c.edge, degrees(c.cant))
         if c.outside:
-            rows.append((*start, *[""] * 8, "no room"))
+            rows.append((*start, *[""] * 8, c.refused or ""))
             continue
         rows.append(
             (
@@ -174,7 +175,7 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
 
 
 def _verdict(job: Job, candidate: Candidate) -> str:
-    if job.record.limits is None:
+    if job.record.limits is None and not candidate.misses:
         return ""
     return ", ".join(_SHORT[miss.limit] for miss in candidate.misses) or "met"
 
@@ -187,7 +188,7 @@ def weighed_record(job: Job, found: Sequence[Candidate], verdict: Verdict, savin
         "candidates": candidate_records(found, verdict),
         "verdict": verdict.sentence,
         "saving": None if saving is None else asdict(saving),
-    }
+    } | dict(cautions(job))
 
 
 def candidate_records(found: Sequence[Candidate], verdict: Verdict) -> list[dict[str, Any]]:

@@ -9,11 +9,13 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from itertools import product
-from typing import Any, Protocol
+from typing import Any, Literal, Protocol
 
 import numpy as np
 import shapely
 from numpy.typing import NDArray
+
+from ..geom.drawing import DIGITS
 
 Place = tuple[int, int]  # row and column
 Box = tuple[float, float, float, float]
@@ -23,6 +25,7 @@ OVERLAP = 10.0  # width of the glue strip, mm
 _PAD = 1.0  # white between the drawing and the outermost windows, mm
 _SHIFTS = (0.5, 0.0, 1.0, 0.25, 0.75)  # where in its play the grid may lie, centred first
 _SLIVER = 1e-3  # what stands this little over a sheet's edge is not worth a sheet, mm
+_LONGEST = 5080.0  # of a page cut off a roll: 14400 units (ISO 32000-1, annex C), mm
 
 
 class Paper(Protocol):
@@ -39,6 +42,42 @@ class Paper(Protocol):
     @property
     def height(self) -> float:
         """Height in mm."""
+
+
+class PaperError(ValueError):
+    """A paper that cannot take what every page needs, in one line."""
+
+
+@dataclass(frozen=True)
+class Page:
+    """A sheet held one way.
+
+    Attributes
+    ----------
+    wide, high
+        Its size in mm.
+    axes
+        Which of the paper's own directions run across and up: x is across a sheet held upright, or across a roll.
+    printed
+        How long the printer makes what should be 1 mm, across and up.
+    """
+
+    wide: float
+    high: float
+    axes: Literal["xy", "yx"] = "xy"
+    printed: tuple[float, float] = (1.0, 1.0)
+
+    @property
+    def usable(self) -> tuple[float, float]:
+        """Width and height in mm that come out in print, whichever way the printer errs."""
+        x, y = self.printed
+        return round(self.wide * min(1.0, x), 3), round(self.high * min(1.0, y), 3)
+
+    @property
+    def inset(self) -> tuple[float, float]:
+        """Where what is usable starts, in mm of the print from the page's lower left corner: it lies in the middle."""
+        (wide, high), (x, y) = self.usable, self.printed
+        return (self.wide * x - wide) / 2.0, (self.high * y - high) / 2.0
 
 
 @dataclass(frozen=True)
@@ -74,53 +113,73 @@ class Tile:
 
 @dataclass(frozen=True)
 class Layout:
-    """The page size in mm and the sheets that are needed, row by row."""
+    """The page and the sheets of it that are needed, row by row."""
 
-    width: float
-    height: float
+    page: Page
     tiles: tuple[Tile, ...]
+
+    @property
+    def area(self) -> float:
+        """Paper that is used, mm^2."""
+        return len(self.tiles) * self.page.wide * self.page.high
 
     def find(self, row: int, column: int) -> Tile | None:
         """Return the sheet at that place, if it is one of those needed."""
         return next((t for t in self.tiles if (t.row, t.column) == (row, column)), None)
 
 
-def plan(shapes: Shapes, paper: Paper, *, margins: Box, least: tuple[float, float]) -> Layout:
-    """Find the upright or sideways grid that needs the fewest sheets.
+def plan(
+    shapes: Shapes, paper: Paper, *, margins: Box, least: tuple[float, float], printed: tuple[float, float] = (1.0, 1.0)
+) -> Layout:
+    """Find the upright or sideways grid that needs the fewest sheets, then the least paper.
 
     Parameters
     ----------
     shapes
         Lines and rings of the drawing, in mm.
     paper
-        The sheet.
+        The sheet, or a roll, of which pages as long as the drawing are cut.
     margins
         What is kept free at the left, bottom, right and top of every page, in mm.
     least
         Smallest window that will do: width and height in mm.
+    printed
+        How long the printer makes what should be 1 mm, across the sheet and along it.
 
     Raises
     ------
-    ValueError
+    PaperError
         If the paper is too small for the margins and the smallest window.
     """
     tree = shapely.STRtree(shapes)
     x0, y0, x1, y1 = map(float, shapely.total_bounds(shapes))
     bounds = (x0 - _PAD, y0 - _PAD, x1 + _PAD, y1 + _PAD)
-    sizes = [(min(paper.width, paper.height), max(paper.width, paper.height))]
-    sizes.insert(int(y1 - y0 >= x1 - x0), sizes[0][::-1])
+    around = margins[0] + margins[2], margins[1] + margins[3]
+    lengths = [max(size + 2.0 * _PAD, low) + m for size, low, m in zip((x1 - x0, y1 - y0), least, around, strict=True)]
+    pages = _pages(paper, lengths, printed)
     layouts = []
-    for wide, high in dict.fromkeys(sizes):
-        window = wide - margins[0] - margins[2], high - margins[1] - margins[3]
+    for page in pages if x1 - x0 > y1 - y0 else pages[::-1]:
+        window = page.usable[0] - around[0], page.usable[1] - around[1]
         if window[0] >= least[0] and window[1] >= least[1]:
-            layouts += [Layout(wide, high, _needed(tree, grid)) for grid in _grids(bounds, window)]
+            layouts += [Layout(page, _needed(tree, grid)) for grid in _grids(bounds, window)]
     if not layouts:
-        need = least[0] + margins[0] + margins[2], least[1] + margins[1] + margins[3]
-        raise ValueError(
-            f"paper {paper.name}: wanted at least {need[0]:g} x {need[1]:g} mm, "
-            f"got {paper.width:g} x {paper.height:g} mm"
-        )
-    return min(layouts, key=lambda layout: len(layout.tiles))
+        raise PaperError(_too_small(paper, least[0] + around[0], least[1] + around[1]))
+    return min(layouts, key=lambda layout: (len(layout.tiles), layout.area))
+
+
+def _pages(paper: Paper, lengths: Sequence[float], printed: tuple[float, float]) -> tuple[Page, Page]:
+    """The paper held sideways and upright; a page off a roll is as long as the drawing, `lengths` across and up."""
+    short, long = sorted((paper.width, paper.height))
+    ends = [long, long]
+    if np.isinf(long):
+        ends = [min(_LONGEST, float(np.ceil(length / min(1.0, printed[1])))) for length in lengths]
+    return Page(ends[0], short, "yx", printed[::-1]), Page(short, ends[1], "xy", printed)
+
+
+def _too_small(paper: Paper, wide: float, high: float) -> str:
+    if np.isinf(paper.height):
+        return f"paper {paper.name}: wanted a roll at least {min(wide, high):g} mm wide, got {paper.width:g} mm"
+    return f"paper {paper.name}: wanted at least {wide:g} x {high:g} mm, got {paper.width:g} x {paper.height:g} mm"
 
 
 def _grids(bounds: Box, window: tuple[float, float]) -> Iterator[list[Tile]]:
@@ -131,7 +190,7 @@ def _grids(bounds: Box, window: tuple[float, float]) -> Iterator[list[Tile]]:
     rows = max(1, int(np.ceil((y1 - y0 - OVERLAP) / step[1])))
     play = columns * step[0] + OVERLAP - (x1 - x0), rows * step[1] + OVERLAP - (y1 - y0)
     for down, across in product(_SHIFTS, _SHIFTS):
-        left, top = x0 - across * play[0], y1 + down * play[1]
+        left, top = round(x0 - across * play[0], 3), round(y1 + down * play[1], 3)
         yield [
             Tile(
                 row,
@@ -181,15 +240,18 @@ def clip(shapes: Shapes, window: Box) -> list[tuple[int, list[NDArray[np.float64
     -------
     list of (index, polylines)
         For each shape that shows, its place in `shapes` and its visible parts, each (k, 2) in mm. What lies
-        wholly inside comes back as it is.
+        wholly inside comes first and as it is.
     """
     frame = shapely.box(*window)
-    out = []
-    for index in np.flatnonzero(shapely.intersects(shapes, frame)):
-        shape = shapes[index]
-        if not frame.covers(shape):
-            shape = shapely.line_merge(shape.intersection(frame))
-        parts = [shapely.get_coordinates(p) for p in shapely.get_parts(shape) if p.length > _SLIVER]
+    shapely.prepare(frame)
+    seen = np.flatnonzero(shapely.intersects(frame, shapes))
+    inside = shapely.covers(frame, shapes[seen])
+    points, of = shapely.get_coordinates(shapes[seen[inside]], return_index=True)
+    whole = np.split(points, np.flatnonzero(np.diff(of)) + 1)
+    out = [(int(index), [line]) for index, line in zip(seen[inside], whole, strict=False)]
+    for index in seen[~inside]:
+        cut = shapely.line_merge(shapes[index].intersection(frame))
+        parts = [np.round(shapely.get_coordinates(p), DIGITS) for p in shapely.get_parts(cut) if p.length > _SLIVER]
         if parts:
             out.append((int(index), parts))
     return out

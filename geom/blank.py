@@ -8,7 +8,7 @@ from typing import Literal
 import numpy as np
 from numpy.typing import NDArray
 
-from .seat import Cut
+from .seat import Along, Cut
 from .web import Plane
 
 Array = NDArray[np.float64]
@@ -51,25 +51,38 @@ class Face:
 
 def face(web: Plane, top: Cut, bottom: Cut, name: FaceName) -> Face:
     """One face of the sheet, its edges cut and its ends at the rib planes."""
-    return Face(name, _edge_line(web, top, name), _edge_line(web, bottom, name))
+    return layer(web, top, bottom, top.survey.n[..., 0 if name == "front" else -1], name)
 
 
-def rib_line(web: Plane, of: Face, thickness: float, y: float) -> Array:
-    """(2, 2) the line from the bottom to the top edge of a face along which the rib plane `y` meets it."""
-    n = (-0.5 if of.name == "front" else 0.5) * thickness
+def layer(web: Plane, top: Cut, bottom: Cut, n: Array, name: FaceName) -> Face:
+    """The layer of the web at places `n` (C, 3) across its thickness, drawn as a face that is looked at from `name`."""
+    return Face(name, _edge_line(web, top, n), _edge_line(web, bottom, n))
+
+
+def rib_line(web: Plane, of: Face, n: Along, y: float) -> Array:
+    """(2, 2) the line from the bottom to the top edge of a face along which the rib plane `y` meets it.
+
+    The face stands at `n` along s.
+    """
     ends = []
     for line in (of.bottom, of.top):
-        ahead = line[:, 0] - web.s_at_rib(y, line[:, 1], n)
-        h = float(np.interp(0.0, ahead, line[:, 1]))
-        ends.append([float(web.s_at_rib(y, h, n)), h])
+        ahead = line[:, 0] - web.s_at_rib(y, line[:, 1], n(line[:, 0]))
+        ends.append([float(np.interp(0.0, ahead, line[:, i])) for i in range(2)])
     return np.array(ends)
 
 
-def register_places(front: Face, rear: Face, *, apart: float = 500.0, inset: float = 25.0) -> Array:
+def register_places(
+    front: Face,
+    rear: Face,
+    *,
+    apart: float = 500.0,
+    inset: float = 25.0,
+    keep_off: tuple[float, float] | None = None,
+) -> Array:
     """(k, 2) places (s, h), three or more, that lie on both faces: a pin pushed square through the sheet hits both.
 
     They stand on the web line where it runs well inside the sheet, else at mid-height, and are spaced unevenly, so that
-    a face cannot be laid on end for end.
+    a face cannot be laid on end for end. One that would fall between the two places s of `keep_off` moves clear.
     """
     start = max(f.outline()[:, 0].min() for f in (front, rear)) + inset
     stop = min(f.outline()[:, 0].max() for f in (front, rear)) - inset
@@ -79,17 +92,24 @@ def register_places(front: Face, rear: Face, *, apart: float = 500.0, inset: flo
     share = np.linspace(0.0, 1.0, count)
     share[1:-1] -= 0.12 / (count - 1)
     places = []
-    for s in start + share * (stop - start):
-        low = max(f.heights(float(s))[0] for f in (front, rear))
-        high = min(f.heights(float(s))[1] for f in (front, rear))
+    for wanted in start + share * (stop - start):
+        s = _clear_of(float(wanted), keep_off, start, stop)
+        low = max(f.heights(s)[0] for f in (front, rear))
+        high = min(f.heights(s)[1] for f in (front, rear))
         margin = 0.25 * (high - low)
         places.append([s, 0.0 if low + margin < 0.0 < high - margin else (low + high) / 2.0])
     return np.array(places)
 
 
-def _edge_line(web: Plane, cut: Cut, name: FaceName) -> Array:
-    """(k, 2) one edge of one face, cut off by the rib planes at both ends."""
-    n = cut.survey.n[..., 0 if name == "front" else -1]
+def _clear_of(s: float, keep_off: tuple[float, float] | None, start: float, stop: float) -> float:
+    """`s`, or, if it falls between the two places to keep off, the one nearer to the middle of the web."""
+    if keep_off is None or not keep_off[0] < s < keep_off[1]:
+        return s
+    return keep_off[1] if sum(keep_off) < start + stop else keep_off[0]
+
+
+def _edge_line(web: Plane, cut: Cut, n: Array) -> Array:
+    """(k, 2) one edge at the layer `n` (C, 3), cut off by the rib planes at both ends."""
     line = np.column_stack([_fine(v).ravel() for v in (cut.survey.s, cut.at(n))])
     last = [cut.survey.s[-1, 2], cut.at(n)[-1, 2]]
     line = np.concatenate([line, [last]])

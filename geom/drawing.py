@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field, replace
 from enum import StrEnum
+from functools import cached_property
 from typing import Literal, Protocol
 
 import numpy as np
@@ -15,6 +16,8 @@ import shapely
 from numpy.typing import ArrayLike, NDArray
 
 from . import lettering
+
+DIGITS = 3  # decimals of a coordinate in every file: a micrometre, whatever a machine's last bits are
 
 Anchor = Literal["start", "middle", "end"]
 Hand = Literal["right", "left", "both"]
@@ -71,8 +74,13 @@ class Label:
         return np.asarray(moved + np.array([self.x, self.y]))
 
     def strokes(self) -> lettering.Strokes:
-        """Polylines of the text where it stands on the sheet."""
-        return [self.place(line) for line in lettering.strokes(self.text, self.height)]
+        """Polylines of the text where it stands on the sheet, to the micrometre."""
+        return self._strokes
+
+    @cached_property
+    def _strokes(self) -> lettering.Strokes:
+        placed = self.place(lettering.points(self.text, self.height))
+        return lettering.split(self.text, np.round(placed, DIGITS) + 0.0)
 
     def box(self) -> shapely.Polygon:
         """Rectangle that the text covers, from the foot of its descenders to the top of its brackets."""

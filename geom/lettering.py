@@ -47,6 +47,7 @@ def _glyph(char: str) -> tuple[float, tuple[NDArray[np.float64], ...]]:
     return glyph.char_width / _CAP, strokes
 
 
+@cache
 def plain(text: str) -> str:
     """`text` in the characters that can be drawn: accents dropped, what is left over a question mark.
 
@@ -55,6 +56,8 @@ def plain(text: str) -> str:
     >>> plain("Möwe − 3°, 1½ in")
     'Mowe - 3°, 1 1/2 in'
     """
+    if text.isascii() and text.isprintable():
+        return text
     # a fraction gets a space before it, or 1½ would read eleven halves
     apart = (f" {c}" if unicodedata.decomposition(c).startswith("<fraction>") else c for c in text)
     spread = unicodedata.normalize("NFKD", "".join(apart).translate(_PLAIN)).replace("\u2044", "/")
@@ -67,12 +70,27 @@ def width(text: str, height: float) -> float:
     return height * sum(_glyph(c)[0] for c in plain(text))
 
 
+@cache
+def _laid(text: str) -> tuple[NDArray[np.float64], NDArray[np.intp]]:
+    """Points (k, 2) of all strokes of a line of text with capitals of height 1, and where all but the first start."""
+    at, lines = 0.0, []
+    for char in plain(text):
+        advance, glyph = _glyph(char)
+        lines += [line + np.array([at, 0.0]) for line in glyph]
+        at += advance
+    return np.concatenate([np.empty((0, 2)), *lines]), np.cumsum([len(line) for line in lines], dtype=np.intp)[:-1]
+
+
+def points(text: str, height: float) -> NDArray[np.float64]:
+    """Points (k, 2) in mm of all of a text's strokes, one after the other, as in `strokes`."""
+    return _laid(text)[0] * height
+
+
+def split(text: str, points: NDArray[np.float64]) -> Strokes:
+    """One array for each stroke of the text, from the points of all of them."""
+    return np.split(points, _laid(text)[1]) if len(points) else []
+
+
 def strokes(text: str, height: float) -> Strokes:
     """Polylines, each (k, 2) in mm, of `text` starting at (0, 0) along +x with capitals `height` tall."""
-    out: Strokes = []
-    at = 0.0
-    for char in plain(text):
-        advance, lines = _glyph(char)
-        out += [(line + np.array([at, 0.0])) * height for line in lines]
-        at += advance
-    return out
+    return split(text, points(text, height))

@@ -46,12 +46,15 @@ class Along:
 
     def __call__(self, s: ArrayLike) -> Array:
         """Value at `s`."""
-        return np.asarray(np.interp(s, self.s, self.value))
+        return np.asarray(np.interp(np.asarray(s, dtype=float), self.s, self.value))
 
 
 def constant(value: float) -> Along:
     """The same figure all along."""
     return Along(np.zeros(1), np.array([value]))
+
+
+CENTRED = constant(0.0)
 
 
 @dataclass(frozen=True)
@@ -108,6 +111,29 @@ class Survey:
             across(self.stops),
         )
 
+    def within(self, sheet: float) -> Survey:
+        """The survey of the plain sheet, `sheet` mm thick about n = 0, inside a thickened one; read as by `thinner`."""
+        tau = lobatto(self.n.shape[-1])[0]
+        n = np.broadcast_to(sheet / 2.0 * tau, self.n.shape)
+        middle = self.n.mean(axis=-1, keepdims=True)
+        read = _lagrange(tau, (n - middle) / (self.thickness[..., None] / 2.0))
+
+        def across(found: Mapping[Side, Array]) -> Mapping[Side, Array]:
+            return {side: np.einsum("...m,m...k->...k", v, read) for side, v in found.items()}
+
+        def at_end(found: Mapping[Side, Array], place: tuple[int, int]) -> Mapping[Side, Array]:
+            return {side: v @ read[:, *place] for side, v in found.items()}
+
+        return Survey(
+            self.s,
+            np.full_like(self.thickness, sheet),
+            n,
+            across(self.skin),
+            across(self.seat),
+            at_end(self.starts, (0, 0)),
+            at_end(self.stops, (-1, 2)),
+        )
+
     def bevel_slope(self, side: Side) -> Array:
         """(C, 3) slope of the seat from the front to the rear face."""
         seat = self.seat[side]
@@ -117,9 +143,10 @@ class Survey:
         """(C,) length of each cell, mm."""
         return np.asarray(self.s[:, 2] - self.s[:, 0])
 
-    def bedding(self, side: Side) -> float:
-        """Volume between the skin's inside and the seat (bond line, caps, cover), mm^3."""
-        return float(np.sum(np.abs(self.skin[side] - self.seat[side]) * self.weight[side]))
+    def bedding(self, side: Side, share: ArrayLike = 1.0) -> float:
+        """Volume between the skin's inside and the seat (bond line, caps, cover), mm^3, or a share (C, 3) of it."""
+        deep = np.abs(self.skin[side] - self.seat[side]) * self.weight[side]
+        return float(np.sum(deep.sum(axis=-1) * share))
 
 
 @dataclass(frozen=True)
@@ -181,7 +208,7 @@ class Cut:
 
     @cached_property
     def removed(self) -> float:
-        """Foam planed off to bevel an edge first cut square at its high face: ``t^2/2 |slope|`` for each length, mm^3."""
+        """Foam planed off an edge first cut square at its high face, ``t^2/2 |slope|`` for each length; mm^3."""
         area = self.survey.thickness**2 / 2.0 * np.abs(self.slope)
         return float(np.sum(area @ (1.0, 4.0, 1.0) / 6.0 * self.survey.length()))
 
@@ -212,6 +239,7 @@ def survey(
     *,
     thickness: Along,
     depth: Mapping[Side, Along],
+    middle: Along = CENTRED,
     longest: float = 20.0,
     nodes: int = 7,
 ) -> Survey:
@@ -223,6 +251,8 @@ def survey(
         Of the sheet along s.
     depth
         For each side what lies between the skin and the edge: bond line, caps, cover; measured along the skin's normal.
+    middle
+        Where along n the middle of the thickness stands; 0 unless one face is thickened more than the other.
     longest
         No cell is longer, mm. Cells end at every station and wherever thickness or depth has a corner.
 
@@ -235,20 +265,21 @@ def survey(
     """
     tau = lobatto(nodes)[0]
     starts, stops = {}, {}
-    at_ends = [tau * thickness(s) / 2.0 for s in (0.0, web.length)]
+    at_ends = [middle(s) + tau * thickness(s) / 2.0 for s in (0.0, web.length)]
     for side in SIDES:
         starts[side] = end_places(loft, web, at_ends[0], side)[0]
         stops[side] = end_places(loft, web, at_ends[1], side)[1]
         _refuse_gaps(side, starts[side], 0.0)
         _refuse_gaps(side, stops[side], web.length)
     low, high = np.concatenate(list(starts.values())), np.concatenate(list(stops.values()))
-    corners = np.concatenate([web.s_at_rib(loft.knots, 0.0, 0.0), thickness.s, *(depth[side].s for side in SIDES)])
+    kinks = _kinks(loft, web, thickness, middle)
+    corners = np.concatenate([kinks, thickness.s, *(depth[side].s for side in SIDES)])
     bounds = _bounds(float(low.min()), float(low.max()), float(high.min()), float(high.max()), corners, longest)
     places = np.empty(2 * len(bounds) - 1)
     places[::2], places[1::2] = bounds, (bounds[1:] + bounds[:-1]) / 2.0
     cell = 2 * np.arange(len(bounds) - 1)[:, None] + np.arange(3)
     t = thickness(places)
-    n = t[:, None] / 2.0 * tau
+    n = middle(places)[:, None] + t[:, None] / 2.0 * tau
     skin = {side: edge(loft, web, places[:, None], n, side).h for side in SIDES}
     seat = {
         side: edge(loft, web, places[:, None], n, side, depth[side](places)[:, None]).h
@@ -273,14 +304,27 @@ def survey(
 
 
 def _lagrange(nodes: Array, x: Array) -> Array:
-    """(M, k) matrix that takes values at `nodes` (M,) to values at `x` (k,) of the polynomial through them."""
-    return np.asarray(np.linalg.solve(np.vander(nodes).T, np.vander(x, len(nodes)).T))
+    """(M, ...) weights that take values at `nodes` (M,) to values at `x` (...) of the polynomial through them."""
+    read = np.linalg.solve(np.vander(nodes).T, np.vander(x.ravel(), len(nodes)).T)
+    return np.asarray(read.reshape(len(nodes), *x.shape))
 
 
 def _refuse_gaps(side: Side, found: Array, s: ArrayLike) -> None:
     lost = np.isnan(found)
     if lost.any():
         raise OffSection(side, float(np.broadcast_to(s, found.shape)[lost][0]))
+
+
+def _kinks(loft: Loft, web: Plane, thickness: Along, middle: Along) -> Array:
+    """Where the web's two faces and two edges first and last cross each knot of the loft.
+
+    On a swept or canted web they cross a rib plane at different s: the kink there gets a short cell of its own.
+    """
+    s = web.s_at_rib(loft.knots, 0.0, 0.0)
+    n = middle(s)[:, None] + thickness(s)[:, None] * np.array([-0.5, 0.5])
+    heights = np.stack([edge(loft, web, s[:, None], n, side).h for side in SIDES], axis=-1)
+    crossings = web.s_at_rib(loft.knots[:, None, None], np.nan_to_num(heights), n[..., None])
+    return np.concatenate([crossings.min(axis=(1, 2)), crossings.max(axis=(1, 2))])
 
 
 def _bounds(low0: float, low1: float, high0: float, high1: float, corners: Array, longest: float) -> Array:
@@ -429,7 +473,9 @@ def _divide(best: Array, which: NDArray[np.intp], *, runs: int, aim: Aim) -> tup
         joined[0] = best[0]  # a run fewer is allowed: the rest of the edge in one
         back.append(joined.argmin(axis=0))
         total = joined.min(axis=0)
-    stop, breaks, angles = count, [], []
+    stop = count
+    breaks: list[int] = []
+    angles: list[int] = []
     for prior in [*reversed(back), np.zeros(count + 1, dtype=np.intp)]:
         start = int(prior[stop])
         breaks.insert(0, start)

@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
 from ..geom import washout
 from ..geom import web as web_geometry
 from ..geom.web import SIDES, Side
+from . import describe_core, describe_joint, describe_strength
 from .job import Job
 from .weigh import masses
 from .wording import degrees
@@ -41,6 +43,12 @@ class Facts:
     gap: float
     filler: float
     mass: float
+    strength: dict[str, Any] | None
+    joint: dict[str, Any] | None
+    flanges: list[dict[str, Any]]
+    cores: list[dict[str, Any]]
+    ribs: list[dict[str, Any]]
+    cradles: list[dict[str, Any]]
     doubts: tuple[str, ...]
 
 
@@ -75,6 +83,12 @@ def facts(job: Job) -> Facts:
         gap=built.gap,
         filler=weights.filler,
         mass=weights.total,
+        strength=describe_strength.record(job),
+        joint=describe_joint.joint_record(job),
+        flanges=describe_joint.flange_records(job),
+        cores=describe_core.core_records(job),
+        ribs=describe_core.rib_records(job),
+        cradles=describe_core.cradle_records(job),
         doubts=doubts(job),
     )
 
@@ -115,6 +129,9 @@ def lines(job: Job) -> list[tuple[str, str]]:
             f"{f.edge}{runs}, largest gap {words.length(f.gap)}",
         ),
         ("masses", f"filler {words.mass(f.filler)}, the web with all that bonds it {words.mass(f.mass)}"),
+        *describe_strength.lines(job),
+        *describe_joint.lines(job),
+        *describe_core.lines(job),
     ]
 
 
@@ -136,7 +153,15 @@ def _bevels(job: Job, side: Side) -> tuple[float, float]:
 
 def doubts(job: Job) -> tuple[str, ...]:
     """What a builder should look at twice before cutting."""
-    return (*_washout_doubts(job), *_section_doubts(job), *_edge_doubts(job), *_bevel_doubts(job))
+    return (
+        *_washout_doubts(job),
+        *_section_doubts(job),
+        *_edge_doubts(job),
+        *_bevel_doubts(job),
+        *describe_strength.doubts(job),
+        *describe_joint.doubts(job),
+        *describe_core.doubts(job),
+    )
 
 
 def _washout_doubts(job: Job) -> list[str]:

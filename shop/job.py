@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from pathlib import Path
@@ -11,10 +11,18 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from ..geom import blank, cant, seat, washout, web
+from ..geom import joint as joint_geometry
+from ..geom.joint import Pad, Tube
 from ..geom.loft import Loft
+from ..geom.rib import Cradle, Rib
 from ..geom.seat import Aim, Cut, Run, Survey, Treatment
 from ..geom.web import SIDES, NothingInside, OffSection, Plane, Side
-from . import wingfile
+from . import flanges, joint, loads, ribs, strength, strips, wingfile
+from .cores import BuiltCore, WirePath, wire_paths
+from .cores import built as built_cores
+from .flanges import BuiltFlange
+from .joint import JointEnd
+from .values import KeyedError
 from .wingfile import Loaded, WingError
 from .wording import Wording
 
@@ -23,7 +31,12 @@ Array = NDArray[np.float64]
 COARSE = 40.0  # mm, cells of the surveys that a search makes
 SWEEP = np.radians(1.0)
 CLOSE = np.radians(0.005)
+REGISTER = 5.0  # mm between the middle of a register hole and the joint's tube
 FINE_SAW = 20  # a saw this many times finer than the real one stands for one without steps
+
+
+class OffWeb(ValueError):
+    """A place that is not on the web; the message says what was wanted and what was got."""
 
 
 @dataclass(frozen=True)
@@ -64,6 +77,16 @@ class BuiltWeb:
         return self.top if side == "top" else self.bottom
 
     @cached_property
+    def plain(self) -> float:
+        """Thickness of the plain sheet, mm: the web's own, where no joint thickens it."""
+        return float(self.survey.thickness.min())
+
+    @cached_property
+    def pads(self) -> float:
+        """Volume of what thickens the sheet at the joint, mm^3."""
+        return joint_geometry.pads_volume(self.top, self.bottom, self.plain) if np.ptp(self.survey.thickness) else 0.0
+
+    @cached_property
     def filler(self) -> float:
         """Filler at both edges, mm^3."""
         return self.top.filler + self.bottom.filler
@@ -75,7 +98,7 @@ class BuiltWeb:
 
     @cached_property
     def sheet(self) -> float:
-        """Volume of the sheet, mm^3."""
+        """Volume of the sheet with the pads on it, mm^3."""
         return seat.sheet_volume(self.top, self.bottom)
 
     @cached_property
@@ -107,6 +130,7 @@ class Job:
             loaded.path,
         )
         self._sections = loaded.sections
+        self._flanges: dict[tuple[float, float], tuple[BuiltFlange, ...]] = {}
 
     @cached_property
     def wording(self) -> Wording:
@@ -136,8 +160,8 @@ class Job:
         wing = self.record.wing
         y = np.array([s.y for s in wing.stations])
         if wing.washout.law == "table":
-            places, angles = zip(*(wing.washout.points or ()), strict=True)
-            return washout.smooth(places, np.radians(angles))
+            places, twist = np.array(wing.washout.points).T
+            return washout.smooth(places, np.radians(twist))
         angles = np.radians([s.washout if s.washout is not None else np.nan for s in wing.stations])
         if wing.washout.law == "power":
             return washout.Power(y[[0, -1]], float(angles[0]), float(angles[-1]), wing.washout.exponent or 1.0)
@@ -175,7 +199,7 @@ class Job:
 
         def figure(angle: float) -> float:
             try:
-                survey = self.survey(angle, thickness, longest=COARSE)
+                survey = self.survey(angle, thickness, longest=COARSE, depth=self._trial_depth)
             except (OffSection, NothingInside):
                 return float("inf")
             built = self.fit(angle, survey, treatment)
@@ -195,19 +219,100 @@ class Job:
         return web.plane(self.loft, ends=self.record.web.ends, line=self.record.web.line, cant=angle)
 
     @cached_property
+    def joint(self) -> JointEnd | None:
+        """The web's thickened end, if one is stated."""
+        try:
+            return joint.joint_end(self)
+        except KeyedError as fault:
+            raise self._keyed(fault) from None
+
+    def _keyed(self, fault: KeyedError) -> WingError:
+        return self.error(".".join(map(str, fault.where)), fault.text)
+
+    def over(self, sheet: float | None = None) -> tuple[seat.Along, seat.Along]:
+        """Thickness of the web along s, and where its middle stands across it, over a sheet (mm; the stated one)."""
+        sheet = self.record.web.thickness if sheet is None else sheet
+        if self.joint is None:
+            return seat.constant(sheet), seat.CENTRED
+        return self.joint.thickening.over(sheet)
+
+    @cached_property
     def thickness(self) -> seat.Along:
         """Thickness of the web along s."""
-        return seat.constant(self.record.web.thickness)
+        return self.over()[0]
+
+    def face(self, name: blank.FaceName, sheet: float | None = None) -> seat.Along:
+        """Where a face stands across the web along s."""
+        thickness, middle = self.over(sheet)
+        half = thickness.value / 2.0
+        return seat.Along(thickness.s, middle.value + (half if name == "rear" else -half))
+
+    @cached_property
+    def load(self) -> loads.Load | None:
+        """What the web has to carry, at limit load."""
+        stated = self.record.load
+        return None if stated is None else loads.stated(stated, self.record.wing.stations[-1].y)
+
+    @cached_property
+    def caps(self) -> strips.Schedule | None:
+        """The cap strips as the load asks for them, and what they carry; None without a load.
+
+        Raises
+        ------
+        WingError
+            If they cannot carry it or do not fit.
+        """
+        return None if self.record.load is None else strips.schedule(self, self.plane_at(self.cant))
+
+    @cached_property
+    def layers(self) -> tuple[strips.Layer, ...]:
+        """Every layer of cap strips at both edges, the longest of each first."""
+        return strips.layers(self)
+
+    @cached_property
+    def strength(self) -> strength.Strength | None:
+        """How much the caps and the web's core have in reserve; None without a load."""
+        return None if self.caps is None else strength.assess(self, self.caps)
 
     @cached_property
     def depth(self) -> dict[Side, seat.Along]:
-        """What lies between skin and web at each edge."""
-        return {side: seat.constant(self.record.web.bond) for side in SIDES}
+        """What lies between skin and web at each edge: bond line, cover and cap strips."""
+        return self._depth(self.caps if self.record.caps else None)
 
-    def survey(self, angle: float, thickness: float | None = None, *, longest: float = 20.0) -> Survey:
+    def _depth(self, caps: strips.Schedule | None) -> dict[Side, seat.Along]:
+        under = strips.under(self)
+        if caps is None:
+            return dict.fromkeys(SIDES, seat.constant(under))
+        return {side: seat.Along(stack.s, under + stack.value) for side in SIDES for stack in [caps.height(side)]}
+
+    @cached_property
+    def _trial_depth(self) -> dict[Side, seat.Along]:
+        """The depth while a cant is searched: strips as an upright web asks for them, none where that does not fit."""
+        if self.record.caps is None or self.record.web.cant.kind in ("angle", "square"):
+            return self.depth
+        try:
+            return self._depth(strips.schedule(self, self.plane_at(0.0)))
+        except (OffSection, WingError):
+            return self._depth(None)
+
+    def survey(
+        self,
+        angle: float,
+        thickness: float | None = None,
+        *,
+        longest: float = 20.0,
+        depth: Mapping[Side, seat.Along] | None = None,
+    ) -> Survey:
         """Skin and seat over a web of a given cant (radians) and, unless the stated one, thickness (mm)."""
-        sheet = self.thickness if thickness is None else seat.constant(thickness)
-        return seat.survey(self.loft, self.plane_at(angle), thickness=sheet, depth=self.depth, longest=longest)
+        sheet, middle = self.over(thickness)
+        return seat.survey(
+            self.loft,
+            self.plane_at(angle),
+            thickness=sheet,
+            middle=middle,
+            depth=depth or self.depth,
+            longest=longest,
+        )
 
     def fit(self, angle: float, survey: Survey, treatment: Treatment | None = None) -> BuiltWeb:
         """Cut both edges of a surveyed web, as the wing file states unless told otherwise."""
@@ -238,12 +343,25 @@ class Job:
             If it does not fit inside the wing; the key at fault is named.
         """
         try:
-            return self.fit(self.cant, self.survey(self.cant))
+            built = self.fit(self.cant, self.survey(self.cant))
+            self.laid_tube(built)
+            return built
+        except KeyedError as fault:
+            raise self._keyed(fault) from None
         except OffSection as fault:
             raise self._outside(fault) from None
         except NothingInside as fault:
+            if self.record.caps:
+                raise self.error("caps", f"wanted stacks that leave room for the web, got {fault}") from None
             text = f"wanted a skin that leaves room for the web, got {fault}"
             raise self.error("skin.thickness", text) from None
+
+    def _line_leaves(self, upright: Plane) -> bool:
+        """Whether the web line itself runs out of the section somewhere, whatever the sheet."""
+        s = np.linspace(0.0, upright.length, 201)
+        y = upright.origin[1] + s * upright.s[1]
+        skin = self.loft.skin(y, y)[0]
+        return any(np.isnan(web.edge(self.loft, upright, s, 0.0, side, -skin).h).any() for side in SIDES)
 
     def _outside(self, fault: OffSection) -> WingError:
         """Which key is to blame for a web that leaves the section: the line, the cant, the thickness or the skin."""
@@ -254,15 +372,87 @@ class Job:
         def fits(plane: Plane, n: ArrayLike, depth: ArrayLike) -> bool:
             return not any(np.isnan(web.edge(self.loft, plane, s[:, None], n, side, depth).h).any() for side in SIDES)
 
-        sides = self.thickness(s)[:, None] * np.array([[-0.5, 0.5]])
+        sides = np.column_stack([self.face(name)(s) for name in blank.FACES])
         here = f"the {fault.side} edge leaves the section at s = {fault.s:.0f} mm (rib y = {y:.0f} mm)"
-        if not fits(upright, 0.0, -skin):
+        if self._line_leaves(upright):
             return self.error("web.line", f"wanted a web line inside the section, got one where {here}")
-        if not fits(self.plane_at(self.cant), 0.0, -skin):
-            return self.error("web.cant", f"wanted a cant that keeps the web inside the wing, got one where {here}")
-        if not fits(self.plane_at(self.cant), sides, -skin):
+        if not fits(upright, sides, -skin):
             return self.error("web.thickness", f"wanted faces inside the section, got a web where {here}")
+        if not fits(self.plane_at(self.cant), sides, -skin):
+            return self.error("web.cant", f"wanted a cant that keeps the web inside the wing, got one where {here}")
+        if self.record.caps and fits(self.plane_at(self.cant), sides, strips.under(self)):
+            return self.error("caps", f"wanted stacks that stay inside the section, got some where {here}")
         return self.error("skin.thickness", f"wanted a skin that leaves room for the web, got one where {here}")
+
+    def laid_tube(self, built: BuiltWeb) -> Tube | None:
+        """Where the joint's pin lies in a web, tube and overwrap round it; None without a joint.
+
+        Raises
+        ------
+        KeyedError
+            If it does not fit between the seats.
+        """
+        return None if self.joint is None else joint.tube(self, self.joint, built.plane, built.survey)
+
+    @cached_property
+    def tube(self) -> Tube | None:
+        """Where the joint's pin lies in the stated web."""
+        return self.laid_tube(self.web)
+
+    @cached_property
+    def pads(self) -> tuple[Pad, ...]:
+        """What is laid on the sheet's faces at the joint."""
+        return () if self.joint is None else joint.pads(self, self.joint, self.web)
+
+    @cached_property
+    def flanges(self) -> tuple[BuiltFlange, ...]:
+        """The flanges along the web as stated."""
+        try:
+            return self.laid_flanges(self.web)
+        except KeyedError as fault:
+            raise self._keyed(fault) from None
+
+    def laid_flanges(self, built: BuiltWeb) -> tuple[BuiltFlange, ...]:
+        """The stated flanges along any web; how its edges are cut makes no difference to them.
+
+        Raises
+        ------
+        KeyedError
+            If one has no room, or would be sprung too far.
+        """
+        key = built.plane.cant, built.plain
+        if key not in self._flanges:
+            self._flanges[key] = flanges.built(self, built)
+        return self._flanges[key]
+
+    @cached_property
+    def register(self) -> Array:
+        """(k, 2) places (s, h) of the holes that register one face with the other, clear of the joint's tube."""
+        if self.tube is None:
+            return blank.register_places(*self.web.faces)
+        along = self.tube.outline()[:, 0]
+        keep_off = float(along.min()) - REGISTER, float(along.max()) + REGISTER
+        return blank.register_places(*self.web.faces, keep_off=keep_off)
+
+    @cached_property
+    def cores(self) -> tuple[BuiltCore, ...]:
+        """The foam cores, each divided into bays and laid out for the wire."""
+        return built_cores(self)
+
+    @cached_property
+    def wire_paths(self) -> tuple[WirePath, ...]:
+        """The path of the wire for each bay, where a machine is stated."""
+        return wire_paths(self)
+
+    @cached_property
+    def ribs(self) -> tuple[Rib, ...]:
+        """The stated ribs."""
+        return ribs.built(self)
+
+    @cached_property
+    def cradles(self) -> tuple[Cradle, ...]:
+        """The stated cradles."""
+        return ribs.cradles(self)
 
     @cached_property
     def rounding(self) -> float:
@@ -284,16 +474,16 @@ class Job:
 
         Raises
         ------
-        ValueError
+        OffWeb
             If a place lies beyond the web line.
         """
         s = np.asarray(places, dtype=float)
         plane = self.web.plane
         beyond = s[(s < 0.0) | (s > plane.length + 1e-9) | ~np.isfinite(s)]
         if beyond.size:
-            raise ValueError(f"wanted places from 0 to {plane.length:.1f} mm, got {beyond[0]:g}")
-        thickness = self.thickness(s)
-        n = thickness[:, None] / 2.0 * seat.lobatto(self.web.survey.n.shape[-1])[0]
+            raise OffWeb(f"wanted places from 0 to {plane.length:.1f} mm, got {beyond[0]:g}")
+        thickness, middle = (law(s) for law in self.over())
+        n = middle[:, None] + thickness[:, None] / 2.0 * seat.lobatto(self.web.survey.n.shape[-1])[0]
         edges = {side: self._edge_rows(side, s, n, thickness) for side in SIDES}
         y = plane.origin[1] + s * plane.s[1]
         return [

@@ -5,9 +5,12 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 
+import numpy as np
+import shapely
 from shapely.geometry.base import BaseGeometry
 
-from ..geom.drawing import Anchor, Label, Role
+from ..geom import lettering
+from ..geom.drawing import Anchor, Label, Role, Stroke
 
 _AIR = 0.8  # mm kept free round every text
 
@@ -61,3 +64,48 @@ class Layout:
         """Write a label where it stands, whatever is there."""
         self.labels.append(label)
         self._taken.append(label.box())
+
+    def take_back(self, count: int) -> None:
+        """Take back all labels but the first `count`, and leave their room to others."""
+        gone = {label.box().wkb for label in self.labels[count:]}
+        del self.labels[count:]
+        self._taken = [shape for shape in self._taken if shape.wkb not in gone]
+
+    def put_up_arrow(self, x: float, middle: float, within: BaseGeometry | None = None) -> list[Stroke]:
+        """Draw an arrow that says which way is up, if there is room for it about (x, middle); no strokes otherwise."""
+        box = shapely.box(x - 4.5, middle - 4.5, x + 4.5, middle + 4.5)
+        if not self.free(box, within):
+            return []
+        foot, head = middle - 3.5, middle + 3.5
+        shaft = np.array([[x - 3.0, foot], [x - 3.0, head]])
+        barbs = np.array([[x - 4.2, head - 2.0], [x - 3.0, head], [x - 1.8, head - 2.0]])
+        self.labels.append(Label("UP", x - 1.2, middle - 1.25, 2.5))
+        self.keep_clear(box)
+        return [Stroke(shaft, Role.NOTE), Stroke(barbs, Role.NOTE)]
+
+    def write_block(self, lines: Iterable[tuple[str, float]], x: float, y: float, anchor: Anchor = "start") -> None:
+        """Write lines (text, height) one below the other, the first one's capitals just under y."""
+        above = 0.0
+        for text, height in lines:
+            y -= 1.2 * height + 0.5 * above
+            self.write(Label(text, x, y, height, anchor=anchor))
+            above = height
+
+
+def wrapped(text: str, height: float, wide: float) -> list[str]:
+    """Break `text` at spaces into lines no longer than `wide` mm at a height of lettering, where that can be done.
+
+    >>> wrapped("cut the web first", 3.0, 25.0)
+    ['cut the', 'web first']
+    """
+    lines: list[str] = []
+    space, room = lettering.width(" ", height), 0.0
+    for word in text.split():
+        long = lettering.width(word, height)
+        if lines and long + space <= room:
+            lines[-1] += f" {word}"
+            room -= long + space
+        else:
+            lines.append(word)
+            room = wide - long
+    return lines

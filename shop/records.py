@@ -6,15 +6,21 @@ table of keys is made.
 
 from __future__ import annotations
 
-from collections.abc import Iterable
 from typing import Annotated, Literal, Self
 
-from pydantic import BaseModel, BeforeValidator, ConfigDict, Field, ValidationInfo, model_validator
+from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
-from .units import MM_PER_INCH, Units
+from .record import Record, ascending, covers, said
+from .records_caps import Caps, Facing, Load, caps_fit, load_fits
+from .records_core import Core, Cradles, Ribs, Wire, cores_fit, within
+from .records_cutting import Cutting, Gauges
+from .records_joint import Flanges, Joint
+from .stock import CHECK_BARS, paper
+from .units import Units
 from .values import (
     Areal,
     Cant,
+    Date,
     Density,
     Inside,
     KeyedError,
@@ -23,6 +29,7 @@ from .values import (
     OnChord,
     OneOrRows,
     Positive,
+    Stress,
     Text,
     Tilt,
     Twist,
@@ -36,26 +43,10 @@ from .values import (
     read_mass,
 )
 
-
-class _Record(BaseModel):
-    model_config = ConfigDict(frozen=True, extra="forbid")
+PRINTERS_OFF = 0.05  # a bar further off than this was not printed at 100 %
 
 
-def _said(length: float, units: Units) -> str:
-    """Length in mm as an error gives it, in the file's units."""
-    return f"{length / MM_PER_INCH:.6g} in" if units == "in" else f"{length:.6g} mm"
-
-
-def _ascending(places: Iterable[tuple[Where, float]], units: Units) -> None:
-    """Raise a KeyedError at the first y that is not above the one before it."""
-    before = -float("inf")
-    for where, y in places:
-        if y <= before:
-            raise KeyedError(where, f"wanted y above the one before, {_said(before, units)}, got {_said(y, units)}")
-        before = y
-
-
-class Station(_Record):
+class Station(Record):
     """One section of the wing, where it stands and how far it is turned."""
 
     y: NotNegative = Field(description="the distance out along the span from the panel's origin, a length")
@@ -71,7 +62,7 @@ class Station(_Record):
     )
 
 
-class Washout(_Record):
+class Washout(Record):
     """How the washout runs from station to station."""
 
     law: Literal["smooth", "straight", "power", "table"] = Field(
@@ -96,11 +87,11 @@ class Washout(_Record):
             if self.law == law and not given:
                 raise KeyedError((key,), f"is missing, wanted {type(self).model_fields[key].description}")
         places = ((("points", i), row[0]) for i, row in enumerate(self.points or ()))
-        _ascending(places, file_units(info))
+        ascending(places, file_units(info))
         return self
 
 
-class Wing(_Record):
+class Wing(Record):
     """The outer shape of one panel, as a right-hand one."""
 
     twist_axis: OnChord = Field(default=0.25, description="the chord fraction each section turns about, from 0 to 1")
@@ -117,7 +108,7 @@ class Wing(_Record):
     @model_validator(mode="after")
     def _outwards(self, info: ValidationInfo) -> Self:
         places = ((("stations", i, "y"), station.y) for i, station in enumerate(self.stations))
-        _ascending(places, file_units(info))
+        ascending(places, file_units(info))
         return self
 
     @model_validator(mode="after")
@@ -137,24 +128,11 @@ class Wing(_Record):
                     f'wanted none here with washout law "{law}", got {station.washout:g}',
                 )
         if points := self.washout.points:
-            _covers(points, (self.stations[0].y, self.stations[-1].y), "stations", ("washout", "points"), info)
+            covers(points, (self.stations[0].y, self.stations[-1].y), "stations", ("washout", "points"), info)
         return self
 
 
-def _covers(
-    rows: tuple[tuple[float, float], ...],
-    span: tuple[float, float],
-    what: str,
-    where: Where,
-    info: ValidationInfo,
-) -> None:
-    """Raise a KeyedError if rows [y, value] stop short of the span."""
-    low, high, first, last = (_said(y, file_units(info)) for y in (*span, rows[0][0], rows[-1][0]))
-    if rows[0][0] > span[0] or rows[-1][0] < span[1]:
-        raise KeyedError(where, f"wanted rows that cover the {what}, {low} to {high}, got {first} to {last}")
-
-
-class Skin(_Record):
+class Skin(Record):
     """The skin between the outer surface and the web."""
 
     thickness: OneOrRows = Field(
@@ -165,32 +143,11 @@ class Skin(_Record):
     def _outwards(self, info: ValidationInfo) -> Self:
         if not isinstance(self.thickness, float):
             places = ((("thickness", i), row[0]) for i, row in enumerate(self.thickness))
-            _ascending(places, file_units(info))
+            ascending(places, file_units(info))
         return self
 
 
-class Facing(_Record):
-    """Cloth laid on both faces of the web."""
-
-    cloth: Text | None = Field(default=None, description="the cloth's name in stock")
-    areal_weight: Areal | None = Field(
-        default=None, description="in place of a cloth: dry areal weight of one layer, in g/m^2 where bare"
-    )
-    layers: int = Field(strict=True, ge=1, le=100, description="the layers on each face, a whole number of 1 or more")
-    resin_fraction: Annotated[
-        float, BeforeValidator(fit(read_fraction, "a fraction from 0 to 0.95", lambda v: 0 <= v <= 0.95))
-    ] = Field(default=0.5, description="the resin's share of the facing's mass, from 0 to 0.95")
-
-    @model_validator(mode="after")
-    def _one_weight(self) -> Self:
-        if self.cloth is None and self.areal_weight is None:
-            raise KeyedError(("cloth",), "is missing, wanted a cloth, or areal_weight in its place")
-        if self.cloth is not None and self.areal_weight is not None:
-            raise KeyedError(("areal_weight",), f"wanted none beside a cloth, got {self.areal_weight:g}")
-        return self
-
-
-class Web(_Record):
+class Web(Record):
     """The shear web: a flat sheet between upper and lower skin."""
 
     ends: tuple[Length, Length] = Field(description="the ribs [y1, y2] where the web starts and stops, lengths")
@@ -229,11 +186,11 @@ class Web(_Record):
 
     @model_validator(mode="after")
     def _outwards(self, info: ValidationInfo) -> Self:
-        _ascending(((("ends", i), y) for i, y in enumerate(self.ends)), file_units(info))
+        ascending(((("ends", i), y) for i, y in enumerate(self.ends)), file_units(info))
         return self
 
 
-class Limits(_Record):
+class Limits(Record):
     """What a choice of web must meet."""
 
     max_gap: NotNegative | None = Field(default=None, description="the largest gap to be filled, a length")
@@ -247,11 +204,43 @@ class Limits(_Record):
     )
 
 
-class Material(_Record):
+class Paper(Record):
+    """What the templates are printed on, and how true the printer prints."""
+
+    size: Text | None = Field(
+        default=None, description='the paper: "a4" to "a0", "letter", "legal", "tabloid" or "roll 610 mm"'
+    )
+    measured: tuple[Positive, Positive] | None = Field(
+        default=None,
+        description="what check bars x and y measure on a print made without this key, two lengths [x, y]",
+    )
+
+    @model_validator(mode="after")
+    def _known(self, info: ValidationInfo) -> Self:
+        units = file_units(info)
+        try:
+            if self.size is not None:
+                paper(self.size, units)
+        except ValueError as fault:
+            raise KeyedError(("size",), f"wanted {fault}") from None
+        bar = CHECK_BARS[units]
+        for i, length in enumerate(self.measured or ()):
+            if abs(length / bar - 1.0) > PRINTERS_OFF:
+                wanted = f"a bar within {PRINTERS_OFF:.0%} of {said(bar, units)}, printed unscaled"
+                raise KeyedError(("measured", i), f"wanted {wanted}, got {said(length, units)}")
+        return self
+
+    def printed(self, units: Units) -> tuple[float, float]:
+        """How long the printer makes what should be 1, across the sheet and along it."""
+        x, y = self.measured or (CHECK_BARS[units],) * 2
+        return x / CHECK_BARS[units], y / CHECK_BARS[units]
+
+
+class Material(Record):
     """A material of the workshop's own, or figures that override those in stock."""
 
-    kind: Literal["foam", "filler", "adhesive", "cloth"] | None = Field(
-        default=None, description='for a new material: "foam", "filler", "adhesive" or "cloth"'
+    kind: Literal["foam", "filler", "adhesive", "cloth", "strip", "pin"] | None = Field(
+        default=None, description='for a new material: "foam", "filler", "adhesive", "cloth", "strip" or "pin"'
     )
     density: Density | None = Field(default=None, description="the density, in kg/m^3 where bare")
     areal_weight: Areal | None = Field(default=None, description="a cloth's dry areal weight, in g/m^2 where bare")
@@ -264,19 +253,48 @@ class Material(_Record):
     sheets: Annotated[tuple[Positive, ...], Field(min_length=1)] | None = Field(
         default=None, description="the sheet thicknesses a foam comes in, one or more lengths in a list"
     )
+    diameters: Annotated[tuple[Positive, ...], Field(min_length=1)] | None = Field(
+        default=None, description="the diameters a pin comes in, one or more lengths in a list"
+    )
     hot_wire: bool | None = Field(default=None, strict=True, description="true or false: may a hot wire touch the foam")
+    shear: Stress | None = Field(
+        default=None,
+        description="the shear strength of a foam, a glue, a pin or a cloth's laminate on the bias, in MPa where bare",
+    )
+    shear_modulus: Stress | None = Field(
+        default=None, description="the shear modulus of a foam or a cloth's laminate on the bias, in MPa where bare"
+    )
+    compression: Stress | None = Field(
+        default=None, description="the compressive strength of a foam or a strip, in MPa where bare"
+    )
+    tension: Stress | None = Field(default=None, description="the tensile strength of a strip, in MPa where bare")
+    modulus: Stress | None = Field(default=None, description="the modulus along a strip, in MPa where bare")
     source: Text | None = Field(default=None, description="where the figures come from, a line of text")
 
 
-class WingFile(_Record):
+class WingFile(Record):
     """A whole wing file, in mm, degrees and grams."""
 
     name: Text = Field(description="what the wing is called, a line of text in quotes")
     units: Units = Field(default="mm", description='what a bare length means: "mm" or "in"')
+    date: Date | None = Field(default=None, description="the day this revision is of, 2026-03-14 without quotes")
     wing: Wing = Field(description="the panel's outer shape, a table [wing]")
     skin: Skin = Field(description="the skin, a table [skin]")
     web: Web = Field(description="the shear web, a table [web]")
+    load: Load | None = Field(default=None, description="what the web has to carry, a table [load]")
+    caps: Caps | None = Field(default=None, description="the cap strips on the web's edges, a table [caps]")
+    flanges: Flanges | None = Field(default=None, description="what ties web and skin, a table [flanges]")
+    joint: Joint | None = Field(default=None, description="the thickened end of the web, a table [joint]")
+    cores: tuple[Core, ...] = Field(default=(), description="the foam cores, tables [[cores]]")
+    wire: Wire | None = Field(default=None, description="the hot wire that cuts the cores, a table [wire]")
+    ribs: Ribs | None = Field(default=None, description="the ribs, a table [ribs]")
+    cradles: Cradles | None = Field(
+        default=None, description="the saddles that hold the panel while it is bonded, a table [cradles]"
+    )
+    gauges: Gauges | None = Field(default=None, description="cards that check the bevel, a table [gauges]")
+    cutting: Cutting | None = Field(default=None, description="how sheets of stock are cut up, a table [cutting]")
     limits: Limits | None = Field(default=None, description="what a choice of web must meet, a table [limits]")
+    paper: Paper = Field(default=Paper(), description="what the templates are printed on, a table [paper]")
     materials: dict[str, Material] = Field(
         default={}, description='materials added or overridden, tables [materials."name"]'
     )
@@ -289,8 +307,32 @@ class WingFile(_Record):
             places.append((("web", "cant"), self.web.cant.value))
         for where, y in places:
             if not low <= y <= high:
-                limits = f"{_said(low, self.units)} to {_said(high, self.units)}"
-                raise KeyedError(where, f"wanted y within the stations, {limits}, got {_said(y, self.units)}")
+                limits = f"{said(low, self.units)} to {said(high, self.units)}"
+                raise KeyedError(where, f"wanted y within the stations, {limits}, got {said(y, self.units)}")
         if not isinstance(self.skin.thickness, float):
-            _covers(self.skin.thickness, self.web.ends, "web's ends", ("skin", "thickness"), info)
+            covers(self.skin.thickness, self.web.ends, "web's ends", ("skin", "thickness"), info)
+        return self
+
+    @model_validator(mode="after")
+    def _bears(self, info: ValidationInfo) -> Self:
+        if self.load is not None:
+            load_fits(self.load, self.web.ends, self.wing.stations[-1].y, info)
+        if self.caps is not None:
+            if self.load is None:
+                raise KeyedError(("load",), "is missing, wanted what the cap strips have to carry, a table [load]")
+            caps_fit(self.caps, self.web.thickness, self.units)
+        return self
+
+    @model_validator(mode="after")
+    def _inside(self, info: ValidationInfo) -> Self:
+        stations = (self.wing.stations[0].y, self.wing.stations[-1].y)
+        cores_fit(self.cores, self.wire, stations, self.web.ends, self.units)
+        places = within("ribs", self.ribs, stations, self.units)
+        within("cradles", self.cradles, stations, self.units)
+        if not isinstance(self.skin.thickness, float):
+            for i, core in enumerate(self.cores):
+                span = core.ends or (stations if core.region == "whole" else self.web.ends)
+                covers(self.skin.thickness, span, f"core {i + 1}'s ends", ("skin", "thickness"), info)
+            if self.ribs is not None and self.ribs.outline == "inner":
+                covers(self.skin.thickness, (min(places), max(places)), "ribs", ("skin", "thickness"), info)
         return self

@@ -4,9 +4,22 @@ from __future__ import annotations
 
 from ..geom.drawing import Drawing, Hand
 from .job import Job
+from .sheets_core import core_boards
+from .sheets_flange import flange_patterns
+from .sheets_gauge import bevel_gauges
+from .sheets_joint import joint_pads
+from .sheets_rib import cradle_sheets, rib_sheets
 from .sheets_web import web_blank
 
 
 def drawings(job: Job, hand: Hand = "right") -> list[Drawing]:
     """Every drawing of a job, for one hand."""
-    return web_blank(job, hand)
+    return [
+        *web_blank(job, hand),
+        *bevel_gauges(job, hand),
+        *flange_patterns(job, hand),
+        *joint_pads(job, hand),
+        *core_boards(job, hand),
+        *rib_sheets(job, hand),
+        *cradle_sheets(job, hand),
+    ]

@@ -10,10 +10,13 @@ from numpy.typing import NDArray
 
 from ..geom import blank, web
 from ..geom.blank import Face
-from ..geom.drawing import Drawing, Hand, Hole, Label, Role, Stroke, thin
+from ..geom.drawing import Anchor, Drawing, Hand, Hole, Label, Role, Stroke, thin
 from ..geom.web import Side
+from .describe_strength import strip_notes
 from .job import Job
 from .layout import Layout, Spot
+from .sheets_caps import strip_marks
+from .sheets_joint import joint_marks, joint_notes
 from .units import MM_PER_INCH
 from .wording import degrees
 
@@ -34,7 +37,7 @@ def web_blank(job: Job, hand: Hand = "right") -> list[Drawing]:
 
 
 @dataclass(frozen=True)
-class _View:
+class View:
     """A face as it is looked at: x on the sheet is s, or -s seen from the front."""
 
     face: Face
@@ -58,7 +61,7 @@ class _View:
 
 
 def _face_sheet(job: Job, face: Face, hand: Hand) -> Drawing:
-    view = _View(face, -1.0 if face.name == "front" else 1.0)
+    view = View(face, -1.0 if face.name == "front" else 1.0)
     layout = Layout()
     outline = [thin(view.on(line)) for line in (face.bottom, face.top[::-1])]
     strokes = [Stroke(np.concatenate(outline), Role.CUT_OUTSIDE, closed=True)]
@@ -70,11 +73,13 @@ def _face_sheet(job: Job, face: Face, hand: Hand) -> Drawing:
     strokes += _saw_marks(job, view, layout)
     for stroke in strokes[1:]:
         layout.keep_clear(shapely.LineString(stroke.points))
-    places = view.on(blank.register_places(*job.web.faces))
+    places = view.on(job.register)
     holes = tuple(Hole(float(x), float(y), PIN) for x, y in places)
     for hole in holes:
         layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(PIN / 2.0 + 0.5))
-    strokes += _directions(view, layout, inside)
+    strokes += joint_marks(job, view, layout, inside)
+    strokes += strip_marks(job, view, layout, inside)
+    strokes += _directions(job, view, layout, inside)
     _write_inside(job, view, layout, inside, hand)
     _write_titles(job, view, layout, hand)
     drawing = Drawing(
@@ -89,7 +94,7 @@ def _face_sheet(job: Job, face: Face, hand: Hand) -> Drawing:
     return drawing if hand == "right" else drawing.mirrored(hand)
 
 
-def _datum(view: _View, inside: shapely.Polygon) -> list[Stroke]:
+def _datum(view: View, inside: shapely.Polygon) -> list[Stroke]:
     """The web line, wherever it runs inside the face."""
     x0, _, x1, _ = inside.bounds
     shown = inside.intersection(shapely.LineString([[x0 - 1.0, 0.0], [x1 + 1.0, 0.0]]))
@@ -97,20 +102,18 @@ def _datum(view: _View, inside: shapely.Polygon) -> list[Stroke]:
     return [Stroke(np.asarray(g.coords), Role.ENGRAVE) for g in parts]
 
 
-def _ribs(job: Job, view: _View) -> list[Stroke]:
+def _ribs(job: Job, view: View) -> list[Stroke]:
     """Lines of the stations' rib planes."""
     return [Stroke(view.on(line), Role.ENGRAVE) for _, line in _rib_lines(job, view)]
 
 
-def _rib_lines(job: Job, view: _View) -> list[tuple[float, Array]]:
+def _rib_lines(job: Job, view: View) -> list[tuple[float, Array]]:
     y1, y2 = job.record.web.ends
     middle = [s.y for s in job.record.wing.stations if y1 + 1.0 < s.y < y2 - 1.0]
-    plane = job.web.plane
-    thickness = [float(job.thickness(plane.s_at_rib(y, 0.0, 0.0))) for y in middle]
-    return [(y, blank.rib_line(plane, view.face, t, y)) for y, t in zip(middle, thickness, strict=True)]
+    return [(y, blank.rib_line(job.web.plane, view.face, job.face(view.face.name), y)) for y in middle]
 
 
-def _ticks(job: Job, view: _View, layout: Layout) -> list[Stroke]:
+def _ticks(job: Job, view: View, layout: Layout) -> list[Stroke]:
     """Ticks along both edges with the skin's bevel there in tenths of a degree, and s at every other one."""
     step = 2.0 * MM_PER_INCH if job.record.units == "in" else 50.0
     first = max(view.face.top[0, 0], view.face.bottom[0, 0])
@@ -132,7 +135,7 @@ def _ticks(job: Job, view: _View, layout: Layout) -> list[Stroke]:
     return strokes
 
 
-def _saw_marks(job: Job, view: _View, layout: Layout) -> list[Stroke]:
+def _saw_marks(job: Job, view: View, layout: Layout) -> list[Stroke]:
     """Where the saw is set anew along a set bevel, and to what."""
     strokes = []
     for side in web.SIDES:
@@ -153,40 +156,33 @@ def _saw_marks(job: Job, view: _View, layout: Layout) -> list[Stroke]:
     return strokes
 
 
-def _directions(view: _View, layout: Layout, inside: shapely.Polygon) -> list[Stroke]:
+def _directions(job: Job, view: View, layout: Layout, inside: shapely.Polygon) -> list[Stroke]:
     """Arrows that say which edge is up, wherever one fits, and the names of the two ends beyond them."""
+    y1, y2 = (job.wording.plain(y) for y in job.record.web.ends)
     ends = {
-        "ROOT": (view.face.bottom[0], view.face.top[0], -1.0),
-        "TIP": (view.face.bottom[-1], view.face.top[-1], 1.0),
+        f"ROOT y {y1}": (view.face.bottom[0], view.face.top[0], -1.0),
+        f"TIP y {y2}": (view.face.bottom[-1], view.face.top[-1], 1.0),
     }
     for text, (low, high, outwards) in ends.items():
         s = min(low[0], high[0]) - 3.0 if outwards < 0 else max(low[0], high[0]) + 3.0
-        turned = 90.0
         # Baseline on the side away from the end, whichever way the face is looked at.
         x = view.sense * s + (PLAIN if view.sense * outwards > 0 else 0.0)
         middle = (low[1] + high[1]) / 2.0
-        layout.write(Label(text, x, middle, PLAIN, turned, "middle"))
+        layout.write(Label(text, x, middle, PLAIN, 90.0, "middle"))
     strokes: list[Stroke] = []
     start, stop = view.face.top[0, 0], view.face.top[-1, 0]
     for wanted in np.arange(start + 60.0, stop - 20.0, 400.0):
         for s in wanted + np.arange(0.0, 40.0, 5.0):
             low, high = view.face.heights(float(s))
-            middle, tall = (max(0.0, low) + high) / 2.0, 7.0
-            x = view.sense * s
-            box = shapely.box(x - 4.5, middle - tall / 2.0 - 1.0, x + 4.5, middle + tall / 2.0 + 1.0)
-            if layout.free(box, inside):
-                foot, head = middle - tall / 2.0, middle + tall / 2.0
-                shaft = np.array([[x - 3.0, foot], [x - 3.0, head]])
-                barbs = np.array([[x - 4.2, head - 2.0], [x - 3.0, head], [x - 1.8, head - 2.0]])
-                strokes += [Stroke(shaft, Role.NOTE), Stroke(barbs, Role.NOTE)]
-                layout.labels.append(Label("UP", x - 1.2, middle - SMALL / 2.0, SMALL))
-                layout.keep_clear(box)
+            if arrow := layout.put_up_arrow(view.sense * s, (max(0.0, low) + high) / 2.0, inside):
+                strokes += arrow
                 break
     return strokes
 
 
-def _write_inside(job: Job, view: _View, layout: Layout, inside: shapely.Polygon, hand: Hand) -> None:
+def _write_inside(job: Job, view: View, layout: Layout, inside: shapely.Polygon, hand: Hand) -> None:
     """What must stay on the piece once it is cut out: ribs, the datum, face, hand and stamp."""
+    asides: tuple[tuple[float, Anchor], ...] = ((2.0, "start"), (-2.0, "end"))
     for y, line in _rib_lines(job, view):
         low, high = line
         text = f"y {job.wording.plain(y)}"
@@ -195,7 +191,7 @@ def _write_inside(job: Job, view: _View, layout: Layout, inside: shapely.Polygon
                 view.sense * (low[0] + share * (high[0] - low[0])) + aside, low[1] + share * (high[1] - low[1]), anchor
             )
             for share in (0.75, 0.25, 0.6, 0.4)
-            for aside, anchor in ((2.0, "start"), (-2.0, "end"))
+            for aside, anchor in asides
         ]
         layout.put(text, spots, within=inside)
     start, stop = view.face.bottom[0, 0], view.face.bottom[-1, 0]
@@ -211,14 +207,14 @@ def _write_inside(job: Job, view: _View, layout: Layout, inside: shapely.Polygon
                 break
 
 
-def _clear_of_datum(view: _View, s: float, share: float, height: float) -> float:
+def _clear_of_datum(view: View, s: float, share: float, height: float) -> float:
     """Baseline for a text in the lower part of a face: just under the datum at share 0, lower with a larger one."""
     low, high = view.face.heights(s)
-    ceiling = 0.0 if low < 0.0 < high else high
-    return ceiling - 1.2 - height - share * max(0.0, ceiling - low - 2.4 - height)
+    ceiling, air = (0.0 if low < 0.0 < high else high), 1.0 + 0.25 * height
+    return ceiling - air - height - share * max(0.0, ceiling - low - 2.0 * air - height)
 
 
-def _write_titles(job: Job, view: _View, layout: Layout, hand: Hand) -> None:
+def _write_titles(job: Job, view: View, layout: Layout, hand: Hand) -> None:
     """Title block under the root end of the face."""
     lines = [
         (job.record.name, LARGE),
@@ -229,9 +225,7 @@ def _write_titles(job: Job, view: _View, layout: Layout, hand: Hand) -> None:
     wide = max(Label(text, 0.0, 0.0, height).box().bounds[2] for text, height in lines)
     low = min(view.face.bottom[view.face.bottom[:, 0] < start + wide + 10.0, 1])
     y = low - 1.5 - 2.0 * _LINE * SMALL - (2.0 * PLAIN if job.web.bottom.runs else 0.0) - 4.0
-    for text, height in lines:
-        y -= _LINE * height
-        layout.write(Label(text, view.sense * start, y, height, anchor="start" if view.sense > 0 else "end"))
+    layout.write_block(lines, view.sense * start, y, "start" if view.sense > 0 else "end")
 
 
 def _notes(job: Job, face: Face) -> list[str]:
@@ -247,6 +241,8 @@ def _notes(job: Job, face: Face) -> list[str]:
         f"bond line {words.length(stated.bond)}",
         f"As seen from the {face.name}; pins through the {PIN:g} mm holes register it with the other face",
         f"{edges[stated.edge][0].upper()}{edges[stated.edge][1:]}",
-        "At each tick: bevel of the skin, positive where the edge rises aft",
+        f"At each tick: bevel of the skin, positive where the edge rises aft; s and y in {words.units}",
+        *strip_notes(job),
+        *joint_notes(job, face),
         f"Wing file revision {job.stamp}",
     ]

@@ -1,4 +1,4 @@
-"""What the workshop buys: sheets, fillers, adhesives, cloths and paper, each figure with its source.
+"""What the workshop buys: sheets, fillers, adhesives, cloths, strips, pins and paper, each figure with its source.
 
 Names are generic; a wing file adds its own or overrides a figure under ``[materials."name"]``.
 """
@@ -6,11 +6,13 @@ Names are generic; a wing file adds its own or overrides a figure under ``[mater
 from __future__ import annotations
 
 import difflib
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass, field, fields, replace
 from typing import Any, TypeVar
 
-from .units import MM_PER_INCH, Units, shown
+from . import strengths
+from .units import MM_PER_INCH, Units, length, shown
 
 PRACTICE = "common practice"
 OWN = "the wing file"
@@ -28,7 +30,7 @@ class Family:
 
 @dataclass(frozen=True)
 class Foam:
-    """Sheet material for a web or a core, foam or light wood: density in kg/m^3, sheet thicknesses in mm."""
+    """Sheet material for a web or a core, foam or light wood: kg/m^3, sheet thicknesses in mm, strengths in MPa."""
 
     name: str
     density: float
@@ -38,6 +40,9 @@ class Foam:
     hot_wire: bool
     why: str
     source: str = PRACTICE
+    shear: float | None = None
+    compression: float | None = None
+    shear_modulus: float | None = None
 
 
 @dataclass(frozen=True)
@@ -51,26 +56,58 @@ class Filler:
 
 @dataclass(frozen=True)
 class Adhesive:
-    """A laminating resin or glue: density in kg/m^3, cured."""
+    """A laminating resin or glue, cured: density in kg/m^3, shear strength of a bond in MPa."""
 
     name: str
     density: float
     source: str = PRACTICE
+    shear: float | None = None
 
 
 @dataclass(frozen=True)
 class Cloth:
-    """A reinforcing cloth: dry areal weight in g/m^2, density of the fibre itself in kg/m^3."""
+    """A reinforcing cloth: dry areal weight in g/m^2, density of the fibre itself in kg/m^3.
+
+    Shear strength and modulus, MPa, are those of a laminate on the bias.
+    """
 
     name: str
     areal_weight: float
     fibre_density: float
     source: str = PRACTICE
+    shear: float | None = None
+    shear_modulus: float | None = None
+
+
+@dataclass(frozen=True)
+class Strip:
+    """Material of a cap strip: density in kg/m^3; strength in tension and compression and modulus along it, MPa."""
+
+    name: str
+    density: float
+    tension: float
+    compression: float
+    modulus: float
+    source: str = PRACTICE
+
+
+@dataclass(frozen=True)
+class Pin:
+    """Material of a joint's pin: shear strength across it in MPa; diameters in mm, the usual ones if there are none."""
+
+    name: str
+    shear: float
+    source: str = PRACTICE
+    diameters: tuple[float, ...] | None = None
+
+    def sizes(self, units: Units) -> tuple[float, ...]:
+        """Diameters in mm it comes in, thinnest first; usual ones of the mm or the inch system."""
+        return tuple(sorted(self.diameters or (PINS_IN if units == "in" else PINS_MM)))
 
 
 @dataclass(frozen=True)
 class Paper:
-    """A sheet of paper, upright: width and height in mm."""
+    """A sheet of paper, upright: width and height in mm; a roll's height has no end."""
 
     name: str
     width: float
@@ -78,9 +115,21 @@ class Paper:
     source: str
 
 
-Material = Foam | Filler | Adhesive | Cloth
+Material = Foam | Filler | Adhesive | Cloth | Strip | Pin
 _M = TypeVar("_M", bound=Material)
-KINDS: dict[str, type[Material]] = {"foam": Foam, "filler": Filler, "adhesive": Adhesive, "cloth": Cloth}
+KINDS: dict[str, type[Material]] = {
+    "foam": Foam,
+    "filler": Filler,
+    "adhesive": Adhesive,
+    "cloth": Cloth,
+    "strip": Strip,
+    "pin": Pin,
+}
+NEEDED = {
+    "cloth": ("areal_weight", "fibre_density"),
+    "strip": ("density", "tension", "compression", "modulus"),
+    "pin": ("shear",),
+}
 
 
 def _inches(*sizes: float) -> tuple[float, ...]:
@@ -89,6 +138,8 @@ def _inches(*sizes: float) -> tuple[float, ...]:
 
 USUAL_MM = (3.0, 4.0, 5.0, 6.0, 8.0, 10.0, 12.0, 15.0, 20.0, 25.0, 30.0)
 USUAL_IN = _inches(1 / 8, 3 / 16, 1 / 4, 3 / 8, 1 / 2, 5 / 8, 3 / 4, 1)
+PINS_MM = (3.0, 4.0, 5.0, 6.0, 8.0, 10.0, 12.0, 14.0, 16.0, 20.0)
+PINS_IN = _inches(1 / 8, 3 / 16, 1 / 4, 5 / 16, 3 / 8, 7 / 16, 1 / 2, 5 / 8, 3 / 4)
 _ONLY = "only polystyrene and polypropylene foams are cut with a hot wire"
 _FUMES = "cut with a hot wire in moving air: its fumes are harmful too"
 
@@ -136,7 +187,8 @@ FAMILIES: dict[str, Family] = {
 
 def _foam(name: str, family: str, density: float, source: str = PRACTICE) -> Foam:
     kin = FAMILIES[family]
-    return Foam(name, density, family, kin.sheets_mm, kin.sheets_in, kin.hot_wire, kin.why, source)
+    bears = strengths.FOAMS.get(name, ())
+    return Foam(name, density, family, kin.sheets_mm, kin.sheets_in, kin.hot_wire, kin.why, source, *bears)
 
 
 # The number in a foam's name is its density in kg/m^3, in a cloth's its areal weight in g/m^2.
@@ -157,16 +209,26 @@ _FILLERS = (
     Filler("cotton and microballoon paste", 850),
     Filler("silica-thickened epoxy", 1200),
 )
-_ADHESIVES = (Adhesive("laminating epoxy", 1150), Adhesive("epoxy glue", 1200))
-_CLOTHS = (
-    *(Cloth(f"glass cloth {w}", w, 2550) for w in (25, 49, 80, 105, 160, 200, 280)),
-    *(Cloth(f"carbon cloth {w}", w, 1780) for w in (93, 160, 200)),
-    *(Cloth(f"aramid cloth {w}", w, 1440) for w in (61, 110, 170)),
+_ADHESIVES = tuple(
+    Adhesive(name, density, shear=strengths.ADHESIVES[name])
+    for name, density in (("laminating epoxy", 1150), ("epoxy glue", 1200))
 )
+_CLOTHS = tuple(
+    Cloth(f"{fibre} cloth {w}", w, density, PRACTICE, *strengths.CLOTHS[fibre])
+    for fibre, density, weights in (
+        ("glass", 2550, (25, 49, 80, 105, 160, 200, 280)),
+        ("carbon", 1780, (93, 160, 200)),
+        ("aramid", 1440, (61, 110, 170)),
+    )
+    for w in weights
+)
+_STRIPS = tuple(Strip(name, *figures) for name, figures in strengths.STRIPS.items())
+_PINS = tuple(Pin(name, shear) for name, shear in strengths.PINS.items())
 
-_ALL: tuple[Material, ...] = (*_FOAMS, *_FILLERS, *_ADHESIVES, *_CLOTHS)
+_ALL: tuple[Material, ...] = (*_FOAMS, *_FILLERS, *_ADHESIVES, *_CLOTHS, *_STRIPS, *_PINS)
 _USUAL = {material.name: material for material in _ALL}
 
+CHECK_BARS: dict[Units, float] = {"mm": 100.0, "in": 4.0 * MM_PER_INCH}  # printed on every page, mm
 _ISO, _ASME = "ISO 216", "ASME Y14.1"
 PAPERS: dict[str, Paper] = {
     paper.name: paper
@@ -203,6 +265,11 @@ class Stock:
     """
 
     materials: Mapping[str, Material] = field(default_factory=lambda: _USUAL)
+    stated: Mapping[str, frozenset[str]] = field(default_factory=dict)
+
+    def origin(self, name: str, figure: str) -> str:
+        """Where a figure of a material comes from: ``the wing file`` or ``stock``."""
+        return OWN if figure in self.stated.get(_plain(name), ()) else "stock"
 
     def find(self, name: str, kind: type[_M]) -> _M:
         """Material of that name and kind; ValueError with the nearest known names if there is none."""
@@ -222,8 +289,8 @@ class Stock:
             As it stands in the wing file.
         given : mapping
             Only what is stated there: `kind` (needed for a new material) and any of `density` and
-            `fibre_density` in kg/m^3, `areal_weight` in g/m^2, `sheets` in mm, `family`, `hot_wire`,
-            `source`.
+            `fibre_density` in kg/m^3, `areal_weight` in g/m^2, `sheets` and `diameters` in mm, `family`, `hot_wire`,
+            `source`, and strengths and moduli in MPa.
 
         Raises
         ------
@@ -237,8 +304,9 @@ class Stock:
             raise MaterialError("kind", f"is missing, wanted {_or(KINDS)}, as {shown(name)} is not in stock")
         if known and kind != _kind_of(known):
             raise MaterialError("kind", f"wanted {_kind_of(known)!r}, as stock has this name, got {kind!r}")
+        stated = self.stated.get(_plain(name), frozenset()) | figures.keys()
         made = _overridden(known, figures) if known else _new(kind, _plain(name), figures)
-        return Stock({**self.materials, made.name: made})
+        return Stock({**self.materials, made.name: made}, {**self.stated, made.name: stated})
 
 
 def usual_sheets(units: Units, low: float = 3.0, high: float = 20.0, foam: Foam | None = None) -> tuple[float, ...]:
@@ -251,22 +319,27 @@ def usual_sheets(units: Units, low: float = 3.0, high: float = 20.0, foam: Foam 
     return tuple(float(size) for size in (inch if units == "in" else metric) if low <= size <= high)
 
 
-def paper(name: str) -> Paper:
-    """Find a paper by its name, capitals or not; ValueError if there is none.
+def paper(name: str, units: Units = "mm") -> Paper:
+    """Find a paper by its name, capitals or not, or make a roll of a stated width; ValueError if there is none.
 
-    >>> paper("A4").height
-    297
+    >>> paper("A4").height, paper("roll 24 in").width, paper("Roll 610").width
+    (297, 609.6, 610.0)
     """
+    plain = _plain(name)
+    kind, _, wide = plain.partition(" ")
     try:
-        return PAPERS[_plain(name)]
-    except KeyError:
-        raise ValueError(f"a paper size, {_or(PAPERS)}, got {shown(name)}") from None
+        if kind != "roll":
+            return PAPERS[plain]
+        if (width := length(wide, units)) > 0.0:
+            return Paper(plain, width, math.inf, OWN)
+    except (LookupError, ValueError):
+        pass
+    raise ValueError(f'a paper size, {_or(PAPERS)}, or a roll with its width, "roll 610 mm", got {shown(name)}')
 
 
 def _new(kind: str, name: str, figures: dict[str, Any]) -> Material:
     """Make a material that stock does not have."""
-    needed = ("areal_weight", "fibre_density") if kind == "cloth" else ("density",)
-    for key in needed:
+    for key in NEEDED.get(kind, ("density",)):
         if key not in figures:
             raise MaterialError(key, f"is missing, wanted for a new {kind}")
     if kind == "foam":

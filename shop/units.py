@@ -1,4 +1,4 @@
-"""Quantities as a builder writes them, read into mm, degrees, grams, kg/m^3, g/m^2, N, MPa and fractions.
+"""Quantities as a builder writes them, read into mm, degrees, grams, kg/m^3, g/m^2, N, N m, MPa and fractions.
 
 A bare number is in the unit of its kind (lengths: the wing file's own); a string may carry a unit. Mixed
 fractions and the inch mark are read here; pint, slow to import, is asked only about a unit that the kind does
@@ -50,6 +50,7 @@ MASS = Kind("a mass", "g", '250 (grams), "0.25 kg" or "9 oz"', {"g": 1.0, "kg": 
 DENSITY = Kind("a density", "kg/m^3", '80 (kg/m^3), "1.15 g/cm^3" or "5 lb/ft^3"', {"kg/m^3": 1.0})
 AREAL = Kind("an areal weight", "g/m^2", '105 (g/m^2) or "3 oz/yd^2"', {"g/m^2": 1.0})
 FORCE = Kind("a force", "N", '4000 (newtons) or "900 lbf"', {"N": 1.0})
+MOMENT = Kind("a moment", "N*m", '300 (N m) or "220 lbf ft"', {"N m": 1.0, "N*m": 1.0})
 STRESS = Kind("a stress", "MPa", '60 (MPa) or "8700 psi"', {"MPa": 1.0})
 FRACTION = Kind("a fraction", "", '0.25 or "25 %"', {"%": 0.01})
 
@@ -105,6 +106,11 @@ def areal(value: object) -> float:
 def force(value: object) -> float:
     """Read a force in newtons, bare or with a unit; errors as `length`."""
     return _read(value, FORCE)
+
+
+def moment(value: object) -> float:
+    """Read a moment in N m, bare or with a unit; errors as `length`."""
+    return _read(value, MOMENT)
 
 
 def stress(value: object) -> float:

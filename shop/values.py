@@ -5,8 +5,10 @@ Each reader raises ``ValueError("what was wanted, got what")``, to which the fil
 
 from __future__ import annotations
 
+import datetime
 import re
 from collections.abc import Callable
+from contextlib import suppress
 from dataclasses import dataclass
 from typing import Annotated, Literal
 
@@ -49,8 +51,9 @@ def _plainly(reader: Callable[[object], float]) -> Reader:
     return lambda value, info: reader(value)
 
 
-read_angle, read_fraction, read_density, read_areal, read_mass = map(
-    _plainly, (read.angle, read.fraction, read.density, read.areal, read.mass)
+read_angle, read_fraction, read_density, read_areal, read_mass, read_force, read_moment, read_stress = map(
+    _plainly,
+    (read.angle, read.fraction, read.density, read.areal, read.mass, read.force, read.moment, read.stress),
 )
 
 
@@ -81,9 +84,20 @@ def read_family(value: object) -> str:
     return value
 
 
+def read_date(value: object) -> datetime.date:
+    """Read a day: a TOML date, or one in quotes."""
+    if isinstance(value, datetime.date) and not isinstance(value, datetime.datetime):
+        return value
+    with suppress(ValueError):
+        if isinstance(value, str):
+            return datetime.date.fromisoformat(value.strip())
+    raise ValueError(f"a day such as 2026-03-14, got {shown(value)}")
+
+
 read_positive = fit(read_length, "a length above 0", lambda v: v > 0)
 
 Text = Annotated[str, BeforeValidator(read_text)]
+Date = Annotated[datetime.date, BeforeValidator(read_date)]
 Length = Annotated[float, BeforeValidator(read_length)]
 Positive = Annotated[float, BeforeValidator(read_positive)]
 NotNegative = Annotated[float, BeforeValidator(fit(read_length, "a length of 0 or more", lambda v: v >= 0))]
@@ -105,6 +119,29 @@ Density = Annotated[
 Areal = Annotated[
     float, BeforeValidator(fit(read_areal, "an areal weight above 0, up to 10000 g/m^2", lambda v: 0 < v <= 1e4))
 ]
+Stress = Annotated[float, BeforeValidator(fit(read_stress, "a stress above 0", lambda v: v > 0))]
+Mass = Annotated[float, BeforeValidator(fit(read_mass, "a mass above 0", lambda v: v > 0))]
+
+
+@dataclass(frozen=True)
+class Allowable:
+    """What one strip may carry: a force in N, or a stress in MPa."""
+
+    kind: Literal["force", "stress"]
+    value: float
+
+
+def read_allowable(value: object) -> Allowable:
+    """Read what a strip may carry; its unit says whether it is a force or a stress, and a bare number is in newtons."""
+    readers: tuple[tuple[Literal["force", "stress"], Callable[[object], float]], ...] = (
+        ("force", read.force),
+        ("stress", read.stress),
+    )
+    for kind, reader in readers:
+        with suppress(ValueError):
+            if (number := reader(value)) > 0:
+                return Allowable(kind, number)
+    raise ValueError(f'a force or stress above 0, such as 4000 (newtons), "900 lbf" or "600 MPa", got {shown(value)}')
 
 
 @dataclass(frozen=True)

@@ -3,17 +3,24 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass
-from functools import cache
+from dataclasses import dataclass, fields, replace
+from functools import cache, partial
 from itertools import product
 from typing import get_args
 
 import numpy as np
 
 from ..geom.seat import Survey, Treatment
-from ..geom.web import SIDES, NothingInside, OffSection
+from ..geom.web import SIDES, NothingInside, OffSection, Side
+from .flanges import BuiltFlange
 from .job import BuiltWeb, Job
-from .stock import Adhesive, Cloth, Filler, Foam
+from .laminate import laminate
+from .records import Limits
+from .stock import Adhesive, Filler, Foam, Strip
+from .strength import UNLOOKED, core_checks
+from .strips import cover_thickness
+from .values import KeyedError
+from .wording import CAUTION
 
 TREATMENTS: tuple[Treatment, ...] = get_args(Treatment)
 _GRAM = 1e-6  # g per mm^3 at 1 kg/m^3
@@ -28,6 +35,10 @@ class Masses:
     filler_bottom: float
     bond: float
     facing: float
+    strips: float = 0.0
+    cover: float = 0.0
+    pads: float = 0.0
+    flanges: float = 0.0
 
     @property
     def filler(self) -> float:
@@ -37,12 +48,13 @@ class Masses:
     @property
     def total(self) -> float:
         """All of it."""
-        return self.foam + self.filler + self.bond + self.facing
+        laid = self.strips + self.cover + self.pads + self.flanges
+        return self.foam + self.filler + self.bond + self.facing + laid
 
 
 @dataclass(frozen=True)
 class Miss:
-    """A limit that a candidate breaks, and by how much (mm, degrees or grams)."""
+    """A limit that a candidate breaks, and by how much (mm, degrees, grams; a share of what the core can bear)."""
 
     limit: str
     over: float
@@ -53,7 +65,8 @@ class Candidate:
     """One way to make the web: mm, degrees, grams.
 
     `bevel` is the largest angle that has to be cut, `swing` how far the cut turns along the edge that turns most;
-    both are zero for square edges. `outside` says why the web cannot be made at all; figures are then NaN.
+    both are zero for square edges. `outside` says why the web cannot be made at all, and `refused` says it in a word or
+    two; figures are then NaN.
     """
 
     thickness: float
@@ -66,6 +79,7 @@ class Candidate:
     swing: float
     misses: tuple[Miss, ...] = ()
     outside: str | None = None
+    refused: str | None = None
 
     @property
     def fits(self) -> bool:
@@ -92,29 +106,82 @@ class Saving:
     filler_best: float
 
 
-def masses(job: Job, built: BuiltWeb) -> Masses:
-    """Masses of a web: sheet, filler at each edge, bond lines and, where stated, facings on both faces."""
+def masses(job: Job, built: BuiltWeb, flanges: Sequence[BuiltFlange] | None = None) -> Masses:
+    """Masses of a web: sheet, filler, bond lines and, where stated, facings, strips, their cover, pads and flanges.
+
+    The flanges are those of the web as stated unless others are given.
+    Pads count as solid: the joint's tube, which takes the place of some of their foam, is not among the web's parts.
+    """
     stated = job.record.web
     foam, filler = job.stock.find(stated.foam, Foam), job.stock.find(stated.filler, Filler)
     bond = job.stock.find(stated.adhesive, Adhesive)
-    bedding = sum(built.survey.bedding(side) for side in SIDES)
-    areal = _facing_areal(job)
+    top, bottom = (bedded(job, built.survey, side) for side in SIDES)
+    strips, cover = _strip_masses(job, [top, bottom])
+    areal = laminate(stated.facing, job.stock, stated.adhesive).areal if stated.facing else 0.0
     return Masses(
-        foam=built.sheet * foam.density * _GRAM,
-        filler_top=built.top.filler * filler.density * _GRAM,
-        filler_bottom=built.bottom.filler * filler.density * _GRAM,
-        bond=bedding * bond.density * _GRAM,
+        foam=(built.sheet - built.pads) * foam.density * _GRAM,
+        filler_top=(built.top.filler + top.beside) * filler.density * _GRAM,
+        filler_bottom=(built.bottom.filler + bottom.beside) * filler.density * _GRAM,
+        bond=(top.bond + bottom.bond) * bond.density * _GRAM,
         facing=areal * sum(face.area() for face in built.faces) * 1e-6 if areal else 0.0,
+        strips=strips,
+        cover=cover,
+        pads=built.pads * _pad_density(job) * _GRAM,
+        flanges=sum(made.mass for made in (job.flanges if flanges is None else flanges)),
     )
 
 
-def _facing_areal(job: Job) -> float:
-    """g/m^2 of one face's laminate: the cloth's weight over its share of the laminate."""
-    facing = job.record.web.facing
-    if facing is None:
-        return 0.0
-    dry = facing.areal_weight if facing.cloth is None else job.stock.find(facing.cloth, Cloth).areal_weight
-    return facing.layers * (dry or 0.0) / (1.0 - facing.resin_fraction)
+def _pad_density(job: Job) -> float:
+    """Density of what thickens the sheet at the joint, kg/m^3."""
+    stated = job.record.joint
+    return job.stock.find((stated.pad if stated else None) or job.record.web.foam, Foam).density
+
+
+@dataclass(frozen=True)
+class Bedded:
+    """What lies between the skin's inside and the seat at one edge, mm^3.
+
+    `bond` is all the glue, under the skin and between the strips; `beside` the filler along the strips, as the seat is
+    level under the whole sheet where that is wider than they are.
+    """
+
+    bond: float
+    strips: float = 0.0
+    cover: float = 0.0
+    beside: float = 0.0
+
+
+def bedded(job: Job, survey: Survey, side: Side) -> Bedded:
+    """Divide the bed of one edge among what lies in it.
+
+    Bond line and cover have their share of the depth at each place; what the stack's share leaves free beside strips
+    and glue lines is filler.
+    """
+    caps = job.record.caps
+    if caps is None or job.caps is None:
+        return Bedded(survey.bedding(side))
+    depth, cover = job.depth[side](survey.s), cover_thickness(job, caps)
+    strips = sum(layer.volume for layer in job.layers if layer.side == side)
+    glue = strips * caps.glue / caps.thickness
+    stack = survey.bedding(side, job.caps.height(side)(survey.s) / depth)
+    return Bedded(
+        bond=survey.bedding(side, job.record.web.bond / depth) + glue,
+        strips=strips,
+        cover=survey.bedding(side, cover / depth),
+        beside=max(0.0, stack - strips - glue),
+    )
+
+
+def _strip_masses(job: Job, edges: Sequence[Bedded]) -> tuple[float, float]:
+    """Grams of strips and of their cover with its resin."""
+    caps = job.record.caps
+    if caps is None:
+        return 0.0, 0.0
+    strips = sum(edge.strips for edge in edges) * job.stock.find(caps.strip, Strip).density * _GRAM
+    if caps.cover is None:
+        return strips, 0.0
+    areal = laminate(caps.cover, job.stock, job.record.web.adhesive).areal
+    return strips, areal * sum(edge.cover for edge in edges) / cover_thickness(job, caps) * 1e-6
 
 
 def candidates(
@@ -133,7 +200,7 @@ def candidates(
         if isinstance(stated, str):
             for thickness, edge in product(thicknesses, edges):
                 angle = job.best_cant("gap" if stated == "least gap" else "filler", thickness, edge)[0]
-                yield _candidate(job, angle, thickness, edge, lambda t, a=angle: job.survey(a, t))
+                yield _candidate(job, angle, thickness, edge, partial(job.survey, angle))
         else:
             angle = float(np.radians(stated))
             surveys = cache(_surveys(job, angle, max(thicknesses)))
@@ -142,7 +209,9 @@ def candidates(
 
 
 def _surveys(job: Job, angle: float, widest: float) -> Callable[[float], Survey]:
-    """Surveys by thickness: all read from the widest sheet's, or, where that leaves the section, made one by one."""
+    """Surveys by thickness: all read from the widest sheet's, or, where that does not hold them, made one by one."""
+    if job.joint is not None:
+        return partial(job.survey, angle)
     try:
         wide = job.survey(angle, widest)
     except (OffSection, NothingInside):
@@ -155,27 +224,70 @@ def _candidate(
 ) -> Candidate:
     cant = float(np.degrees(angle))
     try:
+        _refuse_narrow(job, thickness)
+        _refuse_thick(job, thickness)
         built = job.fit(angle, surveys(thickness), edge)
-    except (OffSection, NothingInside) as fault:
+        job.laid_tube(built)
+        weights = masses(job, built, job.laid_flanges(built))
+    except (OffSection, NothingInside, Narrow, Thick, KeyedError) as fault:
         none = float("nan")
-        return Candidate(thickness, edge, cant, 0, Masses(*[none] * 5), none, none, none, outside=str(fault))
+        nothing = Candidate(thickness, edge, cant, 0, Masses(*[none] * len(fields(Masses))), none, none, none)
+        if isinstance(fault, KeyedError):
+            return replace(nothing, outside=".".join(map(str, fault.where)) + f": {fault}", refused=str(fault.where[0]))
+        return replace(nothing, outside=str(fault), refused=_REFUSED[type(fault)])
     bevel, swing = built.cut_bevels()
     runs = max(len(built.top.runs), len(built.bottom.runs))
-    weights = masses(job, built)
     misses = _misses(job, thickness, built.gap, bevel, weights.total)
     return Candidate(thickness, edge, cant, runs, weights, built.gap, bevel, swing, misses)
 
 
+class Narrow(ValueError):
+    """A sheet thinner than the strips that lie on it are wide."""
+
+
+class Thick(ValueError):
+    """A sheet thicker than the joint makes the web."""
+
+
+_REFUSED: dict[type[Exception], str] = {
+    OffSection: "no room",
+    NothingInside: "no room",
+    Narrow: "too thin",
+    Thick: "too thick",
+}
+_WHY = {
+    "no room": "leaves the section",
+    "too thin": "is thinner than its strips",
+    "too thick": "is thicker than its joint",
+    "joint": "leaves no room for the joint's pin",
+    "flanges": "does not suit its flanges",
+}
+
+
+def _refuse_narrow(job: Job, thickness: float) -> None:
+    caps = job.record.caps
+    if caps is not None and thickness < caps.beside * caps.width * (1.0 - 1e-9):
+        wide = job.wording.length(caps.beside * caps.width)
+        raise Narrow(f"a sheet of {job.wording.length(thickness)} is thinner than its strips, {wide}")
+
+
+def _refuse_thick(job: Job, thickness: float) -> None:
+    if job.joint is not None and thickness > job.joint.across * (1.0 + 1e-9):
+        most = job.wording.length(job.joint.across)
+        raise Thick(f"a sheet of {job.wording.length(thickness)} is thicker than its joint, {most}")
+
+
 def _misses(job: Job, thickness: float, gap: float, bevel: float, mass: float) -> tuple[Miss, ...]:
-    limits = job.record.limits
-    if limits is None:
-        return ()
+    limits = job.record.limits or Limits()
     over = {
         "max_gap": gap - _or_inf(limits.max_gap),
         "max_bevel": bevel - _or_inf(limits.max_bevel),
         "min_thickness": (limits.min_thickness or 0.0) - thickness,
         "max_mass": mass - _or_inf(limits.max_mass),
     }
+    if job.caps is not None:
+        checks, _ = core_checks(job, job.caps.flow, thickness)
+        over |= {check.name: 1.0 / float(check.reserve.min()) - 1.0 for check in checks}
     return tuple(Miss(name, by) for name, by in over.items() if by > 1e-9)
 
 
@@ -194,6 +306,8 @@ def verdict(found: Sequence[Candidate], job: Job) -> Verdict:
         return _no_verdict(found, job)
     best, limited = ranked[0], job.record.limits is not None
     among = "that meets the limits" if limited else "of all (the wing file states no limits)"
+    if job.record.load is not None:
+        among = f"{among} and bears the shear"
     sentence = f"Take {_named(best, job)}: at {job.wording.mass(best.masses.total)} the lightest {among}."
     if len(ranked) > 1:
         more = ranked[1].masses.total - best.masses.total
@@ -205,9 +319,10 @@ def _no_verdict(found: Sequence[Candidate], job: Job) -> Verdict:
     """Which limit fails, and by how much, for the candidate that comes nearest to meeting them all."""
     made = [c for c in found if c.outside is None]
     if not made:
-        return Verdict(None, None, "No candidate can be made: at each of them the web leaves the section.")
+        why = " or ".join(dict.fromkeys(_WHY[c.refused or "no room"] for c in found))
+        return Verdict(None, None, f"No candidate can be made: at each of them the web {why}.")
     limits = job.record.limits
-    nearest = min(made, key=lambda c: max(m.over / (getattr(limits, m.limit) or 1.0) for m in c.misses))
+    nearest = min(made, key=lambda c: max(m.over / (getattr(limits, m.limit, None) or 1.0) for m in c.misses))
     by = " and ".join(f"{m.limit} by {_amount(m, job)}" for m in nearest.misses)
     return Verdict(None, nearest, f"No candidate meets the limits. Nearest: {_named(nearest, job)}, which misses {by}.")
 
@@ -215,6 +330,8 @@ def _no_verdict(found: Sequence[Candidate], job: Job) -> Verdict:
 def _amount(miss: Miss, job: Job) -> str:
     if miss.limit == "max_mass":
         return job.wording.mass(miss.over)
+    if miss.limit.endswith("shear"):
+        return f"{100.0 * miss.over:.0f} %"
     return f"{miss.over:.2f}°" if miss.limit == "max_bevel" else job.wording.length(miss.over)
 
 
@@ -238,6 +355,15 @@ def saving_sentence(found: Saving, job: Job) -> str:
     return (
         f"{at}: {job.wording.mass(found.filler_best)}, {job.wording.mass(by)} less than the stated {found.stated:.2f}°."
     )
+
+
+def cautions(job: Job) -> list[tuple[str, str]]:
+    """What to know of the sheets' strength, where a load is stated: (what, figures)."""
+    if job.caps is None:
+        return []
+    checks, _ = core_checks(job, job.caps.flow, job.record.web.thickness)
+    allowed = "; ".join(f"{c.name} {job.wording.stress(float(np.max(c.allowable)))} ({c.origin})" for c in checks)
+    return [("allowed", allowed), ("caution", f"{CAUTION}; {UNLOOKED}")] if checks else []
 
 
 def rounding(job: Job) -> float:

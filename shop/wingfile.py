@@ -20,7 +20,9 @@ from pydantic_core import ErrorDetails
 
 from ..geom import airfoil
 from .records import WingFile
-from .stock import Adhesive, Cloth, Filler, Foam, MaterialError, Stock
+from .records_core import foams_asked, refuse_unfit
+from .records_cutting import sheets_asked
+from .stock import Adhesive, Cloth, Filler, Foam, Material, MaterialError, Pin, Stock, Strip
 from .units import shown
 from .values import TAGS, KeyedError, Where
 
@@ -245,11 +247,19 @@ def _stock(record: WingFile) -> Stock:
         except MaterialError as error:
             raise KeyedError(("materials", name, error.key), str(error)) from None
     web = record.web
-    asked: list[tuple[Where, type[Foam | Filler | Adhesive | Cloth], str | None]] = [
+    caps, joint, flanges = record.caps, record.joint, record.flanges
+    asked: list[tuple[Where, type[Material], str | None]] = [
         (("web", "foam"), Foam, web.foam),
         (("web", "filler"), Filler, web.filler),
         (("web", "adhesive"), Adhesive, web.adhesive),
         (("web", "facing", "cloth"), Cloth, web.facing.cloth if web.facing else None),
+        (("caps", "strip"), Strip, caps.strip if caps else None),
+        (("caps", "cover", "cloth"), Cloth, caps.cover.cloth if caps and caps.cover else None),
+        (("flanges", "cloth"), Cloth, flanges.cloth if flanges else None),
+        (("joint", "material"), Pin, joint.material if joint else None),
+        (("joint", "pad"), Foam, joint.pad if joint else None),
+        *foams_asked(record.cores),
+        *sheets_asked(record.cutting),
     ]
     for where, kind, wanted in asked:
         try:
@@ -257,6 +267,7 @@ def _stock(record: WingFile) -> Stock:
                 stock.find(wanted, kind)
         except ValueError as error:
             raise KeyedError(where, f"wanted {error}") from None
+    refuse_unfit(record.cores, stock)
     return stock
 
 

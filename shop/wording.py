@@ -7,6 +7,12 @@ from dataclasses import dataclass
 from .units import MM_PER_INCH, Units
 
 GRAMS_PER_OUNCE = 28.349523125
+NEWTONS_PER_POUND = 4.4482216152605
+PSI_PER_MPA = 145.03773773
+CAUTION = (
+    "an estimate, no proof of airworthiness: your country's rules, a licensed engineer and a proof load "
+    "come before flight"
+)
 _MM2_PER_SQUARE_FOOT = (12.0 * MM_PER_INCH) ** 2
 
 
@@ -48,9 +54,32 @@ class Wording:
             return f"{mm2 / _MM2_PER_SQUARE_FOOT:.2f} sq ft"
         return f"{mm2 * 1e-6:.3f} m²"
 
+    def moment(self, newton_mm: float) -> str:
+        """Moment in newton metres or pounds times feet."""
+        if self.units == "in":
+            return f"{newton_mm / NEWTONS_PER_POUND / (12.0 * MM_PER_INCH):.0f} lbf ft"
+        return f"{newton_mm * 1e-3:.1f} N m"
+
     def mass(self, grams: float) -> str:
         """Mass with its unit."""
         return f"{self.mass_column(grams)} {self.mass_unit}"
+
+    def force(self, newtons: float) -> str:
+        """Force in newtons, or pounds-force in a wing file in inches.
+
+        >>> Wording("in").force(4448.2), Wording("mm").force(4448.2)
+        ('1000 lbf', '4448 N')
+        """
+        return f"{newtons / NEWTONS_PER_POUND:.0f} lbf" if self.units == "in" else f"{newtons:.0f} N"
+
+    def stress(self, mpa: float) -> str:
+        """Stress in MPa, or psi in a wing file in inches; three digits count.
+
+        >>> Wording("in").stress(147.4), Wording("mm").stress(147.4)
+        ('21,400 psi', '147 MPa')
+        """
+        value, unit = (mpa * PSI_PER_MPA, "psi") if self.units == "in" else (mpa, "MPa")
+        return f"{float(f'{value:.3g}'):,g} {unit}"
 
     def mass_column(self, grams: float) -> str:
         """Mass without its unit: 0.1 g or 0.01 oz."""

@@ -18,6 +18,7 @@ class Sheet:
 
 A4 = Sheet("a4", 210.0, 297.0)  # ISO 216
 LETTER = Sheet("letter", 215.9, 279.4)  # ANSI/ASME Y14.1
+ROLL = Sheet("roll 420 mm", 420.0, np.inf)
 
 
 def blank(long=2100.0):

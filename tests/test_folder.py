@@ -3,11 +3,16 @@
 import hashlib
 import json
 import os
+import random
+import signal
+import sys
+import tempfile
+import time
 from pathlib import Path
 
 import pytest
 
-from wrywing.export import folder
+from wrywing.export import folder, moves, swap
 from wrywing.export.folder import FolderError
 
 resource = pytest.importorskip("resource")  # POSIX
@@ -18,6 +23,16 @@ NEW = {"a.dxf": b"new a", "b.svg": b"same", "d.pdf": b"new d"}
 def put(place, files, stamp="one"):
     records = [{"path": p, "format": p[-3:], "drawing": p[:-4], "hand": "right"} for p in files]
     folder.write(place, files, records, stamp=stamp)
+
+
+@pytest.fixture(params=["exchange", "two renames", "moves"])
+def way(request, monkeypatch, tmp_path):
+    """Each way in which files come into a folder, whatever this platform can do."""
+    if request.param == "two renames":
+        monkeypatch.setattr(swap, "_exchange", lambda one, other: False)
+    if request.param == "moves":
+        monkeypatch.setattr(swap, "renew", lambda *_: False)
+    return request.param
 
 
 def seen(place):
@@ -40,14 +55,26 @@ def test_manifest_says_what_was_written(tmp_path):
     assert list(out.parent.iterdir()) == [out]
 
 
-def test_next_run_replaces_its_own_and_leaves_the_users(tmp_path):
+def test_next_run_replaces_its_own_and_leaves_the_users(tmp_path, way):
+    tmp_path = tmp_path / "out"
     put(tmp_path, OLD)
     (tmp_path / "notes.txt").write_bytes(b"mine")
     (tmp_path / "c.pdf").write_bytes(b"old c, with my pencil marks")
+    (tmp_path / "deep" / "er").mkdir(parents=True)
+    (tmp_path / "deep" / "er" / "a.dxf").write_bytes(b"mine")
+    (tmp_path / "there").symlink_to("nowhere")
+    tmp_path.chmod(0o750)
+    before = (tmp_path / "notes.txt").stat()
     put(tmp_path, NEW, stamp="two")
-    assert seen(tmp_path) == NEW | {"notes.txt": b"mine", "c.pdf": b"old c, with my pencil marks"}
+    mine = {"notes.txt": b"mine", "c.pdf": b"old c, with my pencil marks", "deep/er/a.dxf": b"mine"}
+    assert seen(tmp_path) == NEW | mine
+    assert (tmp_path / "there").readlink() == Path("nowhere")
+    assert tmp_path.stat().st_mode & 0o777 == 0o750
+    after = (tmp_path / "notes.txt").stat()
+    assert (after.st_ino, after.st_mtime) == (before.st_ino, before.st_mtime)
     put(tmp_path, {})
-    assert set(seen(tmp_path)) == {"notes.txt", "c.pdf"}
+    assert seen(tmp_path) == mine
+    assert [p.name for p in tmp_path.parent.iterdir()] == ["out"]
 
 
 @pytest.mark.parametrize("name", ["d.pdf", "a.dxf", "manifest.json"])
@@ -112,11 +139,103 @@ def test_a_disk_that_takes_no_more(tmp_path, there):
     assert (tmp_path / "new").exists() == there
 
 
+def test_a_read_only_folder():
+    with tempfile.TemporaryDirectory() as place:
+        top, out = Path(place), Path(place) / "out"
+        put(out, OLD)
+        before = seen(out)
+        out.chmod(0o555)
+        top.chmod(0o777)
+        if (child := os.fork()) == 0:
+            if os.getuid() == 0:
+                os.setuid(65534)  # somebody whom permissions stop
+            try:
+                put(out, NEW)
+            except FolderError as fault:
+                os._exit(0 if "wanted to write there, got: Permission denied" in str(fault) else 2)
+            os._exit(1)
+        assert os.waitstatus_to_exitcode(os.waitpid(child, 0)[1]) == 0
+        assert seen(out) == before
+        assert list(top.iterdir()) == [out]
+        out.chmod(0o755)
+
+
+def test_what_the_user_saves_meanwhile_comes_along(tmp_path, monkeypatch):
+    out = tmp_path / "out"
+    put(out, OLD)
+    (out / "notes.txt").write_bytes(b"mine")
+    fill = swap._fill
+
+    def slowly(new, content):
+        fill(new, content)
+        (out / "later.txt").write_bytes(b"later")
+        (out / "draft").write_bytes(b"mine, saved anew")
+        (out / "draft").replace(out / "notes.txt")
+
+    monkeypatch.setattr(swap, "_fill", slowly)
+    put(out, NEW)
+    assert seen(out) == NEW | {"notes.txt": b"mine, saved anew", "later.txt": b"later"}
+
+
+@pytest.mark.skipif(sys.platform not in ("linux", "darwin"), reason="this platform takes two renames")
+def test_this_platform_exchanges_in_one_step(tmp_path):
+    for name in ("a", "b"):
+        (tmp_path / name).mkdir()
+        (tmp_path / name / name).touch()
+    assert swap._exchange(tmp_path / "a", tmp_path / "b")
+    assert (tmp_path / "a" / "b").exists()
+    assert (tmp_path / "b" / "a").exists()
+    assert not swap._exchange(tmp_path / "a", tmp_path / "c")
+
+
+def test_the_current_folder_stays_the_current_one(tmp_path, monkeypatch):
+    put(tmp_path / "out", OLD)
+    monkeypatch.chdir(tmp_path / "out")
+    put(Path(), NEW)
+    assert seen(Path()) == NEW == seen(tmp_path / "out")
+
+
+def test_a_link_to_the_folder_stays_one(tmp_path):
+    put(tmp_path / "out", OLD)
+    (tmp_path / "link").symlink_to("out")
+    put(tmp_path / "link", NEW)
+    assert (tmp_path / "link").is_symlink()
+    assert seen(tmp_path / "out") == NEW
+
+
+def test_killed_thirty_times_the_folder_is_the_old_or_the_new_one(tmp_path, way):
+    sets = [{f"{i}.pdf": bytes([65 + kind]) * (3000 * i) for i in range(1, 20 + 3 * kind)} for kind in (0, 1)]
+    whole = [{**files, "notes.txt": b"mine"} for files in sets]
+    out, dice, ends, end = tmp_path / "out", random.Random(6), set(), 0
+    put(out, sets[0])
+    (out / "notes.txt").write_bytes(b"mine")
+    for _ in range(30):
+        if (child := os.fork()) == 0:
+            while True:
+                end = 1 - end
+                put(out, sets[end])
+        time.sleep(dice.uniform(0.001, 0.05))
+        os.kill(child, signal.SIGKILL)
+        os.waitpid(child, 0)
+        if way != "exchange":  # there is a moment between two renames, or moves, that the next run puts right
+            swap.recover(out)
+            moves.recover(out)
+        end = whole.index(seen(out))
+        listed = json.loads((out / "manifest.json").read_bytes())["files"]
+        assert {f["path"] for f in listed} == sets[end].keys()
+        ends.add(end)
+    assert ends == {0, 1}
+    put(out, sets[1])
+    assert seen(out) == whole[1]
+    assert [p.name for p in tmp_path.iterdir()] == ["out"]
+
+
 MOVES = 8  # three old files and their manifest out, three new ones and theirs in
 
 
 @pytest.mark.parametrize("stop", range(MOVES))
 def test_a_move_that_fails_is_undone(tmp_path, monkeypatch, stop):
+    monkeypatch.chdir(tmp_path)
     put(tmp_path, OLD)
     before = (tmp_path / "manifest.json").read_bytes()
     _fail_at(monkeypatch, stop, OSError(5, "Input/output error"))
@@ -128,6 +247,7 @@ def test_a_move_that_fails_is_undone(tmp_path, monkeypatch, stop):
 
 @pytest.mark.parametrize("stop", range(MOVES + 1))
 def test_a_run_killed_between_two_moves_is_undone_by_the_next(tmp_path, monkeypatch, stop):
+    monkeypatch.chdir(tmp_path)
     put(tmp_path, OLD)
     (tmp_path / "notes.txt").write_bytes(b"mine")
     if (child := os.fork()) == 0:

@@ -12,10 +12,12 @@ import pytest
 import shapely
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from samples import A4, LETTER, WING, Sheet, blank, card, core
+from samples import A4, LETTER, ROLL, WING, Sheet, blank, card, core
 
 from wrywing.export import pdf, tiles
+from wrywing.export.pdf import Print
 from wrywing.geom.drawing import Drawing, Hole, Role, Stroke
+from wrywing.shop import stock
 
 MM = 25.4 / 72.0  # published: ISO 32000-1, 8.3.2.3, user space unit
 GLUE = 10.0
@@ -23,35 +25,41 @@ UPRIGHT = Drawing(
     "rib", "Rib 7", "3fa9c1d2", "left", (Stroke(core().strokes[0].points[:, ::-1], Role.CUT_OUTSIDE, True),)
 )
 CASES = {
-    "blank on a4": (blank(), A4, "mm"),
-    "blank on letter": (blank().mirrored("left"), LETTER, "in"),
-    "core on a4": (core(), A4, "mm"),
-    "rib on letter": (UPRIGHT, LETTER, "in"),
-    "card on a4": (card(), A4, "mm"),
-    "blank on a roll": (blank(), Sheet("roll", 420.0, 2400.0), "mm"),
+    "blank on a4": (blank(), Print(A4)),
+    "blank on letter": (blank().mirrored("left"), Print(LETTER, "in")),
+    "core on a4": (core(), Print(A4)),
+    "rib on letter": (UPRIGHT, Print(LETTER, "in")),
+    "card on a4": (card(), Print(A4)),
+    "blank on a roll": (blank(), Print(ROLL)),
+    "blank from a printer that shrinks": (blank(), Print(A4, "mm", (0.951, 0.994))),
+    "core from a printer that stretches": (core(), Print(LETTER, "in", (1.004, 1.049))),
 }
 
 
 class Page:
-    """One page's lines and boxes in mm from its lower left corner."""
+    """One page's lines and boxes in mm of the print, from its lower left corner."""
 
-    def __init__(self, page):
+    def __init__(self, page, how):
         self.page = page
-        self.size = np.array([page.width, page.height], dtype=float) * MM
+        across = abs(page.width * MM - min(how.paper.width, how.paper.height)) < 0.01
+        self.mm = MM * np.array(how.printed if across else how.printed[::-1])
+        self.size = np.array([page.width, page.height], dtype=float) * self.mm
+        self.paper = np.array([page.width, page.height], dtype=float) * MM
+        self.axes = "xy" if across else "yx"
         self.lines, self.widths, self.colours = [], [], []
         for mark in page.lines + page.curves + [r for r in page.rects if r["stroke"]]:
-            pts = np.array(mark["pts"]) * MM * [1.0, -1.0] + [0.0, self.size[1]]
+            pts = np.array(mark["pts"]) * self.mm * [1.0, -1.0] + [0.0, self.size[1]]
             if mark["object_type"] != "line" and mark["path"][-1][0] == "h":
                 pts = np.vstack([pts, pts[:1]])
             self.lines.append(shapely.LineString(pts))
-            self.widths.append(round(mark["linewidth"] * MM, 3))
+            self.widths.append(round(mark["linewidth"] * self.mm[0], 3))  # pdfplumber scales it as it does x
             self.colours.append(tuple(mark["stroking_color"]))
         self.blocks = [self.box(r) for r in page.rects if r["fill"] and not r["stroke"]]
         self.text = page.extract_text()
 
     def box(self, thing):
         y0, y1 = self.page.height - thing["bottom"], self.page.height - thing["top"]
-        return shapely.box(*(np.array([thing["x0"], y0, thing["x1"], y1], dtype=float) * MM))
+        return shapely.box(*(np.array([thing["x0"], y0, thing["x1"], y1], dtype=float) * [*self.mm, *self.mm]))
 
     def outline(self):
         """Lines of the widest pen in black: the outside cut."""
@@ -108,30 +116,36 @@ class Page:
 
 @pytest.fixture(scope="module", params=CASES)
 def case(request):
-    drawing, paper, units = CASES[request.param]
-    pages = opened(pdf.render(drawing, paper, wing=WING, units=units))
-    return drawing, paper, units, pages[0].page.pdf, pages
+    drawing, how = CASES[request.param]
+    pages = printed(drawing, how)
+    return drawing, how, pages[0].page.pdf, pages
 
 
-def opened(data):
-    return [Page(page) for page in pdfplumber.open(io.BytesIO(data)).pages]
+def printed(drawing, how, wing=WING):
+    """The pages of a drawing as they come out of the printer."""
+    file = pdfplumber.open(io.BytesIO(pdf.render(drawing, how, wing=wing)))
+    return [Page(page, how) for page in file.pages]
 
 
 def test_asks_not_to_be_scaled(case):
     # published: ISO 32000-1, 12.2
-    catalog = pdfplumber.utils.resolve(case[3].doc.catalog)
+    catalog = pdfplumber.utils.resolve(case[2].doc.catalog)
     assert pdfplumber.utils.resolve(catalog["ViewerPreferences"])["PrintScaling"].name == "None"
 
 
 def test_pages_are_the_paper(case):
-    _, paper, _, _, pages = case
+    _, how, _, pages = case
     for page in pages:
-        assert sorted(page.size) == pytest.approx(sorted((paper.width, paper.height)), abs=0.001)
+        if np.isinf(how.paper.height):
+            assert len(pages) == 1
+            assert page.paper[1] == pytest.approx(how.paper.width, abs=0.001)
+        else:
+            assert sorted(page.paper) == pytest.approx(sorted((how.paper.width, how.paper.height)), abs=0.001)
 
 
 def test_bars_measure_true_on_every_page(case):
-    _, _, units, _, pages = case
-    length, words = {"mm": (100.0, "100 mm"), "in": (4 * 25.4, "4 in")}[units]
+    _, how, _, pages = case
+    length, words = {"mm": (100.0, "100 mm"), "in": (4 * 25.4, "4 in")}[how.units]
     for page in pages:
         for axis in (0, 1):
             bars = [
@@ -148,12 +162,14 @@ def test_bars_measure_true_on_every_page(case):
             assert abs(ends[0].centroid.coords[0][axis] - ends[1].centroid.coords[0][axis]) == pytest.approx(
                 length, abs=0.05
             )
-        assert words in page.text
+        # x is across the paper held upright, or across the roll
+        assert f"{page.axes[0]}: {words}" in page.text
+        assert ("print corrected" in page.text) == (how.printed != (1.0, 1.0))
 
 
 def test_every_page_says_what_it_belongs_to(case):
-    drawing, _, _, file, pages = case
-    hand = {"right": "right-hand panel", "left": "left-hand panel", "both": "either hand"}[drawing.hand]
+    drawing, _, file, pages = case
+    hand = {"right": "right-hand panel", "left": "left-hand panel", "both": "both hands"}[drawing.hand]
     for number, page in enumerate(pages, start=1):
         for words in (
             "Mowe survey wing, outer panel",
@@ -169,13 +185,24 @@ def test_every_page_says_what_it_belongs_to(case):
 
 
 def test_no_page_is_blank_and_none_repeats_another(case):
-    pages = case[4]
+    pages = case[3]
     assert all(page.outline().length > 1.0 for page in pages)
     assert len({page.place() for page in pages}) == len(pages)
 
 
 def test_sheets_cut_along_their_marks_give_the_outline(case):
-    drawing, _, _, _, pages = case
+    assemble(case[0], case[3])
+
+
+@pytest.mark.parametrize("paper", [*stock.PAPERS, "roll 250 mm", "roll 24 in"])
+def test_every_paper_gives_the_outline(paper):
+    drawing = core()
+    how = Print(stock.paper(paper), "mm", (0.996, 1.002))
+    assemble(drawing, printed(drawing, how))
+
+
+def assemble(drawing, pages):
+    """Trim the pages along their marks, lay them over their neighbours' strips, and measure the outline."""
     by_place = {page.place(): page for page in pages}
     at = {min(by_place): np.zeros(2)}
     queue = deque(at)
@@ -221,8 +248,8 @@ def off(line, other):
 
 
 def test_furniture_stays_clear(case):
-    drawing, paper, units, *_ = case
-    for page in opened(pdf.render(replace(drawing, labels=()), paper, wing=WING * 5, units=units)):
+    drawing, how, *_ = case
+    for page in printed(replace(drawing, labels=()), how, wing=WING * 5):
         window = shapely.box(*page.window())
         lines = [s for s in page.furniture() if s.distance(window.exterior) > 0.05 or s.length < 2.0]
         inner = [s for s in page.furniture() if abs(s.length - 4.0) < 1e-3]
@@ -231,7 +258,8 @@ def test_furniture_stays_clear(case):
         words = [page.box(w) for w in page.page.extract_words(keep_blank_chars=True) if w["upright"]]
         words += [page.box(c) for c in page.page.chars if not c["upright"]]
         words = [w for w in words if not window.contains(w)]
-        sheet = shapely.box(8.0, 8.0, *(page.size - 8.0))
+        usable = np.minimum(page.size, page.paper) - 16.0
+        sheet = shapely.box(*((page.size - usable) / 2.0), *((page.size + usable) / 2.0))
         for thing in outside + page.blocks + words:
             assert window.buffer(-0.01).disjoint(thing)
             assert sheet.buffer(0.15).covers(thing)
@@ -247,57 +275,63 @@ def test_crosses_inside_the_window_give_way_to_the_drawing(hatched):
     step = 5.0 if hatched else 400.0
     lines = [np.array([[x, 0.0], [x, 400.0]]) for x in np.arange(0.0, 401.0, step)]
     net = Drawing("net", "Net", "3fa9c1d2", "both", tuple(Stroke(line, Role.CUT_OUTSIDE) for line in lines))
-    inner = [s for page in opened(pdf.render(net, A4)) for s in page.furniture() if abs(s.length - 4.0) < 1e-3]
+    inner = [s for page in printed(net, Print(A4)) for s in page.furniture() if abs(s.length - 4.0) < 1e-3]
     assert bool(inner) != hatched
 
 
 def test_a_hole_far_from_all_else_keeps_its_place():
     lone = replace(core(), holes=(Hole(0.0, 0.0, 8.0),))
-    places = {page.place() for page in opened(pdf.render(lone, A4))}
+    places = {page.place() for page in printed(lone, Print(A4))}
     for start in places:
         reached, edge = set(), {start}
         while edge:
             reached |= edge
             edge = {q for r, c in edge for q in ((r + 1, c), (r - 1, c), (r, c + 1), (r, c - 1))} & places - reached
         assert reached == places
-    assert len(places) > len(opened(pdf.render(replace(core(), holes=()), A4)))
+    assert len(places) > len(printed(replace(core(), holes=()), Print(A4)))
 
 
 def test_text_and_lines_are_large_enough(case):
-    for page in case[4]:
+    for page in case[3]:
         assert min(page.widths) >= 0.2
         # Helvetica's capitals are 0.718 of its size (published: Adobe Core 14 metrics, from memory)
         sizes = [c["size"] if c["upright"] else c["width"] for c in page.page.chars]
-        assert min(sizes) * MM * 0.718 >= 2.2 - 1e-3
+        assert min(sizes) * page.mm.min() * 0.718 >= 2.2 - 1e-3
 
 
 def test_labels_can_be_searched_where_they_are_drawn():
     drawing = card()
-    with pdfplumber.open(io.BytesIO(pdf.render(drawing, A4))) as file:
-        page = Page(file.pages[0])
-        assert drawing.labels[0].text in page.text
-        word = file.pages[0].search(re.escape(drawing.labels[0].text))[0]
-        x, ring = page.outline().bounds[0], drawing.strokes[0].points
-        x0, _, x1, _ = drawing.labels[0].box().bounds
-        shift = x - ring[:, 0].min()
-        assert word["x0"] * MM - shift == pytest.approx(x0, abs=0.1)
-        assert word["x1"] * MM - shift == pytest.approx(x1, abs=0.1)
+    (page,) = printed(drawing, Print(A4))
+    assert drawing.labels[0].text in page.text
+    word = page.page.search(re.escape(drawing.labels[0].text))[0]
+    x, ring = page.outline().bounds[0], drawing.strokes[0].points
+    x0, _, x1, _ = drawing.labels[0].box().bounds
+    shift = x - ring[:, 0].min()
+    assert word["x0"] * MM - shift == pytest.approx(x0, abs=0.1)
+    assert word["x1"] * MM - shift == pytest.approx(x1, abs=0.1)
 
 
-def test_too_small_a_paper_is_refused():
-    with pytest.raises(ValueError, match=r"^paper card: wanted at least \S+ x \S+ mm, got 105 x 148 mm$"):
-        pdf.render(card(), Sheet("card", 105.0, 148.0))
+@pytest.mark.parametrize(
+    ("paper", "words"),
+    [
+        (Sheet("card", 105.0, 148.0), r"^paper card: wanted at least \S+ x \S+ mm, got 105 x 148 mm$"),
+        (Sheet("roll 150 mm", 150.0, np.inf), r"^paper roll 150 mm: wanted a roll at least \S+ mm wide, got 150 mm$"),
+    ],
+)
+def test_too_small_a_paper_is_refused(paper, words):
+    with pytest.raises(tiles.PaperError, match=words):
+        pdf.render(card(), Print(paper))
 
 
 def test_fewest_pages():
-    counts = {}
-    for paper in (A4, LETTER):
-        with pdfplumber.open(io.BytesIO(pdf.render(blank(), paper))) as file:
-            counts[paper.name] = len(file.pages)
     # 2102 mm in steps of 256 mm (A4 sideways) or 238.4 mm, and one glue strip
-    assert counts == {"a4": 9, "letter": 9}
-    with pdfplumber.open(io.BytesIO(pdf.render(card(), A4))) as file:
-        assert len(file.pages) == 1
+    for paper, count in ((A4, 9), (LETTER, 9), (ROLL, 1)):
+        assert pdf.paged(blank(), Print(paper))[1] == count
+    assert pdf.paged(card(), Print(A4))[1] == 1
+    # published: ISO 32000-1, annex C: no page beyond 14400 units, 5080 mm
+    long = printed(blank(6000.0), Print(ROLL))
+    assert len(long) == 2
+    assert max(page.size[0] for page in long) <= 5080.0
 
 
 LINES = st.lists(

@@ -245,8 +245,11 @@ def test_the_best_cant_is_the_least_of_a_fine_sweep():
 
 
 @settings(max_examples=30, deadline=None)
-@given(st.lists(st.tuples(st.floats(-0.25, 0.25), st.floats(0.0, 1.0)), min_size=1, max_size=4))
-def test_the_cant_search_finds_the_deepest_of_several_hollows(hollows):
+@given(st.dictionaries(st.integers(-5, 5), st.floats(0.0, 1.0), min_size=1, max_size=4), st.floats(-0.01, 0.01))
+def test_the_cant_search_finds_the_deepest_of_several_hollows(floors, shift):
+    # Hollows 0.05 rad apart, nearly three steps of the sweep.
+    hollows = [(0.05 * place + shift, floor) for place, floor in floors.items()]
+
     def figure(k):
         return min(floor + 40.0 * abs(k - at) for at, floor in hollows)
 

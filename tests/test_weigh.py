@@ -149,6 +149,6 @@ def test_more_runs_than_places_are_refused(slab):
 @pytest.mark.parametrize("wing", ["saltpan.toml", "highmoor.toml"])
 def test_every_candidate_of_the_examples_keeps_the_order_of_the_edge_cuts(wing):
     job = jobs.load(EXAMPLES / wing)
-    found = candidates(job, [5.0, 10.0])
+    found = candidates(job, [8.0, 12.0])
     for square, set_bevel, full in zip(found[::3], found[1::3], found[2::3], strict=True):
         assert full.masses.filler <= set_bevel.masses.filler <= square.masses.filler

@@ -1,0 +1,188 @@
+"""Dividing a core's span into bays, so that the largest straight-cut error of any of them is least.
+
+Bounds are first chosen among even places by dynamic programming, which needs no luck with the error's shape, and then
+moved until the bays' errors are equal. Lengths in mm.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, field
+from functools import cached_property
+from itertools import pairwise
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.optimize import linprog
+
+Array = NDArray[np.float64]
+Parts = Callable[[float, float], Array]
+
+_NONE = 1e-9  # mm, no error at all
+_MOVES = 60
+_NEAR = 0.02  # mm, how near a bound is brought
+
+
+class TooFew(ValueError):
+    """As many bays as there may be do not hold the tolerance; they are off by `reached` mm."""
+
+    def __init__(self, reached: float) -> None:
+        super().__init__(f"off by {reached:.3f} mm")
+        self.reached = reached
+
+
+@dataclass(frozen=True)
+class Divider:
+    """A span to be divided.
+
+    Attributes
+    ----------
+    ends
+        (y1, y2).
+    parts
+        Straight-cut errors (k,) of a bay from a to b, the largest of which counts: one for each part of a bay, so that
+        it is seen which of them a move of a bound makes worse.
+    rough
+        The same from fewer samples, for the first choice.
+    longest
+        No bay is longer.
+    kinks
+        Places inside the span that bounds may well be put at.
+    places
+        Number of even places among which, with the kinks, bounds are first chosen.
+    """
+
+    ends: tuple[float, float]
+    parts: Parts
+    rough: Parts
+    longest: float = float("inf")
+    kinks: Array = field(default_factory=lambda: np.empty(0))
+    places: int = 49
+
+    def into(self, count: int) -> tuple[float, ...]:
+        """Bounds (count + 1) of `count` bays whose largest error is least.
+
+        Raises
+        ------
+        ValueError
+            If so few bays would have to be longer than `longest`.
+        """
+        span = self.ends[1] - self.ends[0]
+        if span > count * self.longest * (1.0 + 1e-9):
+            raise ValueError(f"{count} bays of at most {self.longest:g} mm do not reach over {span:g} mm")
+        if count == 1:
+            return self.ends
+        first = self._chosen(count)
+        if self._largest(first) < _NONE:
+            return tuple(np.linspace(*self.ends, count + 1).tolist())
+        return self._settled(first)
+
+    def fewest(self, tolerance: float, most: int, exact: Callable[[tuple[float, ...]], float]) -> tuple[float, ...]:
+        """Bounds of the fewest bays, `most` or less, that hold the tolerance.
+
+        Parameters
+        ----------
+        exact
+            Largest error of the bays with given bounds, which has the last word.
+
+        Raises
+        ------
+        TooFew
+            If `most` bays do not.
+        """
+        least = max(1, int(np.ceil((self.ends[1] - self.ends[0]) / self.longest - 1e-9)))
+        reached = float("inf")
+        for count in range(least, most + 1):
+            if count < most and self._hopeless(count, tolerance):
+                continue
+            bounds = self.into(count)
+            reached = self._largest(bounds)
+            if count == most or reached < 1.01 * tolerance:
+                reached = exact(bounds)
+            if reached <= tolerance:
+                return bounds
+        raise TooFew(reached)
+
+    def _hopeless(self, count: int, tolerance: float) -> bool:
+        """Whether even bounds chosen freely could not bring the chosen ones' error down to the tolerance."""
+        if count > self.places // 3:
+            return False
+        # a bay among the even places is at most one step longer than it need be, and the error grows as its square
+        return self._largest(self._chosen(count)) > tolerance * (1.0 + 2.0 * count / self.places) ** 2
+
+    def _largest(self, bounds: tuple[float, ...]) -> float:
+        return float(self._errors(bounds).max())
+
+    def _errors(self, bounds: Sequence[float] | Array) -> Array:
+        """(bays, k) errors of the parts of all bays."""
+        return np.stack([self.parts(float(a), float(b)) for a, b in pairwise(bounds)])
+
+    @cached_property
+    def _y(self) -> Array:
+        return np.union1d(np.linspace(*self.ends, self.places), self.kinks)
+
+    @cached_property
+    def _costs(self) -> Array:
+        """(k, k) rough error from place i to place j, infinite where that is no bay."""
+        y = self._y
+        out = np.full((len(y), len(y)), np.inf)
+        for i in range(len(y)):
+            for j in range(i + 1, len(y)):
+                if y[j] - y[i] <= self.longest * (1.0 + 1e-9):
+                    out[i, j] = self.rough(float(y[i]), float(y[j])).max()
+        return out
+
+    def _chosen(self, count: int) -> tuple[float, ...]:
+        """Bounds among the even places: least largest error by dynamic programming (Bellman 1961)."""
+        y, costs = self._y, self._costs
+        total, back = costs[0], []
+        for _ in range(count - 1):
+            joined = np.maximum(total[:, None], costs)
+            back.append(joined.argmin(axis=0))
+            total = joined.min(axis=0)
+        if not np.isfinite(total[-1]):  # these places leave no room for bays as long as they may be
+            return tuple(np.linspace(*self.ends, count + 1).tolist())
+        stop, bounds = len(y) - 1, [len(y) - 1]
+        for prior in reversed(back):
+            stop = int(prior[stop])
+            bounds.insert(0, stop)
+        return tuple(y[[0, *bounds]].tolist())
+
+    def _settled(self, start: tuple[float, ...]) -> tuple[float, ...]:
+        """Bounds moved until no small move lowers the largest error: a linear programme over ever smaller moves."""
+        bounds, reach = np.array(start), (self.ends[1] - self.ends[0]) / (2.0 * self.places)
+        errors = self._errors(bounds)
+        for _ in range(_MOVES):
+            moved = bounds + self._move(bounds, errors, reach)
+            found = self._errors(moved)
+            gain = errors.max() - found.max()
+            if gain > 0.0:
+                bounds, errors = moved, found
+            if gain < 1e-3 * errors.max():
+                reach *= 0.4
+            if reach < _NEAR:
+                break
+        return tuple(bounds.tolist())
+
+    def _move(self, bounds: Array, errors: Array, reach: float) -> Array:
+        """Move (count + 1,) of the bounds, `reach` at most, that lowers the largest error most, to first order."""
+        count, parts = errors.shape
+        step = 0.1 * reach
+        slope = np.zeros((count, parts, count + 1))
+        for i in range(count):
+            for j in (i, i + 1):
+                if 0 < j < count:
+                    away = bounds[[i, i + 1]]
+                    away[j - i] += step
+                    slope[i, :, j] = (self.parts(*away.tolist()) - errors[i]) / step
+        lengths, room = np.diff(np.eye(count + 1), axis=0), np.diff(bounds)
+        level = np.column_stack([slope.reshape(-1, count + 1), -np.ones(count * parts)])
+        rows, most = [level, np.pad(-lengths, ((0, 0), (0, 1)))], [-errors.ravel(), 0.9 * room]
+        if np.isfinite(self.longest):
+            rows.append(-rows[1])
+            most.append(self.longest * (1.0 + 1e-9) - room)
+        limits = [(0.0, 0.0), *[(-reach, reach)] * (count - 1), (0.0, 0.0), (0.0, None)]
+        found = linprog(
+            np.eye(count + 2)[-1], A_ub=np.concatenate(rows), b_ub=np.concatenate(most), bounds=limits, method="highs"
+        )
+        return np.zeros(count + 1) if found.x is None else np.asarray(found.x[:-1])

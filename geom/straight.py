@@ -1,0 +1,218 @@
+"""The straight cut: how far what a hot wire sweeps between two ribs stands off the skin's inside.
+
+A hot wire is straight. Between two rib templates it joins points at equal chord fraction, so what it cuts is a ruled
+surface, and the skin's inside is none where the washout is not linear. mm and radians.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from .core import Region, kinks, limits
+from .loft import Loft
+from .profile import Profile, inner, symmetric
+
+Array = NDArray[np.float64]
+
+_ROUNDS = 30
+_CLOSE = 1e-9  # mm^2: what is left of a step along t, squared
+_STEP = 1e-5  # of t, for a difference
+_ZOOMS = 4
+
+
+@dataclass(frozen=True)
+class Miss:
+    """How far the straight cut stands off the skin's inside, and where; `off` in mm, positive where foam stands proud.
+
+    `t` is negative on the lower side; the chord fraction is its square.
+    """
+
+    off: float
+    t: float
+    y: float
+
+
+@dataclass(frozen=True)
+class Grid:
+    """The skin's inside over a core's span, sampled, from which a bay's straight-cut error is read.
+
+    Attributes
+    ----------
+    t, y
+        (T,) and (M,) the samples.
+    points, normals
+        (M, T, 2) x and z of the surface in the rib planes and of its unit normals.
+    inside
+        (M, T) which of them belong to the core.
+    bounds
+        (M, B) parameters t at which the core's own limits stand.
+    """
+
+    t: Array
+    y: Array
+    points: Array
+    normals: Array
+    inside: NDArray[np.bool_]
+    bounds: Array
+
+    @cached_property
+    def _cells(self) -> tuple[NDArray[np.intp], Array]:
+        """Left neighbours (M, B) of the bounds among `t`, and how far on they lie."""
+        i = np.clip(np.searchsorted(self.t, self.bounds, side="right") - 1, 0, len(self.t) - 2)
+        return i, (self.bounds - self.t[i]) / (self.t[i + 1] - self.t[i])
+
+    def row(self, y: float) -> Array:
+        """(T, 2) the profile at any rib plane, straight between the samples."""
+        i = int(np.clip(np.searchsorted(self.y, y) - 1, 0, len(self.y) - 2))
+        share = (y - self.y[i]) / (self.y[i + 1] - self.y[i])
+        return np.asarray(self.points[i] + share * (self.points[i + 1] - self.points[i]))
+
+    def off(self, a: float, b: float) -> tuple[Array, Array, Array]:
+        """What a straight cut from rib a to rib b misses by, to first order: y (m,), off (m, T), and at the bounds."""
+        here = slice(int(np.searchsorted(self.y, a, side="right")), int(np.searchsorted(self.y, b)))
+        y = self.y[here]
+        ends = self.row(a), self.row(b)
+        ruled = ends[0] + ((y - a) / (b - a))[:, None, None] * (ends[1] - ends[0])
+        off = np.einsum("mti,mti->mt", ruled - self.points[here], self.normals[here])
+        cell, share = (v[here] for v in self._cells)
+        rows = np.arange(len(y))[:, None]
+        return y, off, off[rows, cell] + share * (off[rows, cell + 1] - off[rows, cell])
+
+    def parts(self, a: float, b: float) -> Array:
+        """(8,) largest straight-cut errors of a bay from rib a to rib b, mm, to first order.
+
+        For each quarter of its length the largest in which foam stands proud, then the largest in which it is wanting.
+        """
+        y, off, at_bounds = self.off(a, b)
+        out = np.zeros((4, 2))
+        if len(y):
+            first = int(np.searchsorted(self.y, y[0]))
+            off = np.where(self.inside[first : first + len(y)], off, 0.0)
+            most = (
+                np.maximum(off.max(axis=1), at_bounds.max(axis=1)),
+                np.maximum(-off.min(axis=1), -at_bounds.min(axis=1)),
+            )
+            quarter = np.minimum((4.0 * (y - a) / (b - a)).astype(int), 3)
+            np.maximum.at(out, quarter, np.stack(most, axis=1))
+        return out.ravel()
+
+    def error(self, a: float, b: float) -> float:
+        """Largest straight-cut error of a bay from rib a to rib b, mm, to first order."""
+        return float(self.parts(a, b).max())
+
+    def thinned(self, rows: int, columns: int) -> Grid:
+        """The same with only every so many rows and columns."""
+        y, t = slice(None, None, rows), slice(None, None, columns)
+        return Grid(self.t[t], self.y[y], self.points[y, t], self.normals[y, t], self.inside[y, t], self.bounds[y])
+
+
+def grid(loft: Loft, region: Region, *, rows: int = 241, columns: int = 64) -> Grid:
+    """Sample the skin's inside over a core.
+
+    Parameters
+    ----------
+    rows
+        Rib planes from end to end, to which those are added where the loft may have a kink.
+    columns
+        Parameters t on each side.
+
+    Raises
+    ------
+    NoFoam
+        If the core has no foam somewhere.
+    """
+    y = np.union1d(np.linspace(*region.ends, rows), kinks(loft, region))
+    t = symmetric(np.linspace(0.0, 1.0, columns + 1))
+    points, normals = (v[..., [0, 2]] for v in inner(loft, t, y[:, None]))
+    turn = loft.washout(y, y)[0]
+    aft = np.column_stack([np.cos(turn), np.sin(turn)])
+    found = [limits(region, Profile(float(y[i]), t, points[i], normals[i], aft[i])) for i in range(len(y))]
+    start, stop = (np.array([getattr(f, name) for f in found]) for name in ("start", "stop"))
+    bounds = np.column_stack([-stop[:, 0], stop[:, 1]])
+    if region.kind == "aft":
+        bounds = np.column_stack([bounds, -start[:, 0], start[:, 1]])
+    keep = (t >= bounds.min() - 0.02) & (t <= bounds.max() + 0.02)
+    if region.kind == "aft":
+        keep &= np.abs(t) >= start.min() - 0.02
+    side = (t > 0.0).astype(int)
+    inside = (np.abs(t) >= start[:, side]) & (np.abs(t) <= stop[:, side])
+    return Grid(t[keep], y, points[:, keep], normals[:, keep], inside[:, keep], bounds)
+
+
+def proud(loft: Loft, bay: tuple[float, float], t: ArrayLike, y: ArrayLike) -> Array:
+    """Signed normal distance (...) from the skin's inside to the straight cut between two ribs, mm.
+
+    The wire joins the points of equal `t` on the profiles at the bay's two ends. From its point in the rib plane `y`
+    the foot of the perpendicular on the skin's inside is looked for by Newton's method; along t, where a nose is
+    sharply curved, the inner surface's own tangent is taken, from a difference.
+    """
+    t, y = np.broadcast_arrays(np.asarray(t, dtype=float), np.asarray(y, dtype=float))
+    a, b = np.moveaxis(inner(loft, t[..., None], np.array(bay))[0], -2, 0)
+    cut = a + ((y - bay[0]) / (bay[1] - bay[0]))[..., None] * (b - a)
+    at_t, at_y = t, y
+    for _ in range(_ROUNDS):
+        points, by_t, by_y = loft.under_skin(np.stack([at_t, at_t + _STEP]), at_y, 0.0, y)
+        by_t, by_y, out = by_t[0], by_y[0], cut - points[0]
+        inner_t = (points[1] - points[0]) / _STEP
+        e, f, g, h = (_dot(u, v) for u, v in ((by_t, inner_t), (by_t, by_y), (by_y, by_y), (by_y, inner_t)))
+        along_t, along_y = _dot(out, by_t), _dot(out, by_y)
+        det = e * g - f * h
+        step_t, step_y = (g * along_t - f * along_y) / det, (e * along_y - h * along_t) / det
+        at_t, at_y = at_t + np.clip(step_t, -0.02, 0.02), at_y + step_y
+        if not np.any((np.abs(step_t * along_t) > _CLOSE) | (np.abs(step_y) > 1e-4)):
+            break
+    normal = np.cross(by_t, by_y)
+    return np.asarray(_dot(out, normal) / np.linalg.norm(normal, axis=-1))
+
+
+def _dot(u: Array, v: Array) -> Array:
+    return np.asarray(np.einsum("...i,...i->...", u, v))
+
+
+def worst(loft: Loft, sampled: Grid, bay: tuple[float, float]) -> Miss:
+    """The largest straight-cut error of a bay, closed in upon from the samples."""
+    y, off, at_bounds = sampled.off(*bay)
+    if not len(y):
+        return Miss(0.0, float(sampled.bounds[0, -1]), bay[0])
+    first = int(np.searchsorted(sampled.y, y[0]))
+    off = np.where(sampled.inside[first : first + len(y)], np.abs(off), 0.0)
+    row, column = np.unravel_index(int(off.argmax()), off.shape)
+    starts = [(float(off.max()), float(sampled.t[column]), float(y[row]))]
+    row, bound = np.unravel_index(int(np.abs(at_bounds).argmax()), at_bounds.shape)
+    starts.append((float(np.abs(at_bounds).max()), float(sampled.bounds[first + row, bound]), float(y[row])))
+    if abs(starts[0][1] - starts[1][1]) < 0.03:  # the same place, once inside and once on the core's limit
+        starts = [max(starts)]
+    near = 0.9 * max(starts)[0]
+    return max((_close_in(loft, sampled, bay, t, at) for off, t, at in starts if off >= near), key=lambda m: abs(m.off))
+
+
+def _close_in(loft: Loft, sampled: Grid, bay: tuple[float, float], t: float, y: float) -> Miss:
+    """Look ever more closely about one place of a core, never beyond its limits."""
+    wide_t = float(np.diff(sampled.t).max())
+    wide_y = max(float(sampled.y[1] - sampled.y[0]), 0.1 * (bay[1] - bay[0]))
+    span = np.linspace(-1.0, 1.0, 7)
+    best = Miss(0.0, t, y)
+    for _ in range(_ZOOMS):
+        ys = np.clip(y + wide_y * span, *bay)[:, None]
+        ts = _held(sampled, t + wide_t * span, ys)
+        off = proud(loft, bay, ts, np.broadcast_to(ys, ts.shape))
+        i = np.unravel_index(int(np.abs(off).argmax()), off.shape)
+        if abs(off[i]) >= abs(best.off):
+            best = Miss(float(off[i]), float(ts[i]), float(ys[i[0], 0]))
+        t, y = best.t, best.y
+        wide_t, wide_y = wide_t / 3.0, wide_y / 3.0
+    return best
+
+
+def _held(sampled: Grid, t: Array, y: Array) -> Array:
+    """`t` (k,) brought within the core's limits at rib planes `y` (m, 1): (m, k)."""
+    bounds = np.stack([np.interp(y[:, 0], sampled.y, column) for column in sampled.bounds.T], axis=-1)
+    low, high = bounds[:, :1], bounds[:, 1:2]
+    if bounds.shape[1] == 4:  # an aft core: one side or the other
+        upper = t.mean() > 0.0
+        low, high = (bounds[:, 3:4], high) if upper else (low, bounds[:, 2:3])
+    return np.asarray(np.clip(t, low, high))

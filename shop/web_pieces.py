@@ -1,0 +1,167 @@
+"""The web's plain sheet, in one piece or in several that are scarfed together, as it is cut from stock."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+import numpy as np
+import shapely
+from numpy.typing import NDArray
+
+from ..geom import blank, scarf
+from ..geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
+from .job import Job
+from .layout import Layout, Spot
+from .pieces import Piece, foam_name
+from .records_cutting import Cutting
+from .strips import ramp
+
+Array = NDArray[np.float64]
+
+PIN = 3.0  # mm, diameter of the register holes
+SMALL, PLAIN = 2.5, 3.0  # heights of lettering
+_CLEAR = 5.0  # mm that a scarf keeps from what ends or is pinned near it
+_MARK = 40.0  # mm from a scarf to the marks it is set by
+_SAME = 0.05  # mm within which a face's line is the outline itself
+_FAR = 1e5  # mm, beyond everything
+
+
+class TooShort(ValueError):
+    """A sheet on which the web goes only with scarfs that find no place."""
+
+    def __init__(self, fault: scarf.NoPlace, length: float) -> None:
+        super().__init__(str(fault))
+        self.low, self.high, self.length = fault.low, fault.high, length
+
+
+def web_pieces(job: Job, cutting: Cutting, longest: float, hand: Hand) -> list[Piece]:
+    """The plain web sheet in as many pieces as its stock asks for, as seen from the rear.
+
+    Raises
+    ------
+    TooShort
+        If a scarf finds no place.
+    """
+    web, half = job.web, job.web.plain / 2.0
+    survey = web.survey
+    faces = [
+        blank.layer(web.plane, web.top, web.bottom, np.full_like(survey.s, n), name)
+        for n, name in ((-half, blank.FACES[0]), (half, blank.FACES[1]))
+    ]
+    front, rear = (shapely.Polygon(face.outline()) for face in faces)
+    x0, _, x1, _ = front.union(rear).bounds
+    long = cutting.scarf * web.plain
+    try:
+        joints = scarf.places(x0, x1, longest=longest, scarf=long, keep_off=_keep_off(job))
+    except scarf.NoPlace as fault:
+        raise TooShort(fault, long) from None
+    bounds = [-np.inf, *joints, np.inf]
+    count = len(bounds) - 1
+    out = []
+    for i in range(count):
+        start, stop = bounds[i], bounds[i + 1] + long
+        sheet = _Web(job, front, rear, hand, f" {i + 1} of {count}" if count > 1 else "")
+        out.append(sheet.piece(start, stop, [(p, p + long) for p in joints if start <= p < stop]).of_hand(hand))
+    return out
+
+
+def _keep_off(job: Job) -> list[tuple[float, float]]:
+    """Stretches of s that no scarf may touch: ends of strips, the joint, register pins, changes of the saw."""
+    off = [(float(s) - PIN / 2.0, float(s) + PIN / 2.0) for s, _ in job.register]
+    if job.record.caps is not None:
+        off += [(layer.stop, layer.stop + ramp(job.record.caps)) for layer in job.layers if not layer.whole]
+    if job.joint is not None and job.tube is not None:
+        end, along = job.joint.thickening, job.tube.outline()[:, 0]
+        ends = [end.place(0.0), end.place(end.full + end.taper), float(along.min()), float(along.max())]
+        off.append((min(ends), max(ends)))
+    off += [(run.start, run.start) for cut in (job.web.top, job.web.bottom) for run in cut.runs[1:]]
+    return [(low - _CLEAR, high + _CLEAR) for low, high in off]
+
+
+@dataclass
+class _Web:
+    """A piece of the web in the making; places are (s, h), as one looks at the rear face of a right-hand panel."""
+
+    job: Job
+    front: shapely.Polygon
+    rear: shapely.Polygon
+    hand: Hand
+    which: str
+
+    def piece(self, start: float, stop: float, joints: list[tuple[float, float]]) -> Piece:
+        """What lies between two places s, with the scarfs at its ends."""
+        window = shapely.box(max(start, -_FAR), -_FAR, min(stop, _FAR), _FAR)
+        whole = self.front.union(self.rear)
+        shape = whole.intersection(window)
+        ring = thin(np.asarray(shape.exterior.coords))[:-1]
+        inside, layout = shapely.Polygon(ring), Layout()
+        layout.keep_clear(inside.exterior)
+        lines = [line for face in (self.front, self.rear) for line in self._face_lines(face, whole, inside)]
+        for low, high in joints:
+            lines += self._scarf(low, high, inside, layout)
+        holes = tuple(Hole(x, y, PIN) for x, y in self.job.register.tolist() if inside.contains(shapely.Point(x, y)))
+        for line in lines:
+            layout.keep_clear(shapely.LineString(line))
+        for hole in holes:
+            layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(PIN / 2.0 + 0.5))
+        self._letter(inside, layout, bool(np.isinf(start)), bool(np.isinf(stop)))
+        strokes = (Stroke(ring, Role.CUT_OUTSIDE, closed=True), *(Stroke(line, Role.ENGRAVE) for line in lines))
+        title = f"Web sheet{self.which}"
+        name = "web-sheet" + self.which.replace(" of ", "-").replace(" ", "-")
+        drawing = Drawing(name, title, self.job.stamp, "right", strokes, holes, tuple(layout.labels))
+        return Piece(drawing, foam_name(self.job, self.job.record.web.foam), self.job.web.plain)
+
+    def _face_lines(self, face: shapely.Polygon, whole: shapely.Polygon, inside: shapely.Polygon) -> list[Array]:
+        """The edges of a face where they run inside the envelope: what the bevel is planed to."""
+        rim = face.exterior.difference(whole.exterior.buffer(_SAME)).intersection(inside.buffer(-_SAME))
+        return [thin(np.asarray(part.coords)) for part in _lines(rim) if part.length > 1.0]
+
+    def _scarf(self, low: float, high: float, inside: shapely.Polygon, layout: Layout) -> list[Array]:
+        """Both ends of the slope, a line to set the two pieces by, and a mark on it beyond either end."""
+        middle = self._middle((low + high) / 2.0)
+        tall = 0.15 * (self.rear.bounds[3] - self.rear.bounds[1])
+        lines = [np.array([[s, -_FAR], [s, _FAR]]) for s in (low, high)]
+        lines += [np.array([[low - _MARK, middle], [high + _MARK, middle]])]
+        lines += [np.array([[s, middle - tall], [s, middle + tall]]) for s in (low - _MARK, high + _MARK)]
+        room = inside.buffer(-_SAME)
+        seen = (room.intersection(shapely.LineString(line)) for line in lines)
+        found = [np.asarray(part.coords) for shape in seen for part in _lines(shape)]
+        for line in found:
+            layout.keep_clear(shapely.LineString(line))
+        words, apart = self.job.wording, high - low + 2.0 * _MARK
+        texts = (f"scarf, feather edges at s {words.plain(low)} in front, s {words.plain(high)} behind",)
+        texts += (f"set with the two marks {words.length(apart)} apart",)
+        ends = inside.bounds[0], inside.bounds[2]
+        for text in texts:
+            spots = [
+                Spot(s, h)
+                for h in (middle + 3.0, middle - 3.0 - SMALL, middle + 8.0, middle - 8.0 - SMALL)
+                for s in np.arange(max(ends[0], low - 200.0), min(ends[1], high + 200.0), 10.0)
+            ]
+            spots.sort(key=lambda spot: abs(spot.x - (low + high) / 2.0))
+            layout.put(text, spots, height=SMALL, within=inside)
+        return found
+
+    def _middle(self, s: float) -> float:
+        """The web line's height where it lies well inside the sheet at s, else mid-height."""
+        both = self.front.intersection(self.rear)
+        _, low, _, high = both.intersection(shapely.LineString([[s, -_FAR], [s, _FAR]])).bounds
+        return 0.0 if low + 0.3 * (high - low) < 0.0 < high - 0.3 * (high - low) else (low + high) / 2.0
+
+    def _letter(self, inside: shapely.Polygon, layout: Layout, root: bool, tip: bool) -> None:
+        x0, y0, x1, y1 = inside.bounds
+        rows = np.linspace(y0, y1, 24)[1:-1]
+        for text, wanted, x in (("ROOT", root, x0 + 6.0), ("TIP", tip, x1 - 3.0)):
+            if wanted:
+                spots = [Spot(x + d, y, "middle", 90.0) for d in (0.0, -2.0, 2.0) for y in rows]
+                layout.put(text, spots, within=inside)
+        places = np.linspace(x0, x1, 60)[3:-3]
+        spots = [Spot(float(x), float(y)) for x in places[np.abs(places - places.mean()).argsort()] for y in rows]
+        text = f"WEB{self.which.upper()}, {self.hand} hand, seen from the rear, UP this way, {self.job.stamp}"
+        any(layout.put(text, spots, height=height, within=inside) for height in (PLAIN, SMALL))
+
+
+def _lines(shape: shapely.Geometry) -> Iterable[shapely.LineString]:
+    merged = shapely.line_merge(shape) if shape.geom_type == "MultiLineString" else shape
+    return (part for part in getattr(merged, "geoms", [merged]) if isinstance(part, shapely.LineString) and part.length)
