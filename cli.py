@@ -15,7 +15,6 @@ if TYPE_CHECKING:
     from .geom.drawing import Hand
     from .geom.seat import Treatment
     from .shop.job import Job
-    from .shop.nesting import Nesting
     from .shop.stock import Paper
     from .shop.units import Units
 
@@ -152,7 +151,7 @@ def templates(
     wing: WingPath,
     out: Annotated[Path, typer.Option(help="The folder to write into.", show_default=False)],
     formats: Annotated[
-        str, typer.Option(help="Drawings: dxf,svg,pdf; csv: lists and a wire's path; nc: that path; solids: stl,3mf,glb.")
+        str, typer.Option(help="Any of dxf,svg,pdf; csv: lists, a wire's path; nc: that path; solids: stl,3mf,glb.")
     ] = "dxf,svg,pdf,csv,nc",
     hand: Annotated[str, typer.Option(help="right, left or both: right,left.")] = "right",
     paper: Annotated[
@@ -172,7 +171,7 @@ def templates(
     kinds = _list_of(formats, {kind: kind for kind in (*bundle.FORMATS, *_PATHS, *_MESHES)}, "--formats")
     hands: list[Hand] = _list_of(hand, {"right": "right", "left": "left"}, "--hand")
     options = _options(job, paper, dxf_version, arcs, kerf)
-    laid = nestings(job, hands)
+    laid = job.nestings if len(hands) == 2 else nestings(job, hands)
     drawings = [drawing for side in hands for drawing in sheets.drawings(job, side)]
     drawings += stock_sheets(job, laid, hands)
     try:
@@ -187,10 +186,46 @@ def templates(
                 made.add(f"{name}-{side}.{kind}", kind, name, side, content)
         for kind, name, content in _meshes(job, [k for k in kinds if k in _MESHES], side):
             made.add(f"{name}-{side}.{kind}", kind, name, side, content)
-    for name, content in _lists(job, laid if len(hands) == 2 else None) if "csv" in kinds else ():
+    for name, content in _lists(job) if "csv" in kinds else ():
         made.add(f"{name}.csv", "csv", name, "both", content)
     folder.write(out, made.files, made.records, stamp=job.stamp)
     typer.echo(f"wrote {len(made.files)} files and manifest.json to {out}")
+
+
+@app.command()
+def report(
+    wing: WingPath,
+    out: Annotated[Path, typer.Option(metavar="FILE.html", help="The page to write.", show_default=False)],
+) -> None:
+    """Write one page to look at: figures, a 3D view, lists and cautions; it needs no network."""
+    from .export import onefile
+
+    onefile.require_place(out)
+    job = _job(wing)
+    from .export import report as page
+
+    onefile.write(out, page.render(job))
+    typer.echo(f"wrote {out}; open it in a browser")
+
+
+@app.command()
+def compare(
+    wing: Annotated[Path, typer.Argument(metavar="A.toml", help="A wing file.", show_default=False)],
+    other: Annotated[Path, typer.Argument(metavar="B.toml", help="The one to compare it with.", show_default=False)],
+    as_json: AsJson = False,
+) -> None:
+    """Say what differs between two wing files, in A's units, and what comes of it."""
+    from .export import table, table_compare
+    from .shop import compare as side_by_side
+
+    found = side_by_side.compare(_job(wing), _job(other))
+    if as_json:
+        typer.echo(table.to_json(table_compare.record(found)))
+        return
+    for shown in table_compare.tables(found):
+        _show(shown, 140)
+    for sentence in table_compare.sentences(found):
+        _say("", sentence)
 
 
 def _options(job: Job, paper: str | None, version: str, arcs: bool, kerf: str) -> Options:
@@ -231,17 +266,14 @@ def _meshes(job: Job, kinds: list[str], hand: Hand) -> list[tuple[str, str, byte
     return [(kind, name, content) for kind in kinds for name, content in mesh.files(found, kind, **words)]
 
 
-def _lists(job: Job, laid: list[Nesting] | None) -> list[tuple[str, bytes]]:
+def _lists(job: Job) -> list[tuple[str, bytes]]:
     """Name and content of the cut list and the shopping list, which are for both hands."""
     from dataclasses import asdict
 
     from .export.table import to_csv
-    from .shop import cutlist, nesting, shopping
 
-    laid = nesting.nestings(job) if laid is None else laid
-    cuts = cutlist.cut_list(job, laid)
-    tables = {"cut-list": cuts, "shopping-list": shopping.shopping_list(job, laid, cuts)}
-    return [(name, to_csv([asdict(row) for row in rows]).encode()) for name, rows in tables.items()]
+    tables = {"cut-list": [asdict(c) for c in job.cut_list], "shopping-list": [asdict(b) for b in job.shopping_list]}
+    return [(name, to_csv(rows).encode()) for name, rows in tables.items()]
 
 
 def _job(wing: Path) -> Job:
@@ -259,10 +291,10 @@ def _say(what: str, figures: str) -> None:
     typer.echo("\n".join(f"{head:<10}{line}" for head, line in zip_longest([what], lines, fillvalue="")))
 
 
-def _show(shown: Any) -> None:
+def _show(shown: Any, width: int = 100) -> None:
     from rich.console import Console
 
-    console = Console(width=None if sys.stdout.isatty() else 100)
+    console = Console(width=None if sys.stdout.isatty() else width)
     console.print(shown.rich())
 
 

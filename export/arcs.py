@@ -52,6 +52,18 @@ def fit(points: Array, closed: bool, tolerance: float = TOLERANCE) -> Array:
     return np.array(out)
 
 
+def mirrored(found: Array) -> Array:
+    """Lines and arcs (m, 3) of the mirror image, x negated, run through the other way.
+
+    Examples
+    --------
+    >>> mirrored(np.array([[0.0, 0.0, 0.5], [1.0, 0.0, 0.0], [4.0, 3.0, 0.0]])).tolist()
+    [[-4.0, 3.0, 0.0], [-1.0, 0.0, 0.5], [0.0, 0.0, 0.0]]
+    """
+    bulges = np.append(found[:-1, 2][::-1], found[-1, 2])
+    return np.column_stack([found[::-1, :2] * [-1.0, 1.0] + 0.0, bulges])
+
+
 def _sharpest(points: Array) -> int:
     """Corner of a closed line at which it turns most: no arc need run over it."""
     (ax, ay), (bx, by) = (points - np.roll(points, 1, axis=0)).T, (np.roll(points, -1, axis=0) - points).T
@@ -82,9 +94,9 @@ def _arc(points: Array, tolerance: float) -> float | None:
     fine = np.vstack([points[:1], np.stack([(points[:-1] + points[1:]) / 2.0, points[1:]], axis=1).reshape(-1, 2)])
     offset = fine - (points[0] + points[-1]) / 2.0
     u, v = offset @ along, offset @ np.array([-along[1], along[0]])
-    # A circle through both ends, of curvature ~ 2 q: v = q (half^2 - u^2 - v^2), by least squares.
+    # A circle through both ends, of curvature ~ 2 q: v = q (half^2 - u^2 - v^2), by least squares over the points.
     w = half**2 - u**2 - v**2
-    q = float(v @ w / (w @ w))
+    q = float(v[::2] @ w[::2] / (w[::2] @ w[::2]))
     sagitta = 2.0 * q * half**2 / (1.0 + np.sqrt(1.0 + 4.0 * q**2 * half**2))
     if abs(sagitta) > half:
         return None

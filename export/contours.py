@@ -110,26 +110,35 @@ def _tidy(stroke: Stroke, name: str) -> Stroke | None:
 
 
 def apart(points: Array, closed: bool) -> Array:
-    """Points (k, 2) without those nearer than `NEAR` to the one before, the ends of an open line kept."""
+    """Points (k, 2) with `NEAR` or more from each to the next, the ends of an open line kept.
+
+    Of two that are too near the one goes that shapes the line least, whichever way the line runs: so the two hands
+    stay mirror images.
+    """
     while len(points) > 2:
-        after = np.roll(points, -1, axis=0) if closed else np.vstack([points[1:], [[np.inf, np.inf]]])
-        near = np.hypot(*(after - points).T) < NEAR
-        if not near.any():
+        before, after = np.roll(points, 1, axis=0) - points, np.roll(points, -1, axis=0) - points
+        near = np.hypot(*after.T) < NEAR
+        if not closed:
+            near[-1] = False
+        crowded = near | np.roll(near, 1)
+        if not closed:
+            crowded[[0, -1]] = False
+        if not crowded.any():
             break
-        first = int(np.argmax(near))
-        second = (first + 1) % len(points)
-        last = not closed and second == len(points) - 1
-        points = np.delete(points, first if last else second, axis=0)
+        bend = np.abs(before[:, 0] * after[:, 1] - before[:, 1] * after[:, 0])
+        order = np.lexsort((points[:, 1], np.abs(points[:, 0]), bend, ~crowded))
+        points = np.delete(points, order[0], axis=0)
     return points
 
 
 def _uncrossed(points: Array, name: str) -> Array:
     """The contour without the specks that its line encloses where it crosses itself."""
     parts = shapely.get_parts(shapely.make_valid(shapely.Polygon(points)))
-    solid = sorted((p for p in parts if isinstance(p, shapely.Polygon)), key=lambda p: -p.area)
-    if not solid or sum(p.area for p in solid[1:]) > _SPECK or solid[0].interiors:
+    largest = max(parts, key=lambda part: part.area)
+    filled = shapely.Polygon(largest.exterior)
+    if sum(part.area for part in parts) - 2.0 * largest.area + filled.area > _SPECK:
         raise ContourError(f"drawing {name}: wanted contours that do not cross themselves, got one that does")
-    return apart(np.asarray(solid[0].exterior.coords)[:-1], closed=True)
+    return apart(np.asarray(filled.exterior.coords)[:-1], closed=True)
 
 
 def _single(strokes: Sequence[Stroke]) -> Iterator[Stroke]:

@@ -9,19 +9,13 @@ from dataclasses import dataclass
 from reportlab.pdfgen.canvas import Canvas
 
 from ..shop.stock import PAPERS
+from ..shop.wording import CAUTIONS
 from .marks import GREY, Marks, begin, breadth, open_file, wrapped
 from .pdf import Print
 from .style import one_line
 from .tiles import Page
 
 NAME = "cover"
-CAUTIONS = (
-    "Foam dust, resins, hot wires and aircraft structure hurt people: wear a mask, gloves and eye protection.",
-    "PVC and polyurethane foams give off poisonous gas under a hot wire: only polystyrene and polypropylene foams are "
-    "cut that way, in moving air.",
-    "Nothing here is proof of airworthiness: the rules of your own country, a licensed engineer and a proof load come "
-    "before flight.",
-)
 _LARGEST = 432.0  # longer paper is left for the drawings, mm
 _EDGE, _LINE = 15.5, 4.6  # margin, and from line to line, mm
 _HEAD = 5.0  # height of the wing's name, mm
@@ -54,17 +48,20 @@ class Revision:
 
 def render(entries: Sequence[Entry], how: Print, of: Revision) -> bytes:
     """The cover as a PDF file, on the drawings' paper unless that is a roll or larger than A3 and tabloid."""
-    page = _page(how)
-    buffer = io.BytesIO()
-    canvas = open_file(buffer, one_line(f"{of.wing}: cover"), f"revision {of.stamp}")
-    cover = _Cover(canvas, page, how, one_line(of.wing), of)
-    cover.head(entries)
-    cover.printing()
-    cover.cautions()
-    cover.table(entries)
-    cover.finish()
-    canvas.save()
-    return buffer.getvalue()
+    count = 1
+    while True:  # a second time if the list turns out to take more pages
+        buffer = io.BytesIO()
+        canvas = open_file(buffer, one_line(f"{of.wing}: cover"), f"revision {of.stamp}")
+        cover = _Cover(canvas, _page(how), how, of, count)
+        cover.head(entries)
+        cover.printing()
+        cover.cautions()
+        cover.table(entries)
+        cover.finish()
+        canvas.save()
+        if cover.number == count:
+            return buffer.getvalue()
+        count = cover.number
 
 
 def _page(how: Print) -> Page:
@@ -78,22 +75,22 @@ def _page(how: Print) -> Page:
 class _Cover(Marks):
     """Writes from the top of a page downwards, and goes on to another page when one is full."""
 
-    def __init__(self, canvas: Canvas, page: Page, how: Print, wing: str, of: Revision) -> None:
+    def __init__(self, canvas: Canvas, page: Page, how: Print, of: Revision, count: int) -> None:
         super().__init__(canvas)
-        self._page, self._how, self._wing, self._of = page, how, wing, of
+        self._page, self._how, self._wing, self._of, self._count = page, how, one_line(of.wing), of, count
         self._room = page.usable[0] - 2.0 * _EDGE
-        self._number = 0
+        self.number = 0
         self._y = 0.0
         self._begin()
 
     def _begin(self) -> None:
         begin(self.canvas, self._page)
-        self._number += 1
+        self.number += 1
         self._y = self._page.usable[1] - _EDGE
 
     def finish(self) -> None:
         """Put the foot under the page."""
-        foot = f"revision {self._of.stamp}, cover, page {self._number}"
+        foot = f"revision {self._of.stamp}, cover, page {self.number} of {self._count}"
         self.say(foot, _EDGE + self._room, _EDGE - 6.0, anchor="end")
         self.say(self._wing, _EDGE, _EDGE - 6.0, room=self._room - breadth(foot) - 5.0)
         self.canvas.showPage()

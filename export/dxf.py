@@ -29,9 +29,10 @@ _OLD_HEAD = " 66\n1\n 10\n0.0\n 20\n0.0\n 30\n0.0\n"  # vertices follow; a point
 class _DxfPen:
     """Writes each mark as the lines of an entity, on its role's layer; ezdxf would take five times as long."""
 
-    def __init__(self, version: Version, arcs: bool, owner: str) -> None:
+    def __init__(self, version: Version, arcs: bool, mirrored: bool, owner: str) -> None:
         self._old = version == "R12"
         self._arcs = arcs
+        self._mirrored = mirrored
         self._owner = owner
         self.handle = _FIRST_HANDLE
         self.lines: list[str] = []
@@ -57,9 +58,15 @@ class _DxfPen:
             self.lines.append(f"  0\nSEQEND\n  8\n{layer}\n")
 
     def stroke(self, stroke: Stroke) -> None:
-        fit = self._arcs and len(stroke.points) > 2
-        points = arc.fit(stroke.points, stroke.closed) if fit else _straight(stroke.points)
-        self._polyline(points, stroke.closed, stroke.role.name)
+        self._polyline(self._fitted(stroke), stroke.closed, stroke.role.name)
+
+    def _fitted(self, stroke: Stroke) -> Array:
+        """Vertices (k, 3); where there are arcs, those of the left hand are the right one's, mirrored."""
+        if not self._arcs or len(stroke.points) < 3:
+            return _straight(stroke.points)
+        if self._mirrored:
+            return arc.mirrored(arc.fit(stroke.points[::-1] * [-1.0, 1.0], stroke.closed))
+        return arc.fit(stroke.points, stroke.closed)
 
     def hole(self, hole: Hole) -> None:
         self._begin("CIRCLE", hole.role.name, "AcDbCircle")
@@ -112,7 +119,7 @@ def render(
         for name, words in said.items():
             document.header.custom_vars.append(name, words)
         _frame(document, drawing)
-        pen = _DxfPen(version, arcs, document.modelspace().layout_key)
+        pen = _DxfPen(version, arcs, drawing.hand == "left", document.modelspace().layout_key)
         drawing.play(pen)
         document.entitydb.handles.reset(f"{pen.handle:X}")
         for kind in sorted(document.entitydb.dxf_types_in_use()):  # ezdxf would take them in a set's order

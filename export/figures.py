@@ -14,7 +14,7 @@ from ..shop.cores import BuiltCore
 from ..shop.job import Job
 from ..shop.weigh import TREATMENTS, Candidate, Verdict, masses
 from ..shop.wording import GRAMS_PER_OUNCE, degrees
-from .plot import BLUE, EDGES, GREEN, INK, LINES, PAPER, PURPLE, QUIET, WIDTH, Array, figure, in_units, name_ends
+from .plot import BLUE, EDGES, GREEN, INK, LINES, PAPER, PURPLE, QUIET, WIDTH, Array, figure, in_units, key_above, name_ends
 
 _MARKS = ("s", "^", "o")  # one for each edge cut
 _BODY = "#eef2f4"
@@ -26,7 +26,7 @@ def plan(job: Job) -> Figure:
     lead, trail = (np.array([job.loft.chord_point(f, v)[1::-1] for v in y]) for f in (0.0, 1.0))
     ring = in_units(job, np.concatenate([lead, trail[::-1]]))
     wide, tall = np.ptp(ring, axis=0)
-    made, (ax,) = figure(1.15 + (WIDTH - 0.7) * tall / wide)
+    made, (ax,) = figure(1.55 + (WIDTH - 0.75) * tall / wide)
     ax.add_patch(Polygon(ring, facecolor=_BODY, edgecolor=INK, linewidth=1.2))
     for core, colour in zip(job.cores, (BLUE, GREEN, PURPLE) * 20, strict=False):
         _bays(job, ax, core, colour)
@@ -35,11 +35,11 @@ def plan(job: Job) -> Figure:
     ax.set_aspect("equal")
     ax.grid(False)
     ax.spines[:].set_visible(False)
-    ax.set_xlim(ring[:, 0].min() - 0.02 * wide, ring[:, 0].max() + 0.02 * wide)
+    ax.set_xlim(ring[:, 0].min() - 0.02 * wide, ring[:, 0].max() + 0.045 * wide)
     ax.set_ylim(ring[:, 1].max() + 0.03 * wide, ring[:, 1].min() - 0.09 * wide)
     ax.set_xlabel(f"y, {job.record.units} out along the span")
     ax.set_ylabel(f"x, {job.record.units} aft")
-    made.legend(loc="outside upper left", ncols=2, fontsize=8)
+    key_above(made, 2)
     return made
 
 
@@ -114,7 +114,7 @@ def washout(job: Job) -> Figure:
 
 def trade(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Figure:
     """Mass of the whole web, and of its filler, against the sheet's thickness; one line for each edge cut."""
-    made, (total, filler) = figure(4.3, 2, height_ratios=[3, 2])
+    made, (total, filler) = figure(4.4, 2, height_ratios=[3, 2])
     unit = GRAMS_PER_OUNCE if job.record.units == "in" else 1.0
     ends: dict[Axes, list[tuple[float, str, str]]] = {total: [], filler: []}
     for edge, mark, (colour, dash) in zip(TREATMENTS, _MARKS, LINES, strict=False):
@@ -129,6 +129,7 @@ def trade(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Figure:
             ends[ax].append((values[-1], edge, colour))
     _refused(job, found, total)
     _picked(job, total, verdict.chosen or verdict.nearest, unit)
+    key_above(made, 3)
     for ax in (total, filler):
         ax.set_ylim(0.0, 1.2 * ax.dataLim.y1)
         name_ends(ax, ends[ax])
@@ -151,12 +152,11 @@ def _refused(job: Job, found: Sequence[Candidate], ax: Axes) -> None:
 def _picked(job: Job, ax: Axes, chosen: Candidate | None, unit: float) -> None:
     """A ring round the candidate to take, and a cross where the wing file stands."""
     stated = float(in_units(job, job.record.web.thickness)), masses(job, job.web).total / unit
-    ax.plot(*stated, "+", color=INK, markersize=13, markeredgewidth=1.4, label="as the wing file states", linestyle="none")
+    ax.plot(*stated, "+", color=INK, markersize=13, markeredgewidth=1.4, label="as stated", linestyle="none")
     if chosen is not None:
         at = float(in_units(job, chosen.thickness)), chosen.masses.total / unit
         label = "to take" if chosen.fits else "nearest to the limits"
         ax.plot(*at, "o", color=INK, markersize=12, markerfacecolor="none", markeredgewidth=1.4, label=label, linestyle="none")
     ax.plot([], [], "o", color=QUIET, markerfacecolor=PAPER, markersize=5, label="breaks a limit", linestyle="none")
-    ax.legend(loc="upper left", fontsize=8)
 
 

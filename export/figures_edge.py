@@ -2,21 +2,22 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-
 import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
-from matplotlib.patches import Polygon
+from matplotlib.ticker import MaxNLocator
 
 from ..geom import seat
 from ..geom import web as web_geometry
+from ..geom.blank import FACES
 from ..geom.profile import face_line, inner, symmetric
 from ..geom.web import SIDES, Side
-from ..shop.job import Job
+from ..shop.job import Job, Row
+from ..shop.stock import Filler
 from ..shop.strips import cover_thickness, rise
-from ..shop.wording import degrees
-from .plot import COVER, EDGES, FILL, FOAM, INK, PAPER, QUIET, RED, SKIN, STRIP, WIDTH, Array, figure, in_units, name_ends
+from ..shop.units import MM_PER_INCH
+from ..shop.wording import GRAMS_PER_OUNCE, degrees
+from .plot import COVER, EDGES, FILL, FOAM, GLUE, INK, PAPER, QUIET, SKIN, STRIP, WIDTH, Array, figure, in_units, name_ends
 
 _T = symmetric(np.linspace(0.0, 1.0, 161))
 _BESIDE = 0.6  # how far beyond the faces an enlarged edge is shown, in thicknesses
@@ -44,18 +45,19 @@ def bevels(job: Job) -> Figure:
 
 def _cut_angles(job: Job, ax: Axes, side: Side) -> None:
     """The saw's settings of a set bevel with their angles written on them, or the level of a square cut."""
-    cut = job.web.cut(side)
+    cut, survey = job.web.cut(side), job.web.survey
     if cut.treatment == "full bevel":
         return
     runs = cut.runs or (seat.Run(0.0, job.web.plane.length, 0.0),)
-    word = "saw set to" if cut.runs else "cut square"
     for i, run in enumerate(runs):
-        at, angle = in_units(job, [run.start, run.stop]), float(np.degrees(run.angle))
-        ax.plot(at, [angle, angle], color=INK, linewidth=2.4, solid_capstyle="butt", label=None if i else word)
-        if cut.runs:
-            ax.annotate(degrees(angle, 2), (float(at.mean()), angle), xytext=(0, -3), textcoords="offset points", ha="center", va="top")
+        at, slope = in_units(job, [run.start, run.stop]), np.tan(run.angle)
+        angle = float(np.degrees(run.angle))
+        ax.plot(at, [angle, angle], color=INK, linewidth=2.4, solid_capstyle="butt", label=None if i else "cut")
         if i:
             ax.axvline(at[0], color=QUIET, linewidth=0.7, linestyle=(0, (1, 2)))
+        under = float(np.interp(run.start, survey.s.ravel(), survey.bevel_slope(side).ravel())) < slope
+        ax.annotate(degrees(angle, 2), (at[0], angle), xytext=(3, 3 if under else -3), textcoords="offset points",
+                    ha="left", va="bottom" if under else "top")
 
 
 def heights(job: Job) -> Figure:
@@ -84,31 +86,42 @@ def heights(job: Job) -> Figure:
 
 
 def fill(job: Job) -> Figure:
-    """The largest gap along each edge, and the filler for each length of it."""
-    made, (gap, area) = figure(3.8, 2)
-    survey = job.web.survey
-    s = in_units(job, survey.s.ravel())
+    """The largest gap along each edge, and what fills it."""
+    made, (gap, mass) = figure(3.8, 2)
+    s = in_units(job, job.web.survey.s.ravel())
     ends: list[list[tuple[float, str, str]]] = [[], []]
-    per = 1.0 / 25.4**2 if job.record.units == "in" else 1.0
+    per = job.stock.find(job.record.web.filler, Filler).density * 1e-3  # g/m for each mm^2
+    if job.record.units == "in":
+        per *= 12.0 * MM_PER_INCH / 1e3 / GRAMS_PER_OUNCE
     for side in SIDES:
         colour, dash = EDGES[side]
         cut = job.web.cut(side)
         found = in_units(job, cut.gap.ravel()), cut.filler_area.ravel() * per
-        for ax, values, named in zip((gap, area), found, ends, strict=True):
+        for ax, values, named in zip((gap, mass), found, ends, strict=True):
             ax.plot(s, values, color=colour, linestyle=dash)
             named.append((float(values[-1]), side, colour))
-        area.fill_between(s, found[1], color=colour, alpha=0.15, linewidth=0.0)
-    if job.record.limits is not None and job.record.limits.max_gap is not None:
-        most = float(in_units(job, job.record.limits.max_gap))
-        gap.axhline(most, color=INK, linewidth=1.0, linestyle=(0, (1, 2)))
-        gap.annotate("largest gap allowed", (1.0, most), xycoords=gap.get_yaxis_transform(), ha="right", va="bottom", xytext=(0, 2), textcoords="offset points")
-    for ax, named in zip((gap, area), ends, strict=True):
-        ax.set_ylim(0.0, 1.15 * max(ax.dataLim.y1, 1e-6))
+        mass.fill_between(s, found[1], color=colour, alpha=0.15, linewidth=0.0)
+    for ax, named in zip((gap, mass), ends, strict=True):
+        ax.set_ylim(0.0, 1.2 * max(ax.dataLim.y1, 1e-6))
         name_ends(ax, named)
+    _allowed(job, gap)
     gap.set_ylabel(f"gap, {job.record.units}")
-    area.set_ylabel("filler, sq in" if job.record.units == "in" else "filler, mm²")
-    area.set_xlabel(_along(job))
+    mass.set_ylabel("filler in it, oz a foot" if job.record.units == "in" else "filler in it, g a metre")
+    mass.set_xlabel(_along(job))
     return made
+
+
+def _allowed(job: Job, ax: Axes) -> None:
+    """The largest gap allowed, as a line, or in words where it is far above the figure."""
+    limit = job.record.limits.max_gap if job.record.limits else None
+    if limit is None:
+        return
+    most, high = float(in_units(job, limit)), ax.get_ylim()[1]
+    where, text = (most, "allowed") if most < high else (high, f"allowed: {job.wording.length(limit)}, above this figure")
+    if most < high:
+        ax.axhline(most, color=INK, linewidth=1.0, linestyle=(0, (1, 2)))
+    ax.annotate(text, (1.0, where), xycoords=ax.get_yaxis_transform(), ha="right", va="bottom" if most < high else "top",
+                xytext=(0, 2), textcoords="offset points", color=QUIET)
 
 
 def _along(job: Job) -> str:
@@ -126,13 +139,28 @@ def places(job: Job) -> list[float]:
 
 
 def section(job: Job, s: float) -> Figure:
-    """The web in its section at a place, and both its edges enlarged beside it."""
-    made = Figure(figsize=(WIDTH, 4.4), layout="constrained")
-    grid = made.add_gridspec(2, 2, height_ratios=[1.0, 1.9])
-    _rib(job, made.add_subplot(grid[0, :]), s)
+    """The web in its section at a place, and both its edges enlarged below it."""
+    made = Figure(figsize=(WIDTH, 3.55))
+    _rib(job, made.add_axes((0.01, 0.65, 0.98, 0.30)), s)
+    row = job.rows([s])[0]
     for i, side in enumerate(SIDES):
-        _edge(job, made.add_subplot(grid[1, i]), s, side)
+        _edge(job, made.add_axes((0.01 + 0.5 * i, 0.0, 0.48, 0.52)), row, side)
     return made
+
+
+def _bare(job: Job, ax: Axes, title: str, around: Array) -> None:
+    """Axes without ticks that hold all points (k, 2), to scale, with a bar that says how long a length is."""
+    (x0, z0), (x1, z1) = around.min(axis=0), around.max(axis=0)
+    tick = MaxNLocator(nbins=5, steps=[1, 2, 5, 10]).tick_values(0.0, x1 - x0)[1]
+    ax.set_axis_off()
+    ax.set_aspect("equal")
+    ax.set_anchor("N")
+    below = z0 - 0.05 * (x1 - x0)
+    ax.plot([x0, x0 + tick], [below, below], color=INK, linewidth=1.6, solid_capstyle="butt")
+    ax.annotate(f"{tick:g} {job.record.units}", (x0 + tick, below), xytext=(4, 0), textcoords="offset points", va="center", fontsize=8)
+    ax.set_xlim(x0, x1)
+    ax.set_ylim(z0 - 0.10 * (x1 - x0), z1)
+    ax.set_title(title, fontsize=8.5)
 
 
 def _rib(job: Job, ax: Axes, s: float) -> None:
@@ -141,26 +169,17 @@ def _rib(job: Job, ax: Axes, s: float) -> None:
     y = float(plane.origin[1] + s * plane.s[1])
     outer = loft.outer(_T, y)[0][:, [0, 2]]
     within = inner(loft, _T, y)[0][:, [0, 2]]
-    lines = [face_line(plane, job.face(face), y) for face in ("front", "rear")]
-    low, high = (_reach(job, s, side) for side in ("bottom", "top"))
+    lines = [face_line(plane, job.face(face), y) for face in FACES]
+    row = job.rows([s])[0]
+    middles = [(edge.cut_front + edge.cut_rear) / 2.0 for edge in (row.bottom, row.top)]
+    low, high = (float(plane.point(s, h, 0.0)[2]) for h in middles)
     web = np.array([_on(line, z) for line, z in ((lines[0], low), (lines[0], high), (lines[1], high), (lines[1], low))])
-    origin = outer[:, 0].min()
-    shown = [in_units(job, points - [origin, 0.0]) for points in (outer, within, web)]
+    shown = [in_units(job, points) for points in (outer, within, web)]
     ax.fill(*shown[0].T, facecolor=SKIN, edgecolor=INK, linewidth=0.6)
     ax.fill(*shown[1].T, facecolor=PAPER, edgecolor=INK, linewidth=0.4)
     ax.fill(*shown[2].T, facecolor=FOAM, edgecolor=INK, linewidth=0.8)
-    ax.set_aspect("equal")
-    ax.grid(False)
-    ax.spines[:].set_visible(False)
-    ax.tick_params(length=2)
-    ax.set_title(f"rib y {job.wording.length(y)}, to scale; s {job.wording.length(s)}")
-
-
-def _reach(job: Job, s: float, side: Side) -> float:
-    """Height in wing axes of the cut's middle at s."""
-    row = job.rows([s])[0]
-    edge = row.top if side == "top" else row.bottom
-    return float(job.web.plane.point(s, (edge.cut_front + edge.cut_rear) / 2.0, 0.0)[2])
+    put = job.wording.column
+    _bare(job, ax, f"s {put(s, 1)} {job.record.units}, rib y {put(y, 1)} {job.record.units}: to scale, nose left", shown[0])
 
 
 def _on(line: Array, z: float) -> Array:
@@ -169,33 +188,26 @@ def _on(line: Array, z: float) -> Array:
     return np.asarray(line[0] + share * (line[1] - line[0]))
 
 
-def _edge(job: Job, ax: Axes, s: float, side: Side) -> None:
+def _edge(job: Job, ax: Axes, row: Row, side: Side) -> None:
     """One edge square to the web line, enlarged: skin, what lies under it, the gap, and the sheet as it is cut."""
-    row = job.rows([s])[0]
     cut = row.top if side == "top" else row.bottom
-    half, up = row.thickness / 2.0, 1.0 if side == "top" else -1.0
-    middle = float(job.over()[1](s))
-    n = np.linspace(middle - half * (1.0 + _BESIDE), middle + half * (1.0 + _BESIDE), 61)
-    within = np.abs(n - middle) <= half + 1e-9
-    inside = _surface(job, s, n, side, 0.0)
-    under = _surface(job, s, n[within], side, float(job.depth[side](s)))
-    slope = (cut.cut_rear - cut.cut_front) / row.thickness
-    line = cut.cut_front + slope * (n[within] - n[within][0])
-    deep = max(float(np.ptp(inside)), float(job.depth[side](s)), row.thickness) * 0.55
-    far = line - up * deep
-    at = in_units(job, n)
-    put = [in_units(job, v) for v in (inside, under, line, far)]
-    skin = put[0] + up * in_units(job, float(job.loft.skin(np.array(row.y), np.array(row.y))[0]))
-    ax.fill_between(at, put[0], skin, facecolor=SKIN, edgecolor=INK, linewidth=0.6)
-    _bed(job, ax, s, n[within], side)
-    ax.fill_between(at[within], put[2], put[1], facecolor=FILL, linewidth=0.0)
-    ax.fill_between(at[within], put[3], put[2], facecolor=FOAM, linewidth=0.0)
-    ax.plot(at[within][[0, 0, -1, -1]], [put[3][0], put[2][0], put[2][-1], put[3][-1]], color=INK, linewidth=1.0)
-    ax.set_aspect("equal")
-    ax.grid(False)
-    ax.spines[:].set_visible(False)
-    ax.tick_params(length=2)
-    ax.set_title(f"{side} edge: bevel {degrees(cut.bevel)},\ngap {job.wording.length(cut.gap)}", fontsize=8)
+    half, up, middle = row.thickness / 2.0, 1.0 if side == "top" else -1.0, float(job.over()[1](row.s))
+    n = middle + half * np.linspace(-1.0 - _BESIDE, 1.0 + _BESIDE, 65)
+    on = np.abs(n - middle) <= half * (1.0 + 1e-9)
+    inside = _surface(job, row.s, n, side, 0.0)
+    skin = inside + up * float(job.loft.skin(np.array(row.y), np.array(row.y))[0])
+    line = cut.cut_front + (cut.cut_rear - cut.cut_front) * (n[on] - n[on][0]) / row.thickness
+    deep = up * max(0.7 * row.thickness, 0.3 * abs(skin - line[0]).max())
+    at, inside, skin, line, far = (in_units(job, v) for v in (n, inside, skin, line, line - deep))
+    ax.fill_between(at, inside, skin, facecolor=SKIN, edgecolor=INK, linewidth=0.6)
+    ax.fill_between(at[on], line, inside[on], facecolor=FILL, linewidth=0.0)
+    _bed(job, ax, row.s, n[on], side)
+    ax.fill_between(at[on], far, line, facecolor=FOAM, linewidth=0.0)
+    ax.plot(at[on][[0, 0, -1, -1]], [far[0], line[0], line[-1], far[-1]], color=INK, linewidth=1.0)
+    level = line.min() if side == "top" else line.max()
+    ax.plot(at[on][[0, -1]], [level, level], color=INK, linewidth=0.9, linestyle=(0, (3, 2)))
+    around = np.column_stack([np.tile(at, 2), np.concatenate([skin, np.resize(far, len(at))])])
+    _bare(job, ax, f"{side} edge: bevel {degrees(cut.bevel)},\ngap {job.wording.length(cut.gap)}", around)
 
 
 def _surface(job: Job, s: float, n: Array, side: Side, depth: float) -> Array:
@@ -203,25 +215,32 @@ def _surface(job: Job, s: float, n: Array, side: Side, depth: float) -> Array:
 
 
 def _bed(job: Job, ax: Axes, s: float, n: Array, side: Side) -> None:
-    """Cover and strips between bond line and seat."""
-    caps = job.record.caps
-    if caps is None or job.caps is None:
+    """Bond line, cover and strips between the skin and the seat."""
+    caps, bond = job.record.caps, job.record.web.bond
+    cover = cover_thickness(job, caps) if caps else 0.0
+    for top, deep, colour in ((0.0, bond, GLUE), (bond, cover, COVER)):
+        if deep:
+            _layer(job, ax, s, n, side, (top, top + deep), colour)
+    if caps is None:
         return
-    bond, cover = job.record.web.bond, cover_thickness(job, caps)
-    put = [in_units(job, _surface(job, s, n, side, depth)) for depth in (bond, bond + cover)]
-    ax.fill_between(in_units(job, n), *put, facecolor=COVER, linewidth=0.0)
     wide = caps.beside * caps.width / 2.0
-    across = np.linspace(max(-wide, n[0]), min(wide, n[-1]), 21)
+    across = np.linspace(max(-wide, n[0]), min(wide, n[-1]), 15)
     here = [layer for layer in job.layers if layer.side == side and (layer.whole or layer.stop >= s)]
     for i in range(len(here)):
-        top = bond + cover + i * rise(caps) + caps.glue
-        put = [in_units(job, _surface(job, s, across, side, depth)) for depth in (top, top + caps.thickness)]
-        ax.fill_between(in_units(job, across), *put, facecolor=STRIP, edgecolor=PAPER, linewidth=0.4)
+        top = bond + cover + i * rise(caps)
+        _layer(job, ax, s, across, side, (top, top + caps.glue), GLUE)
+        _layer(job, ax, s, across, side, (top + caps.glue, top + rise(caps)), STRIP)
 
 
-def key(job: Job) -> Sequence[tuple[str, str]]:
+def _layer(job: Job, ax: Axes, s: float, n: Array, side: Side, depths: tuple[float, float], colour: str) -> None:
+    ends = (in_units(job, _surface(job, s, n, side, depth)) for depth in depths)
+    ax.fill_between(in_units(job, n), *ends, facecolor=colour, linewidth=0.0)
+
+
+def key(job: Job) -> list[tuple[str, str]]:
     """What the colours of the enlarged edges stand for: (colour, what)."""
-    laid = [(STRIP, "cap strips"), (COVER, "cover ply")] if job.record.caps is not None else []
-    if job.record.caps is not None and job.record.caps.cover is None:
-        laid = laid[:1]
+    caps = job.record.caps
+    laid = [(GLUE, "bond line")] if job.record.web.bond or (caps and caps.glue) else []
+    if caps is not None:
+        laid += [(COVER, "cover ply")] * (caps.cover is not None) + [(STRIP, "cap strips")]
     return [(SKIN, "skin"), *laid, (FILL, "filler"), (FOAM, "sheet")]

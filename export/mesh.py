@@ -45,7 +45,7 @@ _PARTS = {
 
 
 def files(solids: Sequence[Solid], kind: str, *, wing: str, stamp: str) -> Iterator[tuple[str, bytes]]:
-    """Name and content of each file of a `kind`, stl, 3mf or glb: a file for each mesh in STL, else one for them all."""
+    """Name and content of each file of a `kind`: one for each mesh for stl, one for them all for 3mf and glb."""
     if kind == "stl":
         for solid in solids:
             yield solid.name, stl(solid, wing=wing, stamp=stamp)

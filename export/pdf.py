@@ -130,7 +130,7 @@ class _PdfPen:
         lines = label.strokes()
         if lines:
             of = np.repeat(np.arange(len(lines)), [len(line) for line in lines])
-            self.shapes += shapely.linestrings(np.concatenate(lines), indices=of).tolist()
+            self.shapes += list(np.asarray(shapely.linestrings(np.concatenate(lines), indices=of)))
             self.roles += [label.role] * len(lines)
 
 

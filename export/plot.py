@@ -18,6 +18,7 @@ import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.backends.backend_svg import FigureCanvasSVG
 from matplotlib.figure import Figure
+from matplotlib.text import Annotation, Text
 from numpy.typing import ArrayLike, NDArray
 
 from ..shop.job import Job
@@ -29,7 +30,7 @@ INK, QUIET, RULE, PAPER = "#222222", "#5a5a5a", "#d4d4d4", "#ffffff"
 BLUE, RED, GREEN, PURPLE, BROWN, SKY = "#0072b2", "#b04300", "#00735c", "#94447c", "#7d5a00", "#1c6f9e"
 LINES = ((BLUE, "-"), (RED, (0, (5, 2))), (GREEN, (0, (1.2, 1.5))), (PURPLE, (0, (6, 2, 1.2, 2))), (INK, "-"), (BROWN, (0, (3, 1.5))))
 EDGES: dict[str, tuple[str, Any]] = {"top": LINES[0], "bottom": LINES[1]}
-FOAM, FILL, STRIP, SKIN, COVER = "#e8dcc0", "#e69f00", "#3c4048", "#8fa3b0", "#56b4e9"
+FOAM, FILL, STRIP, SKIN, COVER, GLUE = "#e8dcc0", "#e69f00", "#3c4048", "#8fa3b0", "#56b4e9", "#cc79a7"
 
 WIDTH = 4.7  # inches: at this width letters can still be read on a telephone
 _STYLE = {
@@ -81,14 +82,52 @@ def style() -> AbstractContextManager[None]:
 
 def figure(height: float, rows: int = 1, **layout: Any) -> tuple[Figure, list[Axes]]:
     """A figure of a height in inches with axes below one another that share x."""
-    made = Figure(figsize=(WIDTH, height), layout="constrained")
+    made = Figure(figsize=(WIDTH, height))
     found = made.subplots(rows, 1, sharex=True, squeeze=False, **layout)
     return made, list(found[:, 0])
+
+
+def key_above(made: Figure, columns: int) -> None:
+    """The legend of all axes over the figure, in columns from the left."""
+    made.legend(
+        loc="upper left", bbox_to_anchor=(0.0, 1.0), ncols=columns, fontsize=8, columnspacing=1.4, borderaxespad=0.2
+    )
+
+
+def settle(made: Figure) -> None:
+    """Leave room round the axes for their lettering, reckoned from the length of the words.
+
+    Matplotlib's own layouts draw a figure several times over to measure it, which takes longer than all the rest.
+    """
+    axes = made.axes
+    wide, high = made.get_size_inches()
+    ticks = max(
+        (len(text) for ax in axes for text in ax.yaxis.get_major_formatter().format_ticks(ax.get_yticks())), default=0
+    )
+    names = max((len(text.get_text()) for ax in axes for text in ax.texts if _beside(text)), default=0)
+    rows = sum(-(-len(legend.get_texts()) // legend._ncols) for legend in made.legends)
+    title = 0.17 if any(ax.get_title("left") for ax in axes) else 0.0
+    top = 0.08 + title + 0.185 * rows + 0.06 * bool(rows)
+    tall = (high - 0.47 - top - (len(axes) - 1) * (0.17 + title)) / len(axes)
+    made.subplots_adjust(
+        left=(0.36 + 0.072 * ticks) / wide,
+        right=1.0 - (0.1 + 0.08 * names) / wide,
+        top=1.0 - top / high,
+        bottom=0.47 / high,
+        hspace=(0.17 + title) / tall,
+    )
+    made.align_ylabels()
+
+
+def _beside(text: Text) -> bool:
+    return isinstance(text, Annotation) and text.xycoords == "axes fraction" and text.xy[0] >= 1.0
 
 
 def to_svg(of: Figure, name: str) -> str:
     """A figure as SVG that can stand inside a page: no size of its own, and every identifier with its name before it."""
     FigureCanvasSVG(of)
+    if of.subplotpars.left == mpl.rcParams["figure.subplot.left"] and of.axes[0].get_subplotspec() is not None:
+        settle(of)
     out = io.StringIO()
     of.savefig(out, format="svg", metadata={"Date": None, "Creator": None, "Format": None, "Type": None})
     svg = out.getvalue()
@@ -140,7 +179,7 @@ def spread(places: Sequence[float], least: float, low: float, high: float) -> li
 def name_ends(ax: Axes, ends: Sequence[tuple[float, str, str]], *, points: float = 11.0) -> None:
     """Name lines at the right of the axes: (height of the line's end, text, colour), moved apart where they are close."""
     low, high = ax.get_ylim()
-    tall = ax.get_position().height * (ax.figure.get_figheight() if isinstance(ax.figure, Figure) else 2.0) * 72.0
+    tall = ax.get_position().height * ax.get_figure(root=True).get_figheight() * 72.0
     to_axes = [float(ax.transAxes.inverted().transform(ax.transData.transform((0.0, y)))[1]) for y, _, _ in ends]
     at = spread([min(max(v, 0.0), 1.0) for v in to_axes], points / tall, 0.0, 1.0)
     for (_, text, colour), y in zip(ends, at, strict=True):

@@ -42,14 +42,15 @@ class Table:
         """Give the table as rich shows it."""
         from rich import box
         from rich.table import Table as RichTable
+        from rich.text import Text
 
         look: dict[str, Any] = {"box": box.SIMPLE_HEAD, "pad_edge": False, "padding": (0, 1, 0, 0)}
-        shown = RichTable(title=self.title, title_justify="left", **look)
+        shown = RichTable(title=Text(self.title), title_justify="left", **look)
         for i, head in enumerate(self.heads):
             words = all(not any(c.isdigit() for c in row[i]) for row in self.rows)
             shown.add_column(head, justify="left" if words else "right", no_wrap=True)
         for i, row in enumerate(self.rows):
-            shown.add_row(*row, style="bold" if i in self.marked else None)
+            shown.add_row(*map(Text, row), style="bold" if i in self.marked else None)
         return shown
 
 

@@ -7,7 +7,7 @@ moved until the bays' errors are equal. Lengths in mm.
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from functools import cached_property
 from itertools import pairwise
 
@@ -20,6 +20,7 @@ Parts = Callable[[float, float], Array]
 
 _NONE = 1e-9  # mm, no error at all
 _MOVES = 60
+_PLACES = 49
 _NEAR = 0.02  # mm, how near a bound is brought
 
 
@@ -46,18 +47,16 @@ class Divider:
         The same from fewer samples, for the first choice.
     longest
         No bay is longer.
-    kinks
-        Places inside the span that bounds may well be put at.
-    places
-        Number of even places among which, with the kinks, bounds are first chosen.
+    spread
+        About as many places as one asks for, among which bounds are first chosen: closer where bays must be short, and
+        wherever a bound should well stand.
     """
 
     ends: tuple[float, float]
     parts: Parts
     rough: Parts
+    spread: Callable[[int], Array]
     longest: float = float("inf")
-    kinks: Array = field(default_factory=lambda: np.empty(0))
-    places: int = 49
 
     def into(self, count: int) -> tuple[float, ...]:
         """Bounds (count + 1) of `count` bays whose largest error is least.
@@ -105,10 +104,9 @@ class Divider:
 
     def _hopeless(self, count: int, tolerance: float) -> bool:
         """Whether even bounds chosen freely could not bring the chosen ones' error down to the tolerance."""
-        if count > self.places // 3:
-            return False
-        # a bay among the even places is at most one step longer than it need be, and the error grows as its square
-        return self._largest(self._chosen(count)) > tolerance * (1.0 + 2.0 * count / self.places) ** 2
+        # a bay among the places is at most one step longer than it need be, and the error grows as its square
+        slack = (1.0 + 2.0 * count / len(self._table(count)[0])) ** 2
+        return self._largest(self._chosen(count)) > tolerance * slack
 
     def _largest(self, bounds: tuple[float, ...]) -> float:
         return float(self._errors(bounds).max())
@@ -117,24 +115,28 @@ class Divider:
         """(bays, k) errors of the parts of all bays."""
         return np.stack([self.parts(float(a), float(b)) for a, b in pairwise(bounds)])
 
-    @cached_property
-    def _y(self) -> Array:
-        return np.union1d(np.linspace(*self.ends, self.places), self.kinks)
+    def _table(self, count: int) -> tuple[Array, Array]:
+        """Places enough for `count` bays; rough errors (k, k) from one to another, infinite where that is no bay."""
+        size = _PLACES
+        while size < 2 * count:
+            size *= 2
+        if size not in self._tables:
+            y = self.spread(size)
+            out = np.full((len(y), len(y)), np.inf)
+            for i in range(len(y)):
+                for j in range(i + 1, len(y)):
+                    if y[j] - y[i] <= self.longest * (1.0 + 1e-9):
+                        out[i, j] = self.rough(float(y[i]), float(y[j])).max()
+            self._tables[size] = y, out
+        return self._tables[size]
 
     @cached_property
-    def _costs(self) -> Array:
-        """(k, k) rough error from place i to place j, infinite where that is no bay."""
-        y = self._y
-        out = np.full((len(y), len(y)), np.inf)
-        for i in range(len(y)):
-            for j in range(i + 1, len(y)):
-                if y[j] - y[i] <= self.longest * (1.0 + 1e-9):
-                    out[i, j] = self.rough(float(y[i]), float(y[j])).max()
-        return out
+    def _tables(self) -> dict[int, tuple[Array, Array]]:
+        return {}
 
     def _chosen(self, count: int) -> tuple[float, ...]:
-        """Bounds among the even places: least largest error by dynamic programming (Bellman 1961)."""
-        y, costs = self._y, self._costs
+        """Bounds among the places: least largest error by dynamic programming (Bellman 1961)."""
+        y, costs = self._table(count)
         total, back = costs[0], []
         for _ in range(count - 1):
             joined = np.maximum(total[:, None], costs)
@@ -150,7 +152,8 @@ class Divider:
 
     def _settled(self, start: tuple[float, ...]) -> tuple[float, ...]:
         """Bounds moved until no small move lowers the largest error: a linear programme over ever smaller moves."""
-        bounds, reach = np.array(start), (self.ends[1] - self.ends[0]) / (2.0 * self.places)
+        bounds, places = np.array(start), self._table(len(start) - 1)[0]
+        reach = np.interp(bounds, places, np.gradient(places)) / 2.0
         errors = self._errors(bounds)
         for _ in range(_MOVES):
             moved = bounds + self._move(bounds, errors, reach)
@@ -159,29 +162,28 @@ class Divider:
             if gain > 0.0:
                 bounds, errors = moved, found
             if gain < 1e-3 * errors.max():
-                reach *= 0.4
-            if reach < _NEAR:
+                reach = 0.4 * reach
+            if reach.max() < _NEAR:
                 break
         return tuple(bounds.tolist())
 
-    def _move(self, bounds: Array, errors: Array, reach: float) -> Array:
-        """Move (count + 1,) of the bounds, `reach` at most, that lowers the largest error most, to first order."""
+    def _move(self, bounds: Array, errors: Array, reach: Array) -> Array:
+        """Move (count + 1,) of the bounds, within their `reach`, that lowers the largest error most, to first order."""
         count, parts = errors.shape
-        step = 0.1 * reach
         slope = np.zeros((count, parts, count + 1))
         for i in range(count):
             for j in (i, i + 1):
                 if 0 < j < count:
                     away = bounds[[i, i + 1]]
-                    away[j - i] += step
-                    slope[i, :, j] = (self.parts(*away.tolist()) - errors[i]) / step
+                    away[j - i] += 0.1 * reach[j]
+                    slope[i, :, j] = (self.parts(*away.tolist()) - errors[i]) / (0.1 * reach[j])
         lengths, room = np.diff(np.eye(count + 1), axis=0), np.diff(bounds)
         level = np.column_stack([slope.reshape(-1, count + 1), -np.ones(count * parts)])
         rows, most = [level, np.pad(-lengths, ((0, 0), (0, 1)))], [-errors.ravel(), 0.9 * room]
         if np.isfinite(self.longest):
             rows.append(-rows[1])
             most.append(self.longest * (1.0 + 1e-9) - room)
-        limits = [(0.0, 0.0), *[(-reach, reach)] * (count - 1), (0.0, 0.0), (0.0, None)]
+        limits = [(0.0, 0.0), *((-r, r) for r in reach[1:-1].tolist()), (0.0, 0.0), (0.0, None)]
         found = linprog(
             np.eye(count + 2)[-1], A_ub=np.concatenate(rows), b_ub=np.concatenate(most), bounds=limits, method="highs"
         )

@@ -18,6 +18,7 @@ from .web import Plane
 Array = NDArray[np.float64]
 Kind = Literal["nose", "aft", "whole"]
 
+_JUMP = 1e-5  # of a slope, no kink below it
 _RING = 81  # points along each side of a section of the core
 
 
@@ -166,5 +167,10 @@ def _walls(rows: int, around: int) -> NDArray[np.intp]:
 
 
 def kinks(loft: Loft, region: Region) -> Array:
-    """Rib planes inside a core's ends where the loft may have a kink."""
-    return loft.knots[(loft.knots > region.ends[0] + 1e-6) & (loft.knots < region.ends[1] - 1e-6)]
+    """Rib planes inside a core's ends where the slope of outer surface or skin along the span jumps."""
+    y = loft.knots[(loft.knots > region.ends[0] + 1e-6) & (loft.knots < region.ends[1] - 1e-6)]
+    t = np.linspace(-1.0, 1.0, 9)[:, None]
+    before = np.nextafter(y, -np.inf)
+    jump = loft.outer(t, y, y)[2] - loft.outer(t, y, before)[2]
+    skin = loft.skin(y, y)[1] - loft.skin(y, before)[1]
+    return np.asarray(y[(np.abs(jump).max(axis=(0, 2)) > _JUMP) | (np.abs(skin) > _JUMP)])

@@ -65,6 +65,7 @@ def card(
     down, out = np.array([0.0, -_FAR]), along * _FAR / reach
     foam = shapely.Polygon([np.zeros(2), down, down + out, out])
     shape = box.difference(foam).difference(shapely.Point(0.0, 0.0).buffer(relief))
+    assert isinstance(shape, shapely.Polygon)
     flip = np.array([1.0 if face == "rear" else -1.0, 1.0 if cut.side == "top" else -1.0])
-    points = np.asarray(shape.exterior.coords)[:-1] * flip
+    points = np.asarray(np.asarray(shape.exterior.coords)[:-1] * flip)
     return points if shapely.LinearRing(points).is_ccw else points[::-1]

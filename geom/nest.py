@@ -165,12 +165,12 @@ def _head_to_tail(i: int, j: int, shapes: Sequence[shapely.Polygon], apart: floa
     below, above = shapes[i], _at_origin(shapely.affinity.rotate(shapes[j], 180.0))
     wide = max(below.bounds[2], above.bounds[2])
     best = None
-    grown = below.buffer(apart)
+    grown = below.buffer(apart, join_style="mitre")
     for shift in (0.0, below.bounds[2] - above.bounds[2]):
         up = _stacked(grown, shapely.affinity.translate(above, shift, 0.0))
-        left = min(0.0, shift)
-        parts = (Laid(i, False, (-left, 0.0)), Laid(j, True, (shift - left, up)))
-        block = _Block(parts, wide + apart, max(below.bounds[3], up + above.bounds[3]) + apart)
+        left, foot = min(0.0, shift), min(0.0, up)
+        parts = (Laid(i, False, (-left, -foot)), Laid(j, True, (shift - left, up - foot)))
+        block = _Block(parts, wide + apart, max(below.bounds[3], up + above.bounds[3]) - foot + apart)
         best = block if best is None or block.high < best.high else best
     assert best is not None
     return best
@@ -190,7 +190,8 @@ def _highest(ring: Array, x: Array) -> Array:
     over = (x[:, None] >= np.minimum(x0, x1)) & (x[:, None] <= np.maximum(x0, x1))
     upright = x0 == x1
     share = (x[:, None] - x0) / np.where(upright, 1.0, x1 - x0)
-    return np.max(np.where(upright, np.maximum(y0, y1), y0 + share * (y1 - y0)), axis=1, where=over, initial=-np.inf)
+    y = np.where(upright, np.maximum(y0, y1), y0 + share * (y1 - y0))
+    return np.asarray(np.max(y, axis=1, where=over, initial=-np.inf))
 
 
 def _moved(part: Laid, corner: tuple[float, float], margin: float) -> Laid:

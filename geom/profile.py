@@ -19,7 +19,8 @@ from .web import Plane
 Array = NDArray[np.float64]
 
 _ROUNDS = 20
-_CLOSE = 1e-10  # mm
+_CLOSE = 1e-6  # mm, before a last straight step
+_NOTHING = 1e-6  # mm
 _FLAT = [0, 2]  # x and z of a point
 _REACH = 80  # points to either side of a fold among which its two ends are looked for
 
@@ -47,6 +48,7 @@ def inner(loft: Loft, t: ArrayLike, y: ArrayLike) -> tuple[Array, Array]:
         if not np.any(np.abs(miss) > _CLOSE):
             break
         above = above + miss
+    point = point + miss[..., None] * by_y  # what is left, along the surface
     normal = np.cross(by_t, by_y)
     return point, np.asarray(normal / np.linalg.norm(normal, axis=-1, keepdims=True))
 
@@ -120,16 +122,16 @@ class Profile:
         """The same with its two sides held `least` mm apart from `tail` on, about the line midway between them."""
         start = self.tail(least)
         depth = self.depth()
-        short = np.where(self.t[len(self.t) // 2 :] > start, np.maximum(least - depth, 0.0), 0.0)
+        short = np.where((self.t[len(self.t) // 2 :] > start) & (least - depth > _NOTHING), least - depth, 0.0)
         if not short.any():
             return self
         half = np.concatenate([-short[:0:-1], short]) / 2.0
         points, normals = self.points + half[:, None] * self.up, self.normals.copy()
-        kink = len(self.t) - 1 - int(np.count_nonzero(half > 0.0))
+        kink = len(self.t) - 1 - int(np.count_nonzero(short))
         for line in (slice(kink, None), slice(len(self.t) - 1 - kink, None, -1)):
             sense = 1.0 if line.step is None else -1.0
             here = sense * _normals(points[line])
-            before = normals[line][0]
+            before = normals[line.start].copy()
             normals[line] = here
             normals[line.start] = (before + here[0]) / (1.0 + before @ here[0])
         return replace(self, points=points, normals=normals)
@@ -230,7 +232,7 @@ def symmetric(t: ArrayLike) -> Array:
     >>> symmetric([0.0, 0.5, 1.0]).tolist()
     [-1.0, -0.5, 0.0, 0.5, 1.0]
     """
-    t = np.unique(np.append(np.asarray(t, dtype=float), 0.0))
+    t = np.unique(np.round(np.append(np.asarray(t, dtype=float), 0.0), 12))  # no two a hair apart
     return np.concatenate([-t[:0:-1], t])
 
 

@@ -57,8 +57,6 @@ class Slot:
     ----------
     front, rear
         (2, 2) two places on each of its sides, the lower one first.
-    width
-        Level across it, mm.
     """
 
     front: Array
@@ -67,7 +65,9 @@ class Slot:
     @property
     def width(self) -> float:
         """Level across it at the web line, mm."""
-        return float(np.mean(self.rear[:, 0] - self.front[:, 0]))
+        z = float(self.front[:, 1].mean())
+        front, rear = (float(np.interp(z, line[:, 1], line[:, 0])) for line in (self.front, self.rear))
+        return rear - front
 
     def shape(self) -> shapely.Polygon:
         """The slot carried on up and down."""

@@ -22,6 +22,7 @@ _ROUNDS = 30
 _CLOSE = 1e-9  # mm^2: what is left of a step along t, squared
 _STEP = 1e-5  # of t, for a difference
 _ZOOMS = 4
+_FEW = 12  # rows: a bay with fewer samples is sampled anew
 
 
 @dataclass(frozen=True)
@@ -42,6 +43,10 @@ class Grid:
 
     Attributes
     ----------
+    region
+        The core.
+    kinks
+        Rib planes among `y` where the surface has a kink along the span.
     t, y
         (T,) and (M,) the samples.
     points, normals
@@ -52,6 +57,8 @@ class Grid:
         (M, B) parameters t at which the core's own limits stand.
     """
 
+    region: Region
+    kinks: Array
     t: Array
     y: Array
     points: Array
@@ -71,9 +78,13 @@ class Grid:
         share = (y - self.y[i]) / (self.y[i + 1] - self.y[i])
         return np.asarray(self.points[i] + share * (self.points[i + 1] - self.points[i]))
 
+    def rows(self, a: float, b: float) -> slice:
+        """The samples between ribs a and b."""
+        return slice(int(np.searchsorted(self.y, a, side="right")), int(np.searchsorted(self.y, b)))
+
     def off(self, a: float, b: float) -> tuple[Array, Array, Array]:
         """What a straight cut from rib a to rib b misses by, to first order: y (m,), off (m, T), and at the bounds."""
-        here = slice(int(np.searchsorted(self.y, a, side="right")), int(np.searchsorted(self.y, b)))
+        here = self.rows(a, b)
         y = self.y[here]
         ends = self.row(a), self.row(b)
         ruled = ends[0] + ((y - a) / (b - a))[:, None, None] * (ends[1] - ends[0])
@@ -90,8 +101,7 @@ class Grid:
         y, off, at_bounds = self.off(a, b)
         out = np.zeros((4, 2))
         if len(y):
-            first = int(np.searchsorted(self.y, y[0]))
-            off = np.where(self.inside[first : first + len(y)], off, 0.0)
+            off = np.where(self.inside[self.rows(a, b)], off, 0.0)
             most = (
                 np.maximum(off.max(axis=1), at_bounds.max(axis=1)),
                 np.maximum(-off.min(axis=1), -at_bounds.min(axis=1)),
@@ -104,19 +114,47 @@ class Grid:
         """Largest straight-cut error of a bay from rib a to rib b, mm, to first order."""
         return float(self.parts(a, b).max())
 
+    def spread(self, count: int) -> Array:
+        """About `count` places over the span, close where the surface bends much along it, and one at each kink.
+
+        What a straight cut misses by grows as the bend times the square of its length, so the root of the bend says how
+        close places must be; they are never further apart than three times the mean distance.
+        """
+        step = np.diff(self.y)
+        slope = np.diff(self.points, axis=0) / step[:, None, None]
+        bend = np.einsum("mti,mti->mt", np.diff(slope, axis=0), self.normals[1:-1])
+        bend /= (step[1:, None] + step[:-1, None]) / 2.0
+        most = np.where(self.inside[1:-1], np.abs(bend), 0.0).max(axis=1)
+        plain = ~np.isin(self.y[1:-1], self.kinks)
+        density = np.sqrt(np.interp(self.y, self.y[1:-1][plain], most[plain]))
+        mean = float(np.trapezoid(density, self.y) / np.ptp(self.y))
+        density = np.maximum(density, max(mean / 3.0, 1e-12))
+        passed = np.append(0.0, np.cumsum((density[1:] + density[:-1]) / 2.0 * step))
+        places = np.interp(np.linspace(0.0, passed[-1], count), passed, self.y)
+        return np.union1d(places, self.kinks)
+
     def thinned(self, rows: int, columns: int) -> Grid:
         """The same with only every so many rows and columns."""
         y, t = slice(None, None, rows), slice(None, None, columns)
-        return Grid(self.t[t], self.y[y], self.points[y, t], self.normals[y, t], self.inside[y, t], self.bounds[y])
+        return Grid(
+            self.region,
+            self.kinks,
+            self.t[t],
+            self.y[y],
+            self.points[y, t],
+            self.normals[y, t],
+            self.inside[y, t],
+            self.bounds[y],
+        )
 
 
 def grid(loft: Loft, region: Region, *, rows: int = 241, columns: int = 64) -> Grid:
-    """Sample the skin's inside over a core.
+    """Sample the skin's inside over a core, half of the rows evenly and half where it bends most along the span.
 
     Parameters
     ----------
     rows
-        Rib planes from end to end, to which those are added where the loft may have a kink.
+        Rib planes from end to end, to which those are added where the loft has a kink.
     columns
         Parameters t on each side.
 
@@ -125,7 +163,12 @@ def grid(loft: Loft, region: Region, *, rows: int = 241, columns: int = 64) -> G
     NoFoam
         If the core has no foam somewhere.
     """
-    y = np.union1d(np.linspace(*region.ends, rows), kinks(loft, region))
+    even = np.union1d(np.linspace(*region.ends, (rows + 1) // 2), kinks(loft, region))
+    first = _sampled(loft, region, even, max(columns // 4, 12))
+    return _sampled(loft, region, np.union1d(even, first.spread(rows - len(even))), columns)
+
+
+def _sampled(loft: Loft, region: Region, y: Array, columns: int) -> Grid:
     t = symmetric(np.linspace(0.0, 1.0, columns + 1))
     points, normals = (v[..., [0, 2]] for v in inner(loft, t, y[:, None]))
     turn = loft.washout(y, y)[0]
@@ -140,7 +183,8 @@ def grid(loft: Loft, region: Region, *, rows: int = 241, columns: int = 64) -> G
         keep &= np.abs(t) >= start.min() - 0.02
     side = (t > 0.0).astype(int)
     inside = (np.abs(t) >= start[:, side]) & (np.abs(t) <= stop[:, side])
-    return Grid(t[keep], y, points[:, keep], normals[:, keep], inside[:, keep], bounds)
+    kinked = np.intersect1d(y, kinks(loft, region))
+    return Grid(region, kinked, t[keep], y, points[:, keep], normals[:, keep], inside[:, keep], bounds)
 
 
 def proud(loft: Loft, bay: tuple[float, float], t: ArrayLike, y: ArrayLike) -> Array:
@@ -175,10 +219,11 @@ def _dot(u: Array, v: Array) -> Array:
 
 def worst(loft: Loft, sampled: Grid, bay: tuple[float, float]) -> Miss:
     """The largest straight-cut error of a bay, closed in upon from the samples."""
+    if len(sampled.y[sampled.rows(*bay)]) < _FEW:
+        inside = sampled.kinks[(sampled.kinks > bay[0]) & (sampled.kinks < bay[1])]
+        sampled = _sampled(loft, sampled.region, np.union1d(np.linspace(*bay, _FEW + 2), inside), 64)
     y, off, at_bounds = sampled.off(*bay)
-    if not len(y):
-        return Miss(0.0, float(sampled.bounds[0, -1]), bay[0])
-    first = int(np.searchsorted(sampled.y, y[0]))
+    first = sampled.rows(*bay).start
     off = np.where(sampled.inside[first : first + len(y)], np.abs(off), 0.0)
     row, column = np.unravel_index(int(off.argmax()), off.shape)
     starts = [(float(off.max()), float(sampled.t[column]), float(y[row]))]
@@ -193,7 +238,7 @@ def worst(loft: Loft, sampled: Grid, bay: tuple[float, float]) -> Miss:
 def _close_in(loft: Loft, sampled: Grid, bay: tuple[float, float], t: float, y: float) -> Miss:
     """Look ever more closely about one place of a core, never beyond its limits."""
     wide_t = float(np.diff(sampled.t).max())
-    wide_y = max(float(sampled.y[1] - sampled.y[0]), 0.1 * (bay[1] - bay[0]))
+    wide_y = 0.1 * (bay[1] - bay[0])
     span = np.linspace(-1.0, 1.0, 7)
     best = Miss(0.0, t, y)
     for _ in range(_ZOOMS):

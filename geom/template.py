@@ -109,7 +109,7 @@ def _straight(bay: Bay, end: int, run: Run) -> Board:
     inwards = edge[[0, -1]] - 2.0 * _BOARD * run.normals[end][[0, -1]]
     shape = shapely.union(pins, shapely.Polygon([edge[0], edge[-1], inwards[1], inwards[0]])).convex_hull
     beyond = edge[[0, -1]] + 1e3 * run.normals[end][[0, -1]]
-    kept = shape.difference(shapely.Polygon([*_longer(edge[[0, -1]]), *_longer(beyond[::-1])]))
+    kept = shape.difference(shapely.Polygon([*_longer(edge[[0, -1]]), *_longer(beyond[::-1])])).simplify(1e-6)
     return Board(run.name, shapely.get_coordinates(kept)[:-1], (run,), ())
 
 

@@ -168,8 +168,7 @@ def _how(job: Job, stated: Core) -> How:
 def _bounds(job: Job, key: str, stated: Core, region: Region, sampled: Grid, off: Off) -> tuple[float, ...]:
     """Ribs between the bays: as many as stated, or the fewest that hold the tolerance."""
     longest = stated.longest or float("inf")
-    kinks = core.kinks(job.loft, region)
-    divider = bays.Divider(region.ends, sampled.parts, sampled.thinned(2, 2).parts, longest, kinks)
+    divider = bays.Divider(region.ends, sampled.parts, sampled.thinned(2, 2).parts, sampled.spread, longest)
     span, words = region.ends[1] - region.ends[0], job.wording
     need = int(np.ceil(span / longest - 1e-9))
     if need > (stated.bays or stated.most):

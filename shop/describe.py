@@ -10,7 +10,7 @@ import numpy as np
 from ..geom import washout
 from ..geom import web as web_geometry
 from ..geom.web import SIDES, Side
-from . import describe_core, describe_joint, describe_strength
+from . import describe_core, describe_cutting, describe_joint, describe_strength
 from .job import Job
 from .weigh import masses
 from .wording import degrees
@@ -47,8 +47,10 @@ class Facts:
     joint: dict[str, Any] | None
     flanges: list[dict[str, Any]]
     cores: list[dict[str, Any]]
+    wire: list[dict[str, Any]]
     ribs: list[dict[str, Any]]
     cradles: list[dict[str, Any]]
+    sheets: list[dict[str, Any]]
     doubts: tuple[str, ...]
 
 
@@ -87,15 +89,28 @@ def facts(job: Job) -> Facts:
         joint=describe_joint.joint_record(job),
         flanges=describe_joint.flange_records(job),
         cores=describe_core.core_records(job),
+        wire=describe_core.path_records(job),
         ribs=describe_core.rib_records(job),
         cradles=describe_core.cradle_records(job),
+        sheets=describe_cutting.records(job),
         doubts=doubts(job),
     )
 
 
 def lines(job: Job) -> list[tuple[str, str]]:
     """The facts as a builder reads them: (what, figures)."""
-    f, words, wing = facts(job), job.wording, job.record.wing
+    return [
+        *panel(job),
+        *describe_strength.lines(job),
+        *describe_joint.lines(job),
+        *describe_core.lines(job),
+        *describe_cutting.lines(job),
+    ]
+
+
+def panel(job: Job) -> list[tuple[str, str]]:
+    """The panel's shape and its web, the first of the lines."""
+    f, words, wing = job.facts, job.wording, job.record.wing
     airfoils = list(dict.fromkeys(s.airfoil for s in wing.stations))
     per = 1000.0 if words.units == "mm" else 304.8
     ends = job.record.web.ends
@@ -129,9 +144,6 @@ def lines(job: Job) -> list[tuple[str, str]]:
             f"{f.edge}{runs}, largest gap {words.length(f.gap)}",
         ),
         ("masses", f"filler {words.mass(f.filler)}, the web with all that bonds it {words.mass(f.mass)}"),
-        *describe_strength.lines(job),
-        *describe_joint.lines(job),
-        *describe_core.lines(job),
     ]
 
 
@@ -161,6 +173,7 @@ def doubts(job: Job) -> tuple[str, ...]:
         *describe_strength.doubts(job),
         *describe_joint.doubts(job),
         *describe_core.doubts(job),
+        *describe_cutting.doubts(job),
     )
 
 

@@ -35,11 +35,12 @@ def _core(job: Job, made: BuiltCore) -> str:
     bays = "1 bay" if count == 1 else f"{count} bays"
     return (
         f"{made.number} {made.stated.region}, rib {words.plain(made.bounds[0])} to {words.plain(made.bounds[-1])}, "
-        f"{made.foam.name}, {words.mass(made.mass)}: {bays}, the straight cut {_miss(job, made.worst)}"
+        f"{made.foam.name}, {words.mass(made.mass)}: {bays}, the straight cut {miss_words(job, made.worst)}"
     )
 
 
-def _miss(job: Job, miss: Miss) -> str:
+def miss_words(job: Job, miss: Miss) -> str:
+    """How far a straight cut is off, and where."""
     if abs(miss.off) < 5e-4:
         return "true"
     how = "proud by" if miss.off > 0.0 else "short by"
@@ -55,14 +56,15 @@ def _bay(job: Job, made: BuiltCore, index: int) -> str:
     block = " x ".join(words.column(v, digits) for v in (bay.length, wide, high))
     return (
         f"{index + 1}: rib {words.column(bay.ends[0].y, digits)} to {words.column(bay.ends[1].y, digits)}, "
-        f"block {block} {words.units}, {_miss(job, made.misses[index])}"
+        f"block {block} {words.units}, {miss_words(job, made.misses[index])}"
     )
 
 
 def _ribs(job: Job) -> str:
     words = job.wording
     widths = [rib.slot.width for rib in job.ribs if rib.slot is not None]
-    slots = f", slots {words.plain(min(widths))} to {words.length(max(widths))} wide" if widths else ""
+    ends = list(dict.fromkeys(words.plain(width) for width in (min(widths, default=0.0), max(widths, default=0.0))))
+    slots = f", slots {' to '.join(ends)} {words.units} wide" if widths else ""
     return f"{len(job.ribs)} at y {', '.join(words.plain(rib.y) for rib in job.ribs)}{slots}"
 
 
@@ -134,6 +136,19 @@ def core_records(job: Job) -> list[dict[str, Any]]:
             "caution": HOT_WIRE,
         }
         for made in job.cores
+    ]
+
+
+def path_records(job: Job) -> list[dict[str, Any]]:
+    """The paths of the wire as records: minutes in the foam, and how far the machine's axes reach, mm."""
+    return [
+        {
+            "core": found.core.number,
+            "bay": found.index + 1,
+            "minutes": found.path.minutes,
+            "reach": found.path.planes.max(axis=(0, 1)).tolist(),
+        }
+        for found in job.wire_paths
     ]
 
 

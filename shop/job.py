@@ -22,6 +22,7 @@ from .cores import BuiltCore, WirePath, wire_paths
 from .cores import built as built_cores
 from .flanges import BuiltFlange
 from .joint import JointEnd
+from .results import Results
 from .values import KeyedError
 from .wingfile import Loaded, WingError
 from .wording import Wording
@@ -113,7 +114,7 @@ class BuiltWeb:
         return float(max(np.abs(a).max() for a in angles)), float(max(np.ptp(a) for a in angles))
 
 
-class Job:
+class Job(Results):
     """What a wing file leads to.
 
     Parameters
@@ -509,12 +510,12 @@ class Job:
         return [EdgeRow(*map(float, row)) for row in zip(*columns, strict=True)]
 
 
-def load(path: str | Path) -> Job:
-    """The job of a wing file.
+def load(path: str | Path, changes: Mapping[str, object] | None = None) -> Job:
+    """The job of a wing file, or of what it would be with some values changed: see `changes.changed`.
 
     Raises
     ------
     WingError
         If the file cannot be used; one line that names the file and the key.
     """
-    return Job(wingfile.load(Path(path)))
+    return Job(wingfile.load(Path(path), changes))

@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 import shapely
+from numpy.typing import NDArray
 from shapely.geometry.base import BaseGeometry
 
 from ..geom import lettering
@@ -42,6 +43,27 @@ class Layout:
         if within is not None and not within.contains(roomy):
             return False
         return not any(roomy.intersects(other) for other in self._taken)
+
+    def put_within(
+        self, text: str, places: NDArray[np.float64], within: BaseGeometry, *, heights: Iterable[float] = (2.5,)
+    ) -> bool:
+        """Write `text` level about the first of many places (k, 2) with room for it inside `within`.
+
+        The heights of lettering are tried one after another; False, and nothing written, if none fits.
+        """
+        shapely.prepare(within)
+        taken = shapely.STRtree(self._taken)
+        for height in heights:
+            half = lettering.width(text, height) / 2.0 + _AIR
+            x, y = places.T
+            boxes = shapely.box(x - half, y - 0.34 * height - _AIR, x + half, y + 1.2 * height + _AIR)
+            room = shapely.contains(within, boxes)
+            room[taken.query(boxes, predicate="intersects")[0]] = False
+            if room.any():
+                at = places[int(room.argmax())]
+                self.write(Label(text, float(at[0]), float(at[1]), height, anchor="middle"))
+                return True
+        return False
 
     def put(
         self,

@@ -5,6 +5,7 @@ from __future__ import annotations
 from ..geom.drawing import Drawing, Hand
 from .job import Job
 from .sheets_core import core_boards
+from .sheets_cut import web_cut
 from .sheets_flange import flange_patterns
 from .sheets_gauge import bevel_gauges
 from .sheets_joint import joint_pads
@@ -16,6 +17,7 @@ def drawings(job: Job, hand: Hand = "right") -> list[Drawing]:
     """Every drawing of a job, for one hand."""
     return [
         *web_blank(job, hand),
+        *web_cut(job, hand),
         *bevel_gauges(job, hand),
         *flange_patterns(job, hand),
         *joint_pads(job, hand),

@@ -8,7 +8,6 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom import lettering
 from ..geom.block import PIN
 from ..geom.drawing import Anchor, Drawing, Hand, Hole, Label, Role, Stroke, thin
 from ..geom.profile import turned
@@ -73,13 +72,20 @@ class _Sheet:
         return self.made.bays[self.index]
 
     def drawing(self) -> Drawing:
-        foot = 0.0
+        foot, labels = 0.0, []
         for end, boards in enumerate(self.made.boards[self.index]):
             for board in boards:
+                before, self.layout = self.layout, Layout()
+                for label in before.labels:  # of the board above; nothing else reaches so far down
+                    self.layout.keep_clear(label.box())
                 foot = self._board(board, end, foot) - _APART
-        left = min(float(stroke.points[:, 0].min()) for stroke in self.strokes)
+                labels += self.layout.labels
+        sides = np.concatenate([stroke.points[:, 0] for stroke in self.strokes])
         said = notes(self.job, self.made, self.index, self.hand)
-        self._write([self.job.record.name, *said], left, foot + 6.0)
+        self.layout = Layout(labels)
+        # once mirrored, a left hand's notes start at the left as well
+        start: tuple[float, Anchor] = (sides.min(), "start") if self.hand == "right" else (sides.max(), "end")
+        self._write([self.job.record.name, *said], *start, foot + 6.0)
         drawing = Drawing(
             name=f"{self.made.name}-bay-{self.index + 1}",
             title=f"Core {self.made.number}, {self.made.stated.region}, bay {self.index + 1}",
@@ -91,13 +97,13 @@ class _Sheet:
         )
         return drawing if self.hand == "right" else drawing.mirrored(self.hand)
 
-    def _write(self, notes: list[str], x: float, y: float) -> None:
+    def _write(self, notes: list[str], x: float, anchor: Anchor, y: float) -> None:
         """Write the notes, two of them large, with some air between them."""
         for i, note in enumerate(notes):
             height = LARGE if i < 2 else PLAIN
             for line in wrapped(note, height, _WIDE):
                 y -= 1.6 * height
-                self.layout.write(Label(line, x, y, height))
+                self.layout.write(Label(line, float(x), y, height, anchor=anchor))
             y -= 0.5 * height
 
     def _board(self, board: Board, end: int, top: float) -> float:
@@ -217,16 +223,9 @@ class _Sheet:
         """Write a text on a board where there is room, near its middle or just above or below a height."""
         x0, z0, x1, z1 = inside.bounds
         rows = np.linspace(z0, z1, 15)[1:-1] if near is None else np.array([near + 1.4, near - 4.0])
-        x, z = (v.ravel() for v in np.meshgrid(np.linspace(x0, x1, 17)[1:-1], rows))
-        order = np.argsort(np.abs(x - inside.centroid.x) + 3.0 * np.abs(z - inside.centroid.y))
-        for height in (PLAIN, SMALL, _LEAST):
-            half = lettering.width(text, height) / 2.0
-            fits = [shapely.contains_xy(inside, x + a, z + b) for a in (-half, 0.0, half) for b in (0.0, height)]
-            room = np.all(fits, axis=0)
-            spots = [Spot(float(x[i]), float(z[i])) for i in order if room[i]]
-            if self.layout.put(text, spots, height=height, within=inside):
-                return True
-        return False
+        places = np.stack(np.meshgrid(np.linspace(x0, x1, 17)[1:-1], rows), axis=-1).reshape(-1, 2)
+        off = np.abs(places - [inside.centroid.x, inside.centroid.y]) @ [1.0, 3.0]
+        return self.layout.put_within(text, places[np.argsort(off)], inside, heights=(PLAIN, SMALL, _LEAST))
 
     def _engrave(self, line: Array) -> None:
         self.strokes.append(Stroke(line, Role.ENGRAVE))

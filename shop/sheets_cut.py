@@ -24,7 +24,9 @@ _WHOSE = {"front": "front face ends here, on the far side", "rear": "rear face e
 
 def web_cut(job: Job, hand: Hand = "right") -> list[Drawing]:
     """The blank as a router cuts it, seen from the rear: the outline of both faces together, and the lines within."""
-    whole = shapely.union_all([shapely.Polygon(np.concatenate(_edges(face))) for face in job.web.faces])
+    front, rear = (shapely.Polygon(np.concatenate(_edges(face))) for face in job.web.faces)
+    whole = front.union(rear)
+    assert isinstance(whole, shapely.Polygon)  # the two faces lie over one another
     layout = Layout()
     layout.keep_clear(whole.exterior)
     strokes = [Stroke(np.asarray(whole.exterior.coords)[:-1], Role.CUT_OUTSIDE, closed=True)]

@@ -61,21 +61,22 @@ class _Sheet:
         """Write a text where the piece has room for it, near its middle."""
         x0, z0, x1, z1 = within.bounds
         centre = within.representative_point()
-        spots = [Spot(float(x), float(z)) for x in np.linspace(x0, x1, 17)[1:-1] for z in np.linspace(z0, z1, 15)[1:-1]]
-        spots.sort(key=lambda spot: abs(spot.x - centre.x) + 2.0 * abs(spot.y - centre.y))
-        return any(self.layout.put(text, spots, height=h, within=within) for h in (PLAIN, SMALL, _LEAST))
+        sides = np.linspace(x0, x1, 17)[1:-1], np.linspace(z0, z1, 15)[1:-1]
+        places = np.stack(np.meshgrid(*sides), axis=-1).reshape(-1, 2)
+        off = np.abs(places - [centre.x, centre.y]) @ [1.0, 2.0]
+        return self.layout.put_within(text, places[np.argsort(off)], within, heights=(PLAIN, SMALL, _LEAST))
 
-    def say(self, notes: list[str], heads: int) -> None:
-        """Write the notes below what is drawn, the first ones large."""
+    def say(self, notes: list[str], hand: Hand) -> None:
+        """Write the notes below what is drawn, the first two large; a left hand's start at the left once mirrored."""
         points = np.concatenate([stroke.points for stroke in self.strokes])
         boxes = [label.box().bounds for label in self.layout.labels]
-        x = float(points[:, 0].min())
+        x = float(points[:, 0].min() if hand == "right" else points[:, 0].max())
         y = min([float(points[:, 1].min()), *(box[1] for box in boxes)]) - 4.0
         for i, note in enumerate(notes):
-            height = LARGE if i < heads else PLAIN
+            height = LARGE if i < 2 else PLAIN
             for line in wrapped(note, height, _WIDE):
                 y -= 1.6 * height
-                self.layout.write(Label(line, x, y, height))
+                self.layout.write(Label(line, x, y, height, anchor="start" if hand == "right" else "end"))
             y -= 0.4 * height
 
     def drawing(self, job: Job, name: str, title: str, notes: list[str], hand: Hand) -> Drawing:
@@ -124,7 +125,7 @@ def _rib(job: Job, made: Rib, number: int, hand: Hand) -> Drawing:
     if made.holes and stated is not None and stated.margin is not None:
         notes.append(f"Lightening holes leave {words.length(stated.margin)} all round.")
     notes.append(f"Wing file revision {job.stamp}")
-    sheet.say([job.record.name, f"rib {number}, {hand.upper()} hand", *notes], 2)
+    sheet.say([job.record.name, f"rib {number}, {hand.upper()} hand", *notes], hand)
     return sheet.drawing(job, f"rib-{number}", f"Rib {number}, y {words.length(made.y)}", notes, hand)
 
 
@@ -165,7 +166,7 @@ def _cradle(job: Job, made: tuple[Cradle, ...], index: int, hand: Hand) -> Drawi
         "The face that is drawn on stands at that y and looks to the root.",
         f"Wing file revision {job.stamp}",
     ]
-    sheet.say([job.record.name, f"cradle {number}, {hand.upper()} hand", *notes], 2)
+    sheet.say([job.record.name, f"cradle {number}, {hand.upper()} hand", *notes], hand)
     return sheet.drawing(job, f"cradle-{number}", f"Cradle {number}, y {words.length(cradle.y)}", notes, hand)
 
 
@@ -220,5 +221,5 @@ def _strip(job: Job, made: tuple[Cradle, ...], hand: Hand) -> Drawing:
         f"Cradles from root to tip at y {places} {words.units}, {gaps} apart.",
         f"Wing file revision {job.stamp}",
     ]
-    sheet.say([job.record.name, f"where the cradles stand, {hand.upper()} hand", *notes], 2)
+    sheet.say([job.record.name, f"where the cradles stand, {hand.upper()} hand", *notes], hand)
     return sheet.drawing(job, "cradle-strip", "Where the cradles stand", notes, hand)

@@ -86,9 +86,12 @@ def _pastes(job: Job, weights: Masses) -> Iterator[Buy]:
     """Filler and resin for both hands, with the stated allowance."""
     web, allowance = job.record.web, (job.record.cutting or Cutting()).allowance
     resin = weights.bond + sum(areal - dry for areal, dry in _laminates(job, weights))
-    pastes = ((web.filler, Filler, weights.filler, "gaps"), (web.adhesive, Adhesive, resin, "bond lines and laminates"))
-    for name, kind, grams, use in pastes:
-        density = job.stock.find(name, kind).density
+    filler, glue = job.stock.find(web.filler, Filler), job.stock.find(web.adhesive, Adhesive)
+    pastes = (
+        (web.filler, filler.density, weights.filler, "gaps"),
+        (web.adhesive, glue.density, resin, "bond lines and laminates"),
+    )
+    for name, density, grams, use in pastes:
         mass = 2.0 * grams * (1.0 + allowance)
         note = f"for {use}, {100.0 * allowance:.0f} % more than needed"
         yield Buy(name, "", _round(mass / density * 1e3), "cm³", _round(mass), note)
@@ -113,8 +116,8 @@ def _laminates(job: Job, weights: Masses) -> Iterator[tuple[float, float]]:
 
 
 def _cloths(job: Job, weights: Masses) -> Iterator[Buy]:
-    area: Counter[str] = Counter()
-    grams: Counter[str] = Counter()
+    area: defaultdict[str, float] = defaultdict(float)
+    grams: defaultdict[str, float] = defaultdict(float)
     for name, dry, resin, mass in _plies(job, weights):
         grams[name] += 2.0 * mass * (1.0 - resin)
         area[name] += 2.0 * mass * (1.0 - resin) / dry

@@ -50,9 +50,13 @@ def solids(job: Job, hand: Hand = "right") -> list[Solid]:
 
     An edge whose gap is less than a hundredth of a millimetre on the average has no filler among them.
     """
+    return [body.mirrored() for body in job.solids] if hand == "left" else job.solids
+
+
+def built(job: Job) -> list[Solid]:
+    """Every mesh of the right-hand panel."""
     made = [_web(job), *_fillers(job), *_strips(job), *_cores(job)]
-    found = [replace(body, mesh=solid.welded(body.mesh)) for body in made]
-    return [body.mirrored() for body in found] if hand == "left" else found
+    return [replace(body, mesh=solid.welded(body.mesh)) for body in made]
 
 
 def _web(job: Job) -> Solid:

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 import shapely
 from numpy.typing import NDArray
+from shapely.geometry.base import BaseGeometry
 
 from ..geom import blank, scarf
 from ..geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
@@ -23,7 +24,7 @@ PIN = 3.0  # mm, diameter of the register holes
 SMALL, PLAIN = 2.5, 3.0  # heights of lettering
 _CLEAR = 5.0  # mm that a scarf keeps from what ends or is pinned near it
 _MARK = 40.0  # mm from a scarf to the marks it is set by
-_SAME = 0.05  # mm within which a face's line is the outline itself
+_SAME = 0.1  # mm within which a face's line is lost in the cut
 _FAR = 1e5  # mm, beyond everything
 
 
@@ -92,19 +93,19 @@ class _Web:
     def piece(self, start: float, stop: float, joints: list[tuple[float, float]]) -> Piece:
         """What lies between two places s, with the scarfs at its ends."""
         window = shapely.box(max(start, -_FAR), -_FAR, min(stop, _FAR), _FAR)
-        whole = self.front.union(self.rear)
-        shape = whole.intersection(window)
+        whole = _one(self.front.union(self.rear))
+        shape = _one(whole.intersection(window))
         ring = thin(np.asarray(shape.exterior.coords))[:-1]
         inside, layout = shapely.Polygon(ring), Layout()
         layout.keep_clear(inside.exterior)
         lines = [line for face in (self.front, self.rear) for line in self._face_lines(face, whole, inside)]
-        for low, high in joints:
-            lines += self._scarf(low, high, inside, layout)
         holes = tuple(Hole(x, y, PIN) for x, y in self.job.register.tolist() if inside.contains(shapely.Point(x, y)))
         for line in lines:
             layout.keep_clear(shapely.LineString(line))
         for hole in holes:
             layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(PIN / 2.0 + 0.5))
+        for low, high in joints:
+            lines += self._scarf(low, high, inside, layout)
         self._letter(inside, layout, bool(np.isinf(start)), bool(np.isinf(stop)))
         strokes = (Stroke(ring, Role.CUT_OUTSIDE, closed=True), *(Stroke(line, Role.ENGRAVE) for line in lines))
         title = f"Web sheet{self.which}"
@@ -115,7 +116,7 @@ class _Web:
     def _face_lines(self, face: shapely.Polygon, whole: shapely.Polygon, inside: shapely.Polygon) -> list[Array]:
         """The edges of a face where they run inside the envelope: what the bevel is planed to."""
         rim = face.exterior.difference(whole.exterior.buffer(_SAME)).intersection(inside.buffer(-_SAME))
-        return [thin(np.asarray(part.coords)) for part in _lines(rim) if part.length > 1.0]
+        return [thin(np.asarray(part.coords)) for part in _lines(rim) if part.length > 5.0]
 
     def _scarf(self, low: float, high: float, inside: shapely.Polygon, layout: Layout) -> list[Array]:
         """Both ends of the slope, a line to set the two pieces by, and a mark on it beyond either end."""
@@ -130,8 +131,11 @@ class _Web:
         for line in found:
             layout.keep_clear(shapely.LineString(line))
         words, apart = self.job.wording, high - low + 2.0 * _MARK
-        texts = (f"scarf, feather edges at s {words.plain(low)} in front, s {words.plain(high)} behind",)
-        texts += (f"set with the two marks {words.length(apart)} apart",)
+        texts = (
+            f"scarf 1 in {(high - low) / self.job.web.plain:g}, from s {words.plain(low)} on the front face to "
+            f"s {words.plain(high)} on the rear",
+            f"set with the two marks {words.length(apart)} apart",
+        )
         ends = inside.bounds[0], inside.bounds[2]
         for text in texts:
             spots = [
@@ -158,10 +162,19 @@ class _Web:
                 layout.put(text, spots, within=inside)
         places = np.linspace(x0, x1, 60)[3:-3]
         spots = [Spot(float(x), float(y)) for x in places[np.abs(places - places.mean()).argsort()] for y in rows]
-        text = f"WEB{self.which.upper()}, {self.hand} hand, seen from the rear, UP this way, {self.job.stamp}"
-        any(layout.put(text, spots, height=height, within=inside) for height in (PLAIN, SMALL))
+        piece = f"WEB{self.which.upper()}, {self.hand} hand"
+        whole = f"{piece}, seen from the rear, UP this way, {self.job.stamp}"
+        if not any(layout.put(whole, spots, height=height, within=inside) for height in (PLAIN, SMALL)):
+            for text in (piece, "rear, UP", self.job.stamp):
+                layout.put(text, spots, height=SMALL, within=inside)
 
 
-def _lines(shape: shapely.Geometry) -> Iterable[shapely.LineString]:
+def _one(shape: BaseGeometry) -> shapely.Polygon:
+    """The largest part of a shape, which is all of it but for specks."""
+    parts = [part for part in getattr(shape, "geoms", [shape]) if isinstance(part, shapely.Polygon)]
+    return max(parts, key=lambda part: part.area)
+
+
+def _lines(shape: BaseGeometry) -> Iterable[shapely.LineString]:
     merged = shapely.line_merge(shape) if shape.geom_type == "MultiLineString" else shape
     return (part for part in getattr(merged, "geoms", [merged]) if isinstance(part, shapely.LineString) and part.length)

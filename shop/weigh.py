@@ -350,7 +350,7 @@ def saving(job: Job) -> Saving:
 
 def saving_sentence(found: Saving, job: Job) -> str:
     """What the best cant would save, as a sentence."""
-    at = f"With the stated sheet and edge, cant {found.best:.2f}° needs least filler"
+    at = f"With the stated sheet and edge, cant {found.best:.2f}° needs least filler at the cut edges"
     by = found.filler_stated - found.filler_best
     return (
         f"{at}: {job.wording.mass(found.filler_best)}, {job.wording.mass(by)} less than the stated {found.stated:.2f}°."

@@ -9,7 +9,7 @@ import difflib
 import hashlib
 import re
 import tomllib
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from functools import cache
 from pathlib import Path
@@ -19,6 +19,7 @@ from pydantic import BaseModel, ValidationError
 from pydantic_core import ErrorDetails
 
 from ..geom import airfoil
+from .changes import changed
 from .records import WingFile
 from .records_core import foams_asked, refuse_unfit
 from .records_cutting import sheets_asked
@@ -167,7 +168,7 @@ class Loaded:
     stock
         The workshop's stock, with the file's own materials.
     stamp
-        Eight hexadecimal digits that change with the wing file or any section file it names.
+        Eight hexadecimal digits that change with the wing file, any section file it names, or what is changed.
     """
 
     path: Path
@@ -177,8 +178,13 @@ class Loaded:
     stamp: str
 
 
-def load(path: Path) -> Loaded:
+def load(path: Path, changes: Mapping[str, object] | None = None) -> Loaded:
     """Read a wing file and the section files it names.
+
+    Parameters
+    ----------
+    changes
+        Values to take in place of the file's own, by key; see `changes.changed`.
 
     Raises
     ------
@@ -188,13 +194,14 @@ def load(path: Path) -> Loaded:
     data: dict[str, Any] = {}
     try:
         raw = _bytes(path, "a wing file")
-        data = _toml(raw)
+        data = changed(_toml(raw), changes or {})
         record = _record(data)
         stock = _stock(record)
         sections, files = _sections(record, path.parent)
     except KeyedError as fault:
         raise WingError(path, *filter(None, (_key(fault.where, data), fault.text))) from None
-    stamp = hashlib.sha256(b"".join((raw, *files))).hexdigest()[:8]
+    other = repr(sorted(changes.items())).encode() if changes else b""
+    stamp = hashlib.sha256(b"".join((raw, *files, other))).hexdigest()[:8]
     return Loaded(path, record, sections, stock, stamp)
 
 

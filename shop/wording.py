@@ -13,6 +13,13 @@ CAUTION = (
     "an estimate, no proof of airworthiness: your country's rules, a licensed engineer and a proof load "
     "come before flight"
 )
+CAUTIONS = (
+    "Foam dust, resins, hot wires and aircraft structure hurt people: wear a mask, gloves and eye protection.",
+    "PVC and polyurethane foams give off poisonous gas under a hot wire: only polystyrene and polypropylene foams are "
+    "cut that way, in moving air.",
+    "Nothing here is proof of airworthiness: the rules of your own country, a licensed engineer and a proof load come "
+    "before flight.",
+)
 _MM2_PER_SQUARE_FOOT = (12.0 * MM_PER_INCH) ** 2
 
 

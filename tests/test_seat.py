@@ -244,7 +244,7 @@ def test_the_best_cant_is_the_least_of_a_fine_sweep():
         assert abs(np.degrees(angle)) <= 15.0
 
 
-@settings(max_examples=30, deadline=None)
+@settings(max_examples=30)
 @given(st.dictionaries(st.integers(-5, 5), st.floats(0.0, 1.0), min_size=1, max_size=4), st.floats(-0.01, 0.01))
 def test_the_cant_search_finds_the_deepest_of_several_hollows(floors, shift):
     # Hollows 0.05 rad apart, nearly three steps of the sweep.

@@ -21,7 +21,9 @@ from wrywing.geom import seat, solid, web
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
 from wrywing.shop import sheets
-from wrywing.shop.solids import solids
+from wrywing.shop.nesting import nestings
+from wrywing.shop.sheets_stock import stock_sheets
+from wrywing.shop.solids import built, solids
 from wrywing.shop.wingfile import WingError
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
@@ -188,7 +190,7 @@ def test_files_read_back_are_closed_and_as_large(job, hand):
 
 def test_the_same_input_gives_the_same_bytes_and_3mf_says_millimetres(job):
     for kind in ("stl", "3mf", "glb"):
-        assert dict(formats.files(solids(job), kind, **WORDS)) == dict(formats.files(solids(job), kind, **WORDS))
+        assert dict(formats.files(built(job), kind, **WORDS)) == dict(formats.files(built(job), kind, **WORDS))
     package = trimesh.util.decompress(io.BytesIO(formats.threemf(solids(job), **WORDS)), file_type="zip")
     model = etree.fromstring(package["3D/3dmodel.model"].read())
     assert model.get("unit") == "millimeter"
@@ -197,6 +199,7 @@ def test_the_same_input_gives_the_same_bytes_and_3mf_says_millimetres(job):
     assert head.startswith(b"mm; web-blank, right hand, revision 3fa9c1d2")
 
 
+SECTIONS = st.sampled_from(["2412", "0012", "1410", "23012"])
 EDGES = ["square", "set bevel", "full bevel"]
 JOINT = """
 [joint]
@@ -220,33 +223,44 @@ thickness = 0.6
 """
 
 
+SHEETS = """
+[cutting]
+scarf = 6
+[[cutting.sheets]]
+material = "pvc foam 80"
+size = [1220, 300]
+"""
+
+
 @st.composite
 def wing_files(draw):
     """Panels of ordinary proportions with a web that should fit."""
     number = lambda low, high: round(draw(st.floats(low, high)), 2)  # noqa: E731
-    span, root = number(700.0, 1800.0), number(250.0, 600.0)
-    tip, sweep, sections = root * number(0.5, 1.0), number(-0.2, 0.6), st.sampled_from(["2412", "0012", "1410", "23012"])
-    stations = []
-    for i, share in enumerate(sorted({0.0, number(0.3, 0.7), 1.0})):
-        stations.append(
-            f"[[wing.stations]]\ny = {share * span}\nchord = {root + share * (tip - root)}\nle = {sweep * share * span}\n"
-            f'z = {number(-0.02, 0.06) * share * span}\nairfoil = "naca {draw(sections)}"\nwashout = {i * number(-1.0, 4.0)}'
-        )
+    span, root, sweep, rise = number(700.0, 1800.0), number(250.0, 600.0), number(-0.2, 0.6), number(-0.02, 0.06)
+    tip = root * number(0.5, 1.0)
+    stations = [
+        f"[[wing.stations]]\ny = {share * span}\nchord = {root + share * (tip - root)}\nle = {sweep * share * span}\n"
+        f'z = {rise * share * span}\nairfoil = "naca {draw(SECTIONS)}"\n'
+        f"washout = {i * number(-1.0, 4.0)}"
+        for i, share in enumerate(sorted({0.0, number(0.3, 0.7), 1.0}))
+    ]
     edge, sheet = draw(st.sampled_from(EDGES)), number(4.0, 8.0)
     runs = f"runs = {draw(st.integers(1, 4))}" if edge == "set bevel" else ""
     more = JOINT.format(length=number(60.0, 120.0), faces=draw(st.sampled_from(["both", "front", "rear"])))
     caps = CAPS.format(mass=number(2000.0, 20000.0))
     return (
         'name = "random"\n[wing]\n' + "\n".join(stations) + f"\n[skin]\nthickness = {number(0.4, 1.5)}\n"
-        f"[web]\nends = [{number(0.0, 40.0)}, {span - number(0.0, 40.0)}]\nline = [{number(0.25, 0.4)}, {number(0.25, 0.4)}]\n"
+        f"[web]\nends = [{number(0.0, 40.0)}, {span - number(0.0, 40.0)}]\n"
+        f"line = [{number(0.25, 0.4)}, {number(0.25, 0.4)}]\n"
         f'thickness = {sheet}\ncant = {number(-5.0, 5.0)}\nedge = "{edge}"\n{runs}\nbond = {number(0.0, 0.5)}\n'
         'foam = "pvc foam 80"\nfiller = "microballoon paste"\n'
         + draw(st.sampled_from(["", more]))
         + draw(st.sampled_from(["", caps]))
+        + SHEETS
     )
 
 
-@settings(max_examples=30, deadline=None, suppress_health_check=list(HealthCheck))
+@settings(max_examples=20, deadline=None, suppress_health_check=list(HealthCheck))
 @given(wing_files())
 def test_random_wings_give_closed_meshes_and_contours(tmp_path_factory, text):
     path = tmp_path_factory.mktemp("wing") / "wing.toml"
@@ -255,7 +269,7 @@ def test_random_wings_give_closed_meshes_and_contours(tmp_path_factory, text):
         job = jobs.load(path)
         assert job.web.sheet > 0.0
         found = solids(job)
-        drawings = sheets.drawings(job)
+        drawings = [*sheets.drawings(job), *stock_sheets(job, nestings(job, ["right"]), ["right"])]
     except WingError:
         assume(False)  # a web that does not fit is refused, in its own words
     want = computed(job)

@@ -133,7 +133,7 @@ def wings(draw):
     return wing, line, np.radians(figure(-10.0, 10.0))
 
 
-@settings(max_examples=25, deadline=None)
+@settings(max_examples=25)
 @given(wings())
 def test_a_left_hand_panel_has_the_right_hand_ones_numbers(drawn):
     wing, line, cant = drawn
@@ -153,7 +153,7 @@ def test_a_left_hand_panel_has_the_right_hand_ones_numbers(drawn):
         np.testing.assert_allclose(mirrored, right, atol=1e-7)
 
 
-@settings(max_examples=25, deadline=None)
+@settings(max_examples=25)
 @given(wings())
 def test_upside_down_top_and_bottom_change_places(drawn):
     wing, line, cant = drawn
@@ -172,7 +172,7 @@ def test_upside_down_top_and_bottom_change_places(drawn):
     np.testing.assert_allclose(bevels(turned_top), -bevels(bottom), atol=1e-6)
 
 
-@settings(max_examples=25, deadline=None)
+@settings(max_examples=25)
 @given(wings(), st.floats(0.2, 5.0))
 def test_scaled_lengths_scale_and_angles_stay(drawn, k):
     wing, line, cant = drawn
@@ -193,7 +193,7 @@ def test_scaled_lengths_scale_and_angles_stay(drawn, k):
         np.testing.assert_allclose(bevels(scaled, 6.0 * k), bevels(h), atol=1e-5)
 
 
-@settings(max_examples=25, deadline=None)
+@settings(max_examples=25)
 @given(st.floats(-8.0, 8.0), st.floats(-6.0, 10.0), st.floats(0.25, 0.5))
 def test_turning_cant_and_washout_together_about_the_web_line_leaves_the_bevel(turn, tip, line):
     # A washout of delta tips the top forward by delta, which is a cant of minus delta.

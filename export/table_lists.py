@@ -1,0 +1,40 @@
+"""Cut list and shopping list as tables of texts."""
+
+from __future__ import annotations
+
+from ..shop.job import Job
+from .table import Table
+
+
+def cut_list(job: Job) -> Table:
+    """Every piece: what it is made of, its size, how many for one hand and for both, what all of them weigh."""
+    words = job.wording
+    rows = tuple(
+        (
+            cut.piece,
+            cut.material,
+            cut.size,
+            str(cut.each_hand),
+            str(cut.both_hands),
+            "" if cut.mass_both is None else words.mass_column(cut.mass_both),
+        )
+        for cut in job.cut_list
+    )
+    heads = ("piece", "material", "size", "one hand", "both", f"{words.mass_unit} for both")
+    return Table(f"cut list (sizes in {job.record.units}: length x width x thickness)", heads, rows)
+
+
+def shopping_list(job: Job) -> Table:
+    """What to buy: how much of what, and what it weighs."""
+    words = job.wording
+    rows = tuple(
+        (
+            buy.item,
+            buy.size,
+            f"{buy.amount:g} {buy.unit}",
+            "" if buy.mass is None else words.mass_column(buy.mass),
+            buy.note,
+        )
+        for buy in job.shopping_list
+    )
+    return Table("to buy for both hands", ("item", "size", "how much", words.mass_unit, "note"), rows)
