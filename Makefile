@@ -3,16 +3,17 @@ VENV   ?= .venv
 BIN    := $(VENV)/bin
 OUT    ?= out
 
-.PHONY: demo test lint bench clean
+.PHONY: demo test lint bench pictures view3d clean
 
 demo: $(VENV)/.run
 	@for wing in examples/*.toml; do \
 		name=$$(basename $$wing .toml); \
 		echo; echo "== $$wing"; \
 		$(BIN)/wrywing check $$wing && \
-		$(BIN)/wrywing templates $$wing --out $(OUT)/$$name --hand right,left || exit $$?; \
+		$(BIN)/wrywing templates $$wing --out $(OUT)/$$name --hand right,left && \
+		$(BIN)/wrywing report $$wing --out $(OUT)/$$name.html || exit $$?; \
 	done
-	@echo; echo "The templates are in $(OUT)/: open the PDFs to print, the SVGs to look, the DXFs for a router."
+	@echo; echo "Reports and templates are in $(OUT)/: open the HTML pages to look, the PDFs to print, the DXFs for a router."
 
 test: $(VENV)/.dev
 	$(BIN)/python -m pytest -n 2
@@ -27,6 +28,14 @@ lint: $(VENV)/.dev
 
 bench: $(VENV)/.dev
 	@for script in tests/bench/bench_*.py; do echo "== $$script"; $(BIN)/python $$script || exit $$?; done
+
+# Renews the README's pictures and its table of keys.
+pictures: $(VENV)/.dev
+	$(BIN)/python tools/readme.py
+
+# Bundles the part of three.js that the report needs, at the versions in tools/view3d/package.json; asks for npm.
+view3d:
+	cd tools/view3d && npm ci --no-audit --no-fund && npm run build
 
 $(VENV)/bin/python:
 	$(PYTHON) -m venv $(VENV)

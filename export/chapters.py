@@ -32,7 +32,7 @@ _CUT = {
 class Chapter:
     """A part of the report: its name in the page, what it is called, and what to see in it.
 
-    `key` says what colours stand for, the dashed line for no colour; `cards` sets wide lists as cards on narrow screens;
+    `key` says what colours stand for, no colour being a broken line; `cards` sets lists as cards on narrow screens;
     `solid` puts the 3D view in place of its figure.
     """
 
@@ -77,11 +77,13 @@ def _panel(job: Job) -> Iterator[Chapter]:
         see += " A triangle stands where a layer of strips stops."
     if job.cores:
         see += " Bays of the cores are numbered from the root."
-    yield Chapter("panel", "The panel", see, _shown("plan", "The panel from above", figures.plan(job)), facts=describe.panel(job))
+    yield Chapter(
+        "panel", "The panel", see, _shown("plan", "The panel from above", figures.plan(job)), facts=describe.panel(job)
+    )
 
 
 def _solid(job: Job) -> Iterator[Chapter]:
-    see = "Turn it with the mouse or a finger, zoom with the wheel; look at the web's ends to see how skin and sheet meet."
+    see = "Turn it with the mouse or a finger, zoom with the wheel; at the web's ends see how skin and sheet meet."
     still = _shown("still", "The panel in three dimensions", view3d.still(job))
     yield Chapter("solid", "In three dimensions", see, still, solid=True)
 
@@ -100,11 +102,18 @@ def _edges(job: Job) -> Iterator[Chapter]:
     facts, words = job.facts, job.wording
     see = (
         f"The angle that the skin asks for: {degrees(facts.bevel_top[0])} to {degrees(facts.bevel_top[1])} at the top, "
-        f"{degrees(facts.bevel_bottom[0])} to {degrees(facts.bevel_bottom[1])} at the bottom; {_CUT[job.record.web.edge]}."
+        f"{degrees(facts.bevel_bottom[0])} to {degrees(facts.bevel_bottom[1])} at the bottom; "
+        f"{_CUT[job.record.web.edge]}."
     )
     rows = job.rows(job.places(50.8 if job.record.units == "in" else 50.0))
     tables = [*table.bevels(job, rows), *([table.runs(job)] if job.record.web.edge == "set bevel" else [])]
-    yield Chapter("bevel", "Bevel", see, _shown("bevel", "Bevel of both edges along the web", figures_edge.bevels(job)), tables[2:])
+    yield Chapter(
+        "bevel",
+        "Bevel",
+        see,
+        _shown("bevel", "Bevel of both edges along the web", figures_edge.bevels(job)),
+        tables[2:],
+    )
     see = "How high the skin stands over both faces of the sheet; below, how much further up it meets the rear one."
     shown = _shown("heights", "Heights of both faces along the web", figures_edge.heights(job))
     yield Chapter("heights", "Heights", see, shown, tables[:2])
@@ -115,8 +124,16 @@ def _edges(job: Job) -> Iterator[Chapter]:
         f"The gap is widest at the {worst}, {words.length(float(gap.max()))} at s {words.length(at)}; both edges take "
         f"{words.mass(facts.filler)} of filler in all."
     )
-    notes = ["What lies beside the cap strips counts as filler too, and is not in this figure."] if job.record.caps else []
-    yield Chapter("gap", "Gap and filler", see, _shown("fill", "Gap and filler along the web", figures_edge.fill(job)), notes=notes)
+    notes = (
+        ["What lies beside the cap strips counts as filler too, and is not in this figure."] if job.record.caps else []
+    )
+    yield Chapter(
+        "gap",
+        "Gap and filler",
+        see,
+        _shown("fill", "Gap and filler along the web", figures_edge.fill(job)),
+        notes=notes,
+    )
 
 
 def _sections(job: Job) -> Iterator[Chapter]:
@@ -144,14 +161,17 @@ def _load(job: Job) -> Iterator[Chapter]:
         return
     tables = table_strength.tables(job)
     if job.record.caps:
-        see = "Bars are the layers as they are cut, the one next to the skin lowest; the line is what the load asks for."
+        see = (
+            "Bars are the layers as they are cut, the one next to the skin lowest; the line is what the load asks for."
+        )
         shown = _shown("strips", "Cap strips along the web", figures_load.strips(job))
         yield Chapter("strips", "Cap strips", see, shown, tables[:1])
         tables = tables[1:]
     see = "Allowable over what is asked at ultimate load: nothing may reach down to 1."
     if found.checks:
         worst = found.worst
-        see += f" Least is {worst.name}, {worst.reserve[worst.least]:.2f} at s {job.wording.length(found.schedule.s[worst.least])}."
+        at = job.wording.length(float(found.schedule.s[worst.least]))
+        see += f" Least is {worst.name}, {worst.reserve[worst.least]:.2f} at s {at}."
     shown = _shown("reserves", "Reserve factors along the web", figures_load.reserves(job))
     notes = [f"Not checked: {what}." for what in found.unchecked]
     yield Chapter("reserves", "Load and reserves", see, shown, tables, describe_strength.lines(job), notes)
@@ -184,7 +204,9 @@ def _cores(job: Job) -> Iterator[Chapter]:
 
 def _lists(job: Job) -> Iterator[Chapter]:
     see = "Every piece for one panel and for both, with the size it is cut from."
-    yield Chapter("cut-list", "Cut list", see, tables=[table_lists.cut_list(job)], facts=describe_cutting.lines(job), cards=True)
+    yield Chapter(
+        "cut-list", "Cut list", see, tables=[table_lists.cut_list(job)], facts=describe_cutting.lines(job), cards=True
+    )
     see = "What to buy for the panels of both hands."
     yield Chapter("shopping", "Shopping list", see, tables=[table_lists.shopping_list(job)], cards=True)
 

@@ -14,7 +14,21 @@ from ..shop.cores import BuiltCore
 from ..shop.job import Job
 from ..shop.weigh import TREATMENTS, Candidate, Verdict, masses
 from ..shop.wording import GRAMS_PER_OUNCE, degrees
-from .plot import BLUE, EDGES, GREEN, INK, LINES, PAPER, PURPLE, QUIET, WIDTH, Array, figure, in_units, key_above, name_ends
+from .plot import (
+    BLUE,
+    EDGES,
+    GREEN,
+    INK,
+    LINES,
+    PAPER,
+    PURPLE,
+    QUIET,
+    WIDTH,
+    figure,
+    in_units,
+    key_above,
+    name_ends,
+)
 
 _MARKS = ("s", "^", "o")  # one for each edge cut
 _BODY = "#eef2f4"
@@ -26,7 +40,7 @@ def plan(job: Job) -> Figure:
     lead, trail = (np.array([job.loft.chord_point(f, v)[1::-1] for v in y]) for f in (0.0, 1.0))
     ring = in_units(job, np.concatenate([lead, trail[::-1]]))
     wide, tall = np.ptp(ring, axis=0)
-    made, (ax,) = figure(1.55 + (WIDTH - 0.75) * tall / wide)
+    made, (ax,) = figure(2.0)
     ax.add_patch(Polygon(ring, facecolor=_BODY, edgecolor=INK, linewidth=1.2))
     for core, colour in zip(job.cores, (BLUE, GREEN, PURPLE) * 20, strict=False):
         _bays(job, ax, core, colour)
@@ -40,6 +54,7 @@ def plan(job: Job) -> Figure:
     ax.set_xlabel(f"y, {job.record.units} out along the span")
     ax.set_ylabel(f"x, {job.record.units} aft")
     key_above(made, 2)
+    made.set_figheight(1.0 + 0.1 * len(made.legends[0].get_texts()) + (WIDTH - 0.75) * 1.12 * tall / wide)
     return made
 
 
@@ -54,7 +69,7 @@ def _bays(job: Job, ax: Axes, core: BuiltCore, colour: str) -> None:
         edge = [np.column_stack([at, np.interp(at, places, x)]) for x in (front, aft)]
         ring = in_units(job, np.concatenate([edge[0], edge[1][::-1]]))
         ax.add_patch(Polygon(ring, facecolor=colour, alpha=0.32 if i % 2 else 0.16, linewidth=0.0))
-        ax.text(*ring.mean(axis=0), str(i + 1), color=INK, ha="center", va="center", fontsize=8)
+        ax.text(ring[:, 0].mean(), ring[:, 1].mean(), str(i + 1), color=INK, ha="center", va="center", fontsize=8)
     ax.fill([], [], color=colour, alpha=0.3, label=f"core {core.number} ({core.stated.region}), bays numbered")
 
 
@@ -64,7 +79,9 @@ def _stations(job: Job, ax: Axes, off: float) -> None:
     before = -np.inf
     for i, (y, angle) in enumerate(zip(job.loft.y, twist, strict=True)):
         ends = in_units(job, np.array([job.loft.chord_point(f, float(y))[1::-1] for f in (0.0, 1.0)]))
-        ax.plot(*ends.T, color=QUIET, linewidth=0.8, dashes=(4, 3), label="station, with its washout" if i == 0 else None)
+        ax.plot(
+            *ends.T, color=QUIET, linewidth=0.8, dashes=(4, 3), label="station, with its washout" if i == 0 else None
+        )
         if ends[0, 0] - before > 3.0 * off:
             ax.text(ends[0, 0], ends[0, 1] - off / 2.0, degrees(float(angle)), ha="center", va="bottom", fontsize=8)
             before = ends[0, 0]
@@ -100,11 +117,25 @@ def washout(job: Job) -> Figure:
     middle = len(at) // 2
     straight = np.interp(at, at[[0, -1]], twist[[0, -1]])
     above = straight[middle] >= twist[middle]
-    ax.annotate("straight twist", (at[middle], straight[middle]), xytext=(-4, 4) if above else (4, -4),
-                textcoords="offset points", color=QUIET, ha="right" if above else "left", va="bottom" if above else "top")
+    ax.annotate(
+        "straight twist",
+        (at[middle], straight[middle]),
+        xytext=(-4, 4) if above else (4, -4),
+        textcoords="offset points",
+        color=QUIET,
+        ha="right" if above else "left",
+        va="bottom" if above else "top",
+    )
     law = f'law "{job.record.wing.washout.law}"'
-    ax.annotate(law, (at[middle], twist[middle]), xytext=(4, -4) if above else (-4, 4), textcoords="offset points",
-                color=BLUE, ha="left" if above else "right", va="top" if above else "bottom")
+    ax.annotate(
+        law,
+        (at[middle], twist[middle]),
+        xytext=(4, -4) if above else (-4, 4),
+        textcoords="offset points",
+        color=BLUE,
+        ha="left" if above else "right",
+        va="top" if above else "bottom",
+    )
     for place in in_units(job, np.array(job.record.web.ends)):
         ax.axvline(place, color=QUIET, linewidth=0.8, linestyle=(0, (1, 2)))
     ax.set_ylabel("washout, degrees")
@@ -123,7 +154,10 @@ def trade(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Figure:
             continue
         sheet = in_units(job, [c.thickness for c in these])
         full = [PAPER if not c.fits else colour for c in these]
-        for ax, values in ((total, [c.masses.total / unit for c in these]), (filler, [c.masses.filler / unit for c in these])):
+        for ax, values in (
+            (total, [c.masses.total / unit for c in these]),
+            (filler, [c.masses.filler / unit for c in these]),
+        ):
             ax.plot(sheet, values, color=colour, linestyle=dash, linewidth=1.2)
             ax.scatter(sheet, values, marker=mark, s=22, facecolor=full, edgecolor=colour, linewidth=1.0, zorder=3)
             ends[ax].append((values[-1], edge, colour))
@@ -146,7 +180,9 @@ def _refused(job: Job, found: Sequence[Candidate], ax: Axes) -> None:
     for thickness, reason in why.items():
         at = float(in_units(job, thickness))
         ax.plot([at], [0.04], "x", color=QUIET, transform=ax.get_xaxis_transform())
-        ax.annotate(reason, (at, 0.08), xycoords=ax.get_xaxis_transform(), rotation=90.0, ha="center", va="bottom", color=QUIET)
+        ax.annotate(
+            reason, (at, 0.08), xycoords=ax.get_xaxis_transform(), rotation=90.0, ha="center", va="bottom", color=QUIET
+        )
 
 
 def _picked(job: Job, ax: Axes, chosen: Candidate | None, unit: float) -> None:
@@ -156,7 +192,14 @@ def _picked(job: Job, ax: Axes, chosen: Candidate | None, unit: float) -> None:
     if chosen is not None:
         at = float(in_units(job, chosen.thickness)), chosen.masses.total / unit
         label = "to take" if chosen.fits else "nearest to the limits"
-        ax.plot(*at, "o", color=INK, markersize=12, markerfacecolor="none", markeredgewidth=1.4, label=label, linestyle="none")
+        ax.plot(
+            *at,
+            "o",
+            color=INK,
+            markersize=12,
+            markerfacecolor="none",
+            markeredgewidth=1.4,
+            label=label,
+            linestyle="none",
+        )
     ax.plot([], [], "o", color=QUIET, markerfacecolor=PAPER, markersize=5, label="breaks a limit", linestyle="none")
-
-

@@ -17,7 +17,7 @@ _ROWS = 97
 
 
 def straight_cut(job: Job) -> Figure | None:
-    """For each core how far what the wire leaves stands proud of the skin's inside, and how far it falls short of it."""
+    """For each core how far what the wire leaves stands proud of the skin's inside, and how far it falls short."""
     if not job.cores:
         return None
     made, axes = figure(0.7 + 1.75 * len(job.cores), len(job.cores))
@@ -42,13 +42,23 @@ def _core(job: Job, ax: Axes, core: BuiltCore) -> None:
             ax.fill_between(at, ends, color=colour, alpha=0.22, linewidth=0.0)
             ax.plot(at, ends, color=colour, linestyle=dash, linewidth=1.3, label=None if i else word)
         ax.axvline(float(in_units(job, b)), color=QUIET, linewidth=0.7, linestyle=(0, (1, 2)))
-        ax.text(float(in_units(job, (a + b) / 2.0)), 0.03, str(i + 1), transform=ax.get_xaxis_transform(), ha="center", va="bottom", color=INK)
+        ax.text(
+            float(in_units(job, (a + b) / 2.0)),
+            0.03,
+            str(i + 1),
+            transform=ax.get_xaxis_transform(),
+            ha="center",
+            va="bottom",
+            color=INK,
+        )
     ax.axhline(0.0, color=QUIET, linewidth=0.7)
     most = in_units(job, max(abs(core.worst.off), 1e-4))
     if core.stated.tolerance is not None:
         most = max(most, in_units(job, core.stated.tolerance))
         for sign in (-1.0, 1.0):
-            ax.axhline(sign * float(in_units(job, core.stated.tolerance)), color=INK, linewidth=0.9, linestyle=(0, (1, 2)))
+            ax.axhline(
+                sign * float(in_units(job, core.stated.tolerance)), color=INK, linewidth=0.9, linestyle=(0, (1, 2))
+            )
     ax.set_ylim(-1.45 * float(most), 1.45 * float(most))
     ax.set_ylabel(f"off, {job.record.units}")
     ax.set_title(f"core {core.number}, {core.stated.region}")

@@ -17,7 +17,23 @@ from ..shop.stock import Filler
 from ..shop.strips import cover_thickness, rise
 from ..shop.units import MM_PER_INCH
 from ..shop.wording import GRAMS_PER_OUNCE, degrees
-from .plot import COVER, EDGES, FILL, FOAM, GLUE, INK, PAPER, QUIET, SKIN, STRIP, WIDTH, Array, figure, in_units, name_ends
+from .plot import (
+    COVER,
+    EDGES,
+    FILL,
+    FOAM,
+    GLUE,
+    INK,
+    PAPER,
+    QUIET,
+    SKIN,
+    STRIP,
+    WIDTH,
+    Array,
+    figure,
+    in_units,
+    name_ends,
+)
 
 _T = symmetric(np.linspace(0.0, 1.0, 161))
 _BESIDE = 0.6  # how far beyond the faces an enlarged edge is shown, in thicknesses
@@ -56,8 +72,14 @@ def _cut_angles(job: Job, ax: Axes, side: Side) -> None:
         if i:
             ax.axvline(at[0], color=QUIET, linewidth=0.7, linestyle=(0, (1, 2)))
         under = float(np.interp(run.start, survey.s.ravel(), survey.bevel_slope(side).ravel())) < slope
-        ax.annotate(degrees(angle, 2), (at[0], angle), xytext=(3, 3 if under else -3), textcoords="offset points",
-                    ha="left", va="bottom" if under else "top")
+        ax.annotate(
+            degrees(angle, 2),
+            (at[0], angle),
+            xytext=(3, 3 if under else -3),
+            textcoords="offset points",
+            ha="left",
+            va="bottom" if under else "top",
+        )
 
 
 def heights(job: Job) -> Figure:
@@ -117,11 +139,21 @@ def _allowed(job: Job, ax: Axes) -> None:
     if limit is None:
         return
     most, high = float(in_units(job, limit)), ax.get_ylim()[1]
-    where, text = (most, "allowed") if most < high else (high, f"allowed: {job.wording.length(limit)}, above this figure")
+    where, text = (
+        (most, "allowed") if most < high else (high, f"allowed: {job.wording.length(limit)}, above this figure")
+    )
     if most < high:
         ax.axhline(most, color=INK, linewidth=1.0, linestyle=(0, (1, 2)))
-    ax.annotate(text, (1.0, where), xycoords=ax.get_yaxis_transform(), ha="right", va="bottom" if most < high else "top",
-                xytext=(0, 2), textcoords="offset points", color=QUIET)
+    ax.annotate(
+        text,
+        (1.0, where),
+        xycoords=ax.get_yaxis_transform(),
+        ha="right",
+        va="bottom" if most < high else "top",
+        xytext=(0, 2),
+        textcoords="offset points",
+        color=QUIET,
+    )
 
 
 def _along(job: Job) -> str:
@@ -157,7 +189,14 @@ def _bare(job: Job, ax: Axes, title: str, around: Array) -> None:
     ax.set_anchor("N")
     below = z0 - 0.05 * (x1 - x0)
     ax.plot([x0, x0 + tick], [below, below], color=INK, linewidth=1.6, solid_capstyle="butt")
-    ax.annotate(f"{tick:g} {job.record.units}", (x0 + tick, below), xytext=(4, 0), textcoords="offset points", va="center", fontsize=8)
+    ax.annotate(
+        f"{tick:g} {job.record.units}",
+        (x0 + tick, below),
+        xytext=(4, 0),
+        textcoords="offset points",
+        va="center",
+        fontsize=8,
+    )
     ax.set_xlim(x0, x1)
     ax.set_ylim(z0 - 0.10 * (x1 - x0), z1)
     ax.set_title(title, fontsize=8.5)
@@ -179,7 +218,12 @@ def _rib(job: Job, ax: Axes, s: float) -> None:
     ax.fill(*shown[1].T, facecolor=PAPER, edgecolor=INK, linewidth=0.4)
     ax.fill(*shown[2].T, facecolor=FOAM, edgecolor=INK, linewidth=0.8)
     put = job.wording.column
-    _bare(job, ax, f"s {put(s, 1)} {job.record.units}, rib y {put(y, 1)} {job.record.units}: to scale, nose left", shown[0])
+    _bare(
+        job,
+        ax,
+        f"s {put(s, 1)} {job.record.units}, rib y {put(y, 1)} {job.record.units}: to scale, nose left",
+        shown[0],
+    )
 
 
 def _on(line: Array, z: float) -> Array:
@@ -233,8 +277,8 @@ def _bed(job: Job, ax: Axes, s: float, n: Array, side: Side) -> None:
 
 
 def _layer(job: Job, ax: Axes, s: float, n: Array, side: Side, depths: tuple[float, float], colour: str) -> None:
-    ends = (in_units(job, _surface(job, s, n, side, depth)) for depth in depths)
-    ax.fill_between(in_units(job, n), *ends, facecolor=colour, linewidth=0.0)
+    outer, within = (in_units(job, _surface(job, s, n, side, depth)) for depth in depths)
+    ax.fill_between(in_units(job, n), outer, within, facecolor=colour, linewidth=0.0)
 
 
 def key(job: Job) -> list[tuple[str, str]]:

@@ -39,7 +39,6 @@ def strips(job: Job) -> Figure | None:
 
 def _whole(most: int) -> MaxNLocator:
 
-
     return MaxNLocator(nbins=min(most, 6), integer=True)
 
 
@@ -49,8 +48,15 @@ def _bars(job: Job, ax: Axes, side: Side, colour: str) -> None:
         stop = float(in_units(job, layer.stop))
         ax.barh(layer.number - 0.5, stop, height=0.8, color=colour, alpha=0.28, edgecolor=colour, linewidth=0.6)
         text, inwards = f"{layer.count} x {cut_length(job, layer)}", layer.stop > 0.6 * job.web.plane.length
-        ax.annotate(text, (stop, layer.number - 0.5), xytext=(-4 if inwards else 4, 0), textcoords="offset points",
-                    va="center", ha="right" if inwards else "left", fontsize=8)
+        ax.annotate(
+            text,
+            (stop, layer.number - 0.5),
+            xytext=(-4 if inwards else 4, 0),
+            textcoords="offset points",
+            va="center",
+            ha="right" if inwards else "left",
+            fontsize=8,
+        )
 
 
 def reserves(job: Job) -> Figure | None:

@@ -36,7 +36,7 @@ def write(path: Path, content: bytes) -> None:
     made = ""
     try:
         handle, made = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.")
-        with open(handle, "wb") as file:
+        with os.fdopen(handle, "wb") as file:
             file.write(content)
             file.flush()
             os.fsync(file.fileno())

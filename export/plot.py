@@ -27,13 +27,20 @@ from ..shop.units import MM_PER_INCH
 Array = NDArray[np.float64]
 
 INK, QUIET, RULE, PAPER = "#222222", "#5a5a5a", "#d4d4d4", "#ffffff"
-BLUE, RED, GREEN, PURPLE, BROWN, SKY = "#0072b2", "#b04300", "#00735c", "#94447c", "#7d5a00", "#1c6f9e"
-LINES = ((BLUE, "-"), (RED, (0, (5, 2))), (GREEN, (0, (1.2, 1.5))), (PURPLE, (0, (6, 2, 1.2, 2))), (INK, "-"), (BROWN, (0, (3, 1.5))))
+BLUE, RED, GREEN, PURPLE, BROWN = "#0072b2", "#b04300", "#00735c", "#94447c", "#7d5a00"
+LINES: tuple[tuple[str, Any], ...] = (
+    (BLUE, "-"),
+    (RED, (0, (5, 2))),
+    (GREEN, (0, (1.2, 1.5))),
+    (PURPLE, (0, (6, 2, 1.2, 2))),
+    (INK, (0, (9, 1.5))),
+    (BROWN, (0, (3, 1.5))),
+)
 EDGES: dict[str, tuple[str, Any]] = {"top": LINES[0], "bottom": LINES[1]}
 FOAM, FILL, STRIP, SKIN, COVER, GLUE = "#e8dcc0", "#e69f00", "#3c4048", "#8fa3b0", "#56b4e9", "#cc79a7"
 
 WIDTH = 4.7  # inches: at this width letters can still be read on a telephone
-_STYLE = {
+_STYLE: dict[Any, Any] = {
     "font.family": "DejaVu Sans",
     "font.size": 8.5,
     "text.color": INK,
@@ -101,13 +108,12 @@ def settle(made: Figure) -> None:
     """
     axes = made.axes
     wide, high = made.get_size_inches()
-    ticks = max(
-        (len(text) for ax in axes for text in ax.yaxis.get_major_formatter().format_ticks(ax.get_yticks())), default=0
-    )
+    labels = (ax.yaxis.get_major_formatter().format_ticks(ax.get_yticks().tolist()) for ax in axes)
+    ticks = max((len(text) for some in labels for text in some), default=0)
     names = max((len(text.get_text()) for ax in axes for text in ax.texts if _beside(text)), default=0)
-    rows = sum(-(-len(legend.get_texts()) // legend._ncols) for legend in made.legends)
+    key = sum(legend.get_window_extent().height for legend in made.legends) / made.dpi
     title = 0.17 if any(ax.get_title("left") for ax in axes) else 0.0
-    top = 0.08 + title + 0.185 * rows + 0.06 * bool(rows)
+    top = 0.08 + title + key
     tall = (high - 0.47 - top - (len(axes) - 1) * (0.17 + title)) / len(axes)
     made.subplots_adjust(
         left=(0.36 + 0.072 * ticks) / wide,
@@ -124,9 +130,9 @@ def _beside(text: Text) -> bool:
 
 
 def to_svg(of: Figure, name: str) -> str:
-    """A figure as SVG that can stand inside a page: no size of its own, and every identifier with its name before it."""
+    """A figure as SVG to stand inside a page: no size of its own, and every identifier with its name before it."""
     FigureCanvasSVG(of)
-    if of.subplotpars.left == mpl.rcParams["figure.subplot.left"] and of.axes[0].get_subplotspec() is not None:
+    if of.axes[0].get_subplotspec() is not None:
         settle(of)
     out = io.StringIO()
     of.savefig(out, format="svg", metadata={"Date": None, "Creator": None, "Format": None, "Type": None})
@@ -177,11 +183,20 @@ def spread(places: Sequence[float], least: float, low: float, high: float) -> li
 
 
 def name_ends(ax: Axes, ends: Sequence[tuple[float, str, str]], *, points: float = 11.0) -> None:
-    """Name lines at the right of the axes: (height of the line's end, text, colour), moved apart where they are close."""
+    """Name lines at the right of the axes, moved apart where they are close: (height of the end, text, colour)."""
     low, high = ax.get_ylim()
-    tall = ax.get_position().height * ax.get_figure(root=True).get_figheight() * 72.0
+    whole = ax.get_figure(root=True)
+    tall = ax.get_position().height * (whole.get_figheight() if whole else 1.0) * 72.0
     to_axes = [float(ax.transAxes.inverted().transform(ax.transData.transform((0.0, y)))[1]) for y, _, _ in ends]
     at = spread([min(max(v, 0.0), 1.0) for v in to_axes], points / tall, 0.0, 1.0)
     for (_, text, colour), y in zip(ends, at, strict=True):
-        ax.annotate(text, (1.0, y), xycoords="axes fraction", xytext=(4, 0), textcoords="offset points", color=colour, va="center")
+        ax.annotate(
+            text,
+            (1.0, y),
+            xycoords="axes fraction",
+            xytext=(4, 0),
+            textcoords="offset points",
+            color=colour,
+            va="center",
+        )
     ax.set_ylim(low, high)

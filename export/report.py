@@ -71,7 +71,13 @@ def _capital(line: str) -> str:
 def _watch(job: Job) -> dict[str, Any]:
     """What could go wrong, as the last step."""
     count = len(job.doubts)
-    answer = "nothing doubtful found" if not count else "one thing is doubtful" if count == 1 else f"{count} things are doubtful"
+    answer = (
+        "nothing doubtful found"
+        if not count
+        else "one thing is doubtful"
+        if count == 1
+        else f"{count} things are doubtful"
+    )
     more = [*job.doubts, "dust, resins, hot wires and strength: read the cautions below before cutting"]
     return {"what": "Look twice", "answer": answer, "more": [_capital(line) for line in more], "alarm": bool(count)}
 
@@ -101,4 +107,3 @@ def _figures(column: Sequence[str]) -> bool:
     """Whether a column holds figures: it begins with one wherever it is not empty."""
     filled = [cell.lstrip("+-−>") for cell in column if cell]
     return bool(filled) and all(cell[0].isdigit() and " x " not in cell for cell in filled)
-

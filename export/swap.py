@@ -13,8 +13,10 @@ import shutil
 import sys
 from collections.abc import Collection, Mapping
 from contextlib import suppress
+from itertools import islice
 from pathlib import Path
 
+_MOST = 5000  # files in a folder that is exchanged
 _AT_CWD, _EXCHANGE, _SWAP = -100, 2, 2  # AT_FDCWD, RENAME_EXCHANGE of Linux, RENAME_SWAP of macOS
 
 
@@ -56,10 +58,13 @@ def renew(folder: Path, content: Mapping[str, bytes], ours: Collection[str]) -> 
     Returns
     -------
     bool
-        False, and nothing is changed, if this folder cannot be exchanged: it is where the program or its shell stands,
-        the root of a disk, in use (Windows), in a place where nothing may be written, or on a disk without links.
+        False, and nothing is changed, if this folder is not to be exchanged: it is where the program or its shell
+        stands, the root of a disk, in use (Windows), in a place where nothing may be written, on a disk without links,
+        or holds thousands of the user's own files.
     """
     if os.path.ismount(folder) or folder in (_here(), *_here().parents):
+        return False
+    if len(list(islice(folder.rglob("*"), _MOST))) == _MOST:
         return False
     new, old = _beside(folder)
     try:
@@ -87,7 +92,7 @@ def remove(folder: Path) -> None:
 
 def _beside(folder: Path) -> tuple[Path, Path]:
     """Where the new folder is made, and where the old one waits if the exchange takes two steps."""
-    return folder.with_name(f".{folder.name}.wrywing-new"), folder.with_name(f".{folder.name}.wrywing-old")
+    return folder.parent / f".{folder.name}.wrywing-new", folder.parent / f".{folder.name}.wrywing-old"
 
 
 def _here() -> Path:

@@ -31,7 +31,7 @@ _PARTS = {
 
 @dataclass(frozen=True)
 class View:
-    """A fixed view: its name, the way to the eye, and what it is turned to in wing axes: a place, and how much of it."""
+    """A fixed view: its name, the way to the eye, and the place it is turned to with how much of it is shown."""
 
     name: str
     eye: tuple[float, float, float]
@@ -66,9 +66,7 @@ def scene(job: Job) -> dict[str, Any]:
     low, high = skin.points.min(axis=0), skin.points.max(axis=0)
     middle = (low + high) / 2.0
     bodies = [("skin", skin), *((body.part, body.mesh) for body in job.solids)]
-    parts = [
-        {"part": part, "position": _f32(mesh.points - middle), "index": _u32(mesh.faces)} for part, mesh in bodies
-    ]
+    parts = [{"part": part, "position": _f32(mesh.points - middle), "index": _u32(mesh.faces)} for part, mesh in bodies]
     used = {part for part, _ in bodies}
     return {
         "kinds": [
@@ -79,7 +77,12 @@ def scene(job: Job) -> dict[str, Any]:
         "parts": parts,
         "lines": [_f32(line - middle) for line in _contours(job)],
         "views": [
-            {"name": view.name, "eye": list(view.eye), "target": _rounded(view.target - middle), "size": _rounded(view.size)}
+            {
+                "name": view.name,
+                "eye": list(view.eye),
+                "target": _rounded(view.target - middle),
+                "size": _rounded(view.size),
+            }
             for view in views(job, skin.points)
         ],
         "reach": round(float(np.linalg.norm(high - low)), 1),
@@ -144,9 +147,14 @@ def still(job: Job) -> Figure:
     ax.set_aspect("equal")
     _sections(job, ax, seen)
     for face in job.web.faces:
-        n = job.face(face.name)(face.outline()[:, 0])
-        ring = seen(job.web.plane.point(*face.outline().T, n))
-        ax.fill(*ring.T, facecolor=FOAM, edgecolor=INK, linewidth=0.6)
+        sides = [np.append(side[::10], side[-1:], axis=0) for side in (face.bottom, face.top)]
+        ring = np.concatenate([sides[0], sides[1][::-1]])
+        ax.fill(
+            *seen(job.web.plane.point(ring[:, 0], ring[:, 1], job.face(face.name)(ring[:, 0]))).T,
+            facecolor=FOAM,
+            edgecolor=INK,
+            linewidth=0.6,
+        )
     _edges(job, ax, seen)
     ax.set_xlim(-0.51 * wide, 0.51 * wide)
     ax.set_ylim(-0.52 * high, 0.52 * high)
@@ -154,11 +162,11 @@ def still(job: Job) -> Figure:
 
 
 def _sections(job: Job, ax: Axes, seen: Any) -> None:
-    for y in np.linspace(job.loft.y[0], job.loft.y[-1], 25):
-        ax.plot(*seen(job.loft.outer(_T, y)[0]).T, color=SKIN, linewidth=0.5)
+    for y in np.linspace(job.loft.y[0], job.loft.y[-1], 21):
+        ax.plot(*seen(job.loft.outer(_T[::2], y)[0]).T, color=SKIN, linewidth=0.5)
     for y in job.loft.y[[0, -1]]:
         ax.fill(*seen(job.loft.outer(_T, y)[0]).T, facecolor=SKIN, alpha=0.18, edgecolor=QUIET, linewidth=0.9)
-    y = np.linspace(job.loft.y[0], job.loft.y[-1], 81)
+    y = np.linspace(job.loft.y[0], job.loft.y[-1], 41)
     for t in (-1.0, -0.6, 0.0, 0.6, 1.0):
         ax.plot(*seen(job.loft.outer(t, y)[0]).T, color=QUIET if abs(t) in (0.0, 1.0) else SKIN, linewidth=0.9)
 
@@ -167,8 +175,13 @@ def _edges(job: Job, ax: Axes, seen: Any) -> None:
     """Filler and strips as lines along both edges, the thicker the more layers lie on top of one another."""
     plane, survey = job.web.plane, job.web.survey
     for side in SIDES:
-        s, h = survey.s[:, 1], survey.skin[side][:, 1, survey.skin[side].shape[-1] // 2]
+        s, h = survey.s[::3, 1], survey.skin[side][::3, 1, survey.skin[side].shape[-1] // 2]
         ax.plot(*seen(plane.point(s, h, 0.0)).T, color=FILL, linewidth=1.6)
         for layer in (layer for layer in job.layers if layer.side == side):
             on = s <= layer.stop
-            ax.plot(*seen(plane.point(s[on], h[on], 0.0)).T, color=STRIP, linewidth=1.0 + 0.8 * layer.number, solid_capstyle="butt")
+            ax.plot(
+                *seen(plane.point(s[on], h[on], 0.0)).T,
+                color=STRIP,
+                linewidth=1.0 + 0.8 * layer.number,
+                solid_capstyle="butt",
+            )

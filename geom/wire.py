@@ -24,7 +24,7 @@ from .profile import Profile, profile, symmetric, tail, turned
 Array = NDArray[np.float64]
 Passes = Literal["one", "separate"]
 
-_PAST = 4.0  # mm by which the skins are cut past the web's face
+_PAST = 4.0  # mm by which the skins are cut past the web's face and the tail
 _MARKS = (5.0, 30.0)  # mm, least distance of marks at the nose of the smaller end, largest on the larger end
 _COARSE = symmetric(np.linspace(0.0, 1.0, 241))
 
@@ -207,14 +207,15 @@ def _refuse_wide(region: Region, of: Profile, kerf: float, at: Limits) -> None:
 def _reach(region: Region, rough: list[Profile], found: list[Limits]) -> tuple[Array, Array]:
     """From which to which t (0 and up) the skins are cut at both ends: (lower, upper) each."""
     start, stop = (np.array([getattr(at, name) for at in found]) for name in ("start", "stop"))
-    if region.kind == "whole":
-        return np.zeros(2), np.full(2, region.limit)
-    edge = stop.max(axis=0) if region.kind == "nose" else start.min(axis=0)
-    chord = min(float(np.linalg.norm(of.at(1.0) - of.at(0.0))) for of in rough)
-    past = _PAST / chord
+    past = _PAST / min(float(np.linalg.norm(of.at(1.0) - of.at(0.0))) for of in rough)
+    last = np.sqrt(np.minimum(stop.max(axis=0) ** 2 + past, 1.0))
     if region.kind == "nose":
-        return np.zeros(2), np.sqrt(np.minimum(edge**2 + past, 1.0))
-    return np.sqrt(np.maximum(edge**2 - past, 0.25 * edge**2)), np.full(2, region.limit)
+        return np.zeros(2), last
+    last = np.minimum(last, region.limit)
+    if region.kind == "whole":
+        return np.zeros(2), last
+    first = start.min(axis=0) ** 2
+    return np.sqrt(np.maximum(first - past, 0.25 * first)), last
 
 
 def _marks(rough: list[Profile], low: Array, high: Array) -> tuple[Array, Array]:
@@ -250,7 +251,7 @@ def _faces(region: Region, ends: tuple[End, ...], how: How, turn: float) -> list
     if region.kind != "whole":
         lines = [turned(region.face_at(end.y), turn) for end in ends]
         runs.append(_face("web", lines, ends, how, 1.0 if region.kind == "nose" else -1.0))
-    if region.kind != "nose" and region.to < 1.0:
+    if region.kind != "nose" and region.to < 1.0 and max(max(end.limits.stop) for end in ends) == region.limit:
         lines = [end.profile.at(np.array([-1.0, 1.0]) * region.limit) for end in ends]
         runs.append(_face("tail", lines, ends, how, 1.0))
     return runs
@@ -309,6 +310,6 @@ def _runway(end: End, how: How, start: Array, t: float, forward: bool) -> Array:
     if t != 0.0:
         ahead, behind = (end.profile.at([r, -r]).mean(axis=0) for r in (abs(t) - 0.02, abs(t)))
         way = (behind - ahead) / np.linalg.norm(behind - ahead)
-    if forward:
-        return np.asarray(start - (start[0] - end.block[0] + how.runway) / way[0] * way)
-    return np.asarray(start + (end.block[2] + how.runway - start[0]) / way[0] * way)
+    out = start[0] - end.block[0] if forward else end.block[2] - start[0]
+    length = max(out + how.runway, _PAST) / way[0]
+    return np.asarray(start - length * way if forward else start + length * way)

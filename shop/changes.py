@@ -49,12 +49,18 @@ def _steps(key: str) -> Where:
     return tuple(steps)
 
 
-def _set(table: Any, steps: Where, value: object) -> None:
+def _set(data: dict[str, Any], steps: Where, value: object) -> None:
+    here: Any = data
     for i, step in enumerate(steps):
-        known = isinstance(step, str) if isinstance(table, dict) else isinstance(step, int) and 0 <= step < len(table)
-        if not isinstance(table, dict | list) or not known:
+        if not _has_room(here, step):
             raise KeyedError(steps[: i + 1], "wanted a key that the wing file has room for, got none such")
         if i == len(steps) - 1:
-            table[step] = value
+            here[step] = value
         else:
-            table = table.setdefault(step, {}) if isinstance(table, dict) else table[step]
+            here = here.setdefault(step, {}) if isinstance(here, dict) else here[step]
+
+
+def _has_room(table: Any, step: str | int) -> bool:
+    if isinstance(step, str):
+        return isinstance(table, dict)
+    return isinstance(table, list) and 0 <= step < len(table)

@@ -128,7 +128,9 @@ def _core(job: Job, index: int, stated: Core) -> BuiltCore:
         raise job.error(f"{key}.{fault.key}", f"wanted a region with foam in it, got {fault}") from None
     except WideKerf as fault:
         got = job.wording.length(fault.kerf)
-        raise job.error(f"{key}.kerf", f"wanted a kerf that the trailing edge allows, got {got}: {fault}") from None
+        remedy = "state a larger least_thickness, or stop the core there with to"
+        text = f"wanted a kerf that the trailing edge allows, got {got}: {fault}; {remedy}"
+        raise job.error(f"{key}.kerf", text) from None
     except NoPins as fault:
         raise job.error(f"{key}.region", f"wanted a core large enough for its templates' pins, got {fault}") from None
     except FoldedWay as fault:

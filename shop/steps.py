@@ -1,4 +1,4 @@
-"""What to do, in a handful of steps: which sheet, which edge cut, how much filler, which strips, bays, and what to buy."""
+"""What to do, in a handful of steps: sheet, edge cut, filler, strips, bays of the cores, and what to buy."""
 
 from __future__ import annotations
 
@@ -29,7 +29,16 @@ class Step:
 
 def steps(job: Job) -> list[Step]:
     """The steps in the order in which a panel is built."""
-    return [_sheet(job), _edges(job), _filler(job), *_strips(job), *_joint(job), *_flanges(job), *_cores(job), _buy(job)]
+    return [
+        _sheet(job),
+        _edges(job),
+        _filler(job),
+        *_strips(job),
+        *_joint(job),
+        *_flanges(job),
+        *_cores(job),
+        _buy(job),
+    ]
 
 
 def _sheet(job: Job) -> Step:
@@ -41,7 +50,9 @@ def _sheet(job: Job) -> Step:
     faced = ""
     if web.facing is not None:
         faced = f", {_count(web.facing.layers, 'layer')} of {web.facing.cloth or 'cloth'} on each face"
-    stands = f"cant {degrees(float(np.degrees(job.cant)), 2)}{faced}; the whole web weighs {words.mass(job.masses.total)}"
+    stands = (
+        f"cant {degrees(float(np.degrees(job.cant)), 2)}{faced}; the whole web weighs {words.mass(job.masses.total)}"
+    )
     return Step("Sheet", f"{words.length(web.thickness)} {web.foam}", (f"{cut}, {stands}", _choice(job)))
 
 
@@ -80,8 +91,10 @@ def _edges(job: Job) -> Step:
     if edge == "full bevel":
         return Step("Edges", "full bevel, planed to the changing angle", (*skin, f"{gap}: check with the bevel gauges"))
     settings = [f"saw at the {side}: {', '.join(_runs(job, side))}" for side in SIDES]
-    counts = [_count(len(job.web.cut(side).runs), "saw setting") for side in SIDES]
-    return Step("Edges", f"set bevel, {counts[0]} at the top, {counts[1]} at the bottom", (*settings, gap))
+    top, bottom = (len(job.web.cut(side).runs) for side in SIDES)
+    return Step(
+        "Edges", f"set bevel, {_count(top, 'saw setting')} at the top, {bottom} at the bottom", (*settings, gap)
+    )
 
 
 def _runs(job: Job, side: Side) -> Iterator[str]:
@@ -150,4 +163,8 @@ def _buy(job: Job) -> Step:
             amount = _count(round(buy.amount), "sheet") if buy.unit == "sheets" else f"{buy.amount:.3g} {buy.unit}"
             more.append(f"{amount} {buy.item}" + (f", {buy.size}" if buy.size else ""))
     more += [f"{_count(count, 'block')} {item} for cores" for item, count in blocks.items()]
-    return Step("To buy", f"for the panels of both hands, sizes in {'inches' if job.record.units == 'in' else 'mm'}", ("; ".join(more),))
+    return Step(
+        "To buy",
+        f"for the panels of both hands, sizes in {'inches' if job.record.units == 'in' else 'mm'}",
+        ("; ".join(more),),
+    )

@@ -115,12 +115,12 @@ BAD = [
     (
         "no foam",
         [("bays = 2", "bays = 2\nto = 0.3")],
-        "cores[1].to: wanted a region with foam in it, got none at rib y = 0 mm, where it would stop ahead of the web's rear",
+        "cores[1].to: wanted a region with foam in it, got none at rib y = 0 mm, where it would stop ahead of",
     ),
     (
         "all skin",
         [("least_thickness = 1.2", "least_thickness = 40")],
-        "cores[1].region: wanted a region with foam in it, got none at rib y = 0 mm, where the skins leave less than 40",
+        "cores[1].region: wanted a region with foam in it, got none at rib y = 0 mm, where the skins leave less",
     ),
     (
         "a block that is too long",

@@ -195,6 +195,23 @@ def test_the_current_folder_stays_the_current_one(tmp_path, monkeypatch):
     assert seen(Path()) == NEW == seen(tmp_path / "out")
 
 
+def test_a_folder_full_of_the_users_own_things_is_not_exchanged(tmp_path, monkeypatch):
+    put(tmp_path / "out", OLD)
+    before = (tmp_path / "out").stat().st_ino
+    monkeypatch.setattr(swap, "_MOST", 4)
+    put(tmp_path / "out", NEW)
+    assert seen(tmp_path / "out") == NEW
+    assert (tmp_path / "out").stat().st_ino == before
+
+
+def test_the_root_of_a_disk_can_be_written_to(tmp_path, monkeypatch):
+    monkeypatch.setattr(os.path, "ismount", lambda place: True)
+    put(tmp_path, OLD)
+    put(tmp_path, NEW)
+    assert seen(tmp_path) == NEW
+    swap.recover(Path(tmp_path.anchor))
+
+
 def test_a_link_to_the_folder_stays_one(tmp_path):
     put(tmp_path / "out", OLD)
     (tmp_path / "link").symlink_to("out")

@@ -299,6 +299,15 @@ def test_text_and_lines_are_large_enough(case):
         assert min(sizes) * page.mm.min() * 0.718 >= 2.2 - 1e-3
 
 
+def test_holes_are_round_and_all_there():
+    for drawing in (card(), blank(), core()):
+        (page,) = printed(drawing, Print(Sheet("roll 1200 mm", 1200.0, np.inf)))
+        red = [s for s, c in zip(page.lines, page.colours, strict=True) if c[0] > 0.5 and c[1] == 0.0]
+        found = sorted((round(s.bounds[0], 2), s.length, s.is_ring) for s in red)
+        assert [n for _, n, _ in found] == pytest.approx([np.pi * h.diameter for h in drawing.holes], rel=1e-3)
+        assert all(ring for *_, ring in found)
+
+
 def test_labels_can_be_searched_where_they_are_drawn():
     drawing = card()
     (page,) = printed(drawing, Print(A4))
