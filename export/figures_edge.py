@@ -165,7 +165,7 @@ def places(job: Job) -> list[float]:
     length = job.web.plane.length
     survey = job.web.survey
     steep = np.max([np.abs(survey.bevel_slope(side)) for side in SIDES], axis=0)
-    inside = (survey.s > 0.15 * length) & (survey.s < 0.85 * length)
+    inside = (survey.s > 0.3 * length) & (survey.s < 0.7 * length)
     worst = float(survey.s[inside][steep[inside].argmax()]) if inside.any() else 0.5 * length
     return [0.03 * length, worst, 0.97 * length]
 

@@ -109,7 +109,7 @@ def _edge_table(job: Job, rows: Sequence[Row], side: str) -> Table:
             put(edge.cut_rear),
         )
 
-    title = f"{side} edge, {job.record.web.edge} (lengths in {job.record.units})"
+    title = f"{side} edge, {job.record.web.edge} (lengths in {job.wording.length_unit})"
     return Table(title, heads, tuple(line(row) for row in rows))
 
 
@@ -141,7 +141,7 @@ def runs(job: Job) -> Table:
         for side in SIDES
         for run in runs_record(job, side)
     )
-    return Table(f"saw settings (lengths in {job.record.units})", ("edge", "from s", "to s", "saw"), rows)
+    return Table(f"saw settings (lengths in {job.wording.length_unit})", ("edge", "from s", "to s", "saw"), rows)
 
 
 def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
@@ -171,7 +171,7 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
             )
         )
     marked = frozenset(i for i, c in enumerate(found) if c is verdict.chosen)
-    title = f"{job.record.name}: what a web costs (lengths in {job.record.units}, masses in {unit})"
+    title = f"{job.record.name}: what a web costs (lengths in {job.wording.length_unit}, masses in {unit})"
     return Table(title, heads, tuple(rows), marked)
 
 

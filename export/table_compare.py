@@ -18,7 +18,7 @@ def tables(of: Comparison) -> list[Table]:
     keys += [(f"section at rib {words.length(y)}", "its own", "its own") for y in of.sections]
     effects = [(e.what, _text(words, e.unit, e.a), _text(words, e.unit, e.b), _change(words, e)) for e in of.effects]
     shown = [row for row in effects if row[1] != row[2]]
-    found = [Table(f"keys that differ (lengths in {words.units})", ("key", *heads), tuple(keys))] if keys else []
+    found = [Table(f"keys that differ (lengths in {words.length_unit})", ("key", *heads), tuple(keys))] if keys else []
     if shown:
         found.append(Table("what comes of it, the largest share first", ("what", *heads, "change"), tuple(shown)))
     return found

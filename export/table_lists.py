@@ -21,7 +21,7 @@ def cut_list(job: Job) -> Table:
         for cut in job.cut_list
     )
     heads = ("piece", "material", "size", "one hand", "both", f"{words.mass_unit} for both")
-    return Table(f"cut list (sizes in {job.record.units}: length x width x thickness)", heads, rows)
+    return Table(f"cut list (sizes in {job.wording.length_unit}: length x width x thickness)", heads, rows)
 
 
 def shopping_list(job: Job) -> Table:

@@ -28,7 +28,7 @@ def _layers(job: Job) -> Table:
         y = "" if layer.whole else put(layer.y, 1)
         return layer.side, str(layer.number), str(layer.count), stop, y, cut_length(job, layer), put(layer.height)
 
-    title = f"cap strips, each from the inner end, numbered from the skin (lengths in {job.record.units})"
+    title = f"cap strips, each from the inner end, numbered from the skin (lengths in {job.wording.length_unit})"
     heads = ("edge", "layer", "strips", "stops at s", "rib y", "cut to", "stack")
     return Table(title, heads, tuple(line(layer) for layer in job.layers))
 
@@ -45,7 +45,7 @@ def _along(job: Job, found: Strength) -> Table:
             row += [f"{need[i]:.2f}", put(float(at.height(side)(at.s[i])))]
         rows.append(tuple(row))
     needed = "; layers needed at either edge, and the stack there" if at.need else ""
-    title = f"ultimate load{needed} (lengths in {job.record.units})"
+    title = f"ultimate load{needed} (lengths in {job.wording.length_unit})"
     return Table(title, tuple(heads), tuple(rows))
 
 

@@ -241,7 +241,7 @@ def _notes(job: Job, face: Face) -> list[str]:
         f"bond line {words.length(stated.bond)}",
         f"As seen from the {face.name}; pins through the {PIN:g} mm holes register it with the other face",
         f"{edges[stated.edge][0].upper()}{edges[stated.edge][1:]}",
-        f"At each tick: bevel of the skin, positive where the edge rises aft; s and y in {words.units}",
+        f"At each tick: bevel of the skin, positive where the edge rises aft; s and y in {words.length_unit}",
         *strip_notes(job),
         *joint_notes(job, face),
         f"Wing file revision {job.stamp}",

@@ -165,6 +165,6 @@ def _buy(job: Job) -> Step:
     more += [f"{_count(count, 'block')} {item} for cores" for item, count in blocks.items()]
     return Step(
         "To buy",
-        f"for the panels of both hands, sizes in {'inches' if job.record.units == 'in' else 'mm'}",
+        f"for the panels of both hands, sizes in {job.wording.length_unit}",
         ("; ".join(more),),
     )

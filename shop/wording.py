@@ -36,6 +36,11 @@ class Wording:
     units: Units
 
     @property
+    def length_unit(self) -> str:
+        """The unit of lengths as a word of a sentence."""
+        return "inches" if self.units == "in" else "mm"
+
+    @property
     def mass_unit(self) -> str:
         """Grams, or ounces in a wing file in inches."""
         return "oz" if self.units == "in" else "g"
