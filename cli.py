@@ -92,7 +92,7 @@ def bevels(
 
     from .export import table
     from .shop import weigh as scales
-    from .shop.job import OffWeb
+    from .shop.bevels import OffWeb
 
     job = _job(wing)
     try:

@@ -12,7 +12,8 @@ from ..geom import web as web_geometry
 from ..geom.blank import FACES
 from ..geom.profile import face_line, inner, symmetric
 from ..geom.web import SIDES, Side
-from ..shop.job import Job, Row
+from ..shop.bevels import Row
+from ..shop.job import Job
 from ..shop.stock import Filler
 from ..shop.strips import cover_thickness, rise
 from ..shop.units import MM_PER_INCH

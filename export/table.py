@@ -13,7 +13,8 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from ..geom.web import SIDES
-from ..shop.job import EdgeRow, Job, Row
+from ..shop.bevels import EdgeRow, Row
+from ..shop.job import Job
 from ..shop.weigh import Candidate, Saving, Verdict, cautions
 from ..shop.wording import degrees
 

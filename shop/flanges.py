@@ -20,7 +20,8 @@ from .values import KeyedError
 from .wording import degrees
 
 if TYPE_CHECKING:
-    from .job import BuiltWeb, Job
+    from .built import BuiltWeb
+    from .job import Job
 
 
 @dataclass(frozen=True)

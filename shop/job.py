@@ -2,22 +2,22 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from collections.abc import Mapping
 from functools import cached_property
 from pathlib import Path
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..geom import blank, cant, seat, washout, web
-from ..geom import joint as joint_geometry
+from ..geom import blank, cant, seat, web
 from ..geom.joint import Pad, Tube
 from ..geom.loft import Loft
 from ..geom.rib import Cradle, Rib
 from ..geom.seat import Aim, Cut, Run, Survey, Treatment
 from ..geom.web import SIDES, NothingInside, OffSection, Plane, Side
-from . import flanges, joint, loads, ribs, strength, strips, wingfile
+from . import bevels, blame, flanges, joint, loads, panel, ribs, strength, strips, wingfile
+from .bevels import Row
+from .built import BuiltWeb
 from .cores import BuiltCore, WirePath, wire_paths
 from .cores import built as built_cores
 from .flanges import BuiltFlange
@@ -34,84 +34,6 @@ SWEEP = np.radians(1.0)
 CLOSE = np.radians(0.005)
 REGISTER = 5.0  # mm between the middle of a register hole and the joint's tube
 FINE_SAW = 20  # a saw this many times finer than the real one stands for one without steps
-
-
-class OffWeb(ValueError):
-    """A place that is not on the web; the message says what was wanted and what was got."""
-
-
-@dataclass(frozen=True)
-class EdgeRow:
-    """One edge at one place: heights in mm in the web plane, angles in degrees."""
-
-    front: float
-    rear: float
-    bevel: float
-    crown: float
-    gap: float
-    cut_front: float
-    cut_rear: float
-
-
-@dataclass(frozen=True)
-class Row:
-    """Both edges at one place s; y is the rib plane there."""
-
-    s: float
-    y: float
-    thickness: float
-    top: EdgeRow
-    bottom: EdgeRow
-
-
-@dataclass(frozen=True)
-class BuiltWeb:
-    """A web as it would be cut: its plane, the survey of skin and seat over it, and its two edges."""
-
-    plane: Plane
-    survey: Survey
-    top: Cut
-    bottom: Cut
-
-    def cut(self, side: Side) -> Cut:
-        """The cut of one edge."""
-        return self.top if side == "top" else self.bottom
-
-    @cached_property
-    def plain(self) -> float:
-        """Thickness of the plain sheet, mm: the web's own, where no joint thickens it."""
-        return float(self.survey.thickness.min())
-
-    @cached_property
-    def pads(self) -> float:
-        """Volume of what thickens the sheet at the joint, mm^3."""
-        return joint_geometry.pads_volume(self.top, self.bottom, self.plain) if np.ptp(self.survey.thickness) else 0.0
-
-    @cached_property
-    def filler(self) -> float:
-        """Filler at both edges, mm^3."""
-        return self.top.filler + self.bottom.filler
-
-    @cached_property
-    def gap(self) -> float:
-        """Largest gap at either edge, mm."""
-        return float(max(self.top.gap.max(), self.bottom.gap.max()))
-
-    @cached_property
-    def sheet(self) -> float:
-        """Volume of the sheet with the pads on it, mm^3."""
-        return seat.sheet_volume(self.top, self.bottom)
-
-    @cached_property
-    def faces(self) -> tuple[blank.Face, blank.Face]:
-        """Front and rear face of the blank."""
-        front, rear = (blank.face(self.plane, self.top, self.bottom, name) for name in blank.FACES)
-        return front, rear
-
-    def cut_bevels(self) -> tuple[float, float]:
-        """Largest angle that is cut, and how far the cut turns along the edge where it turns most; degrees."""
-        angles = [np.degrees(np.arctan(c.slope)) for c in (self.top, self.bottom)]
-        return float(max(np.abs(a).max() for a in angles)), float(max(np.ptp(a) for a in angles))
 
 
 class Job(Results):
@@ -145,35 +67,7 @@ class Job(Results):
     @cached_property
     def loft(self) -> Loft:
         """The panel's surfaces."""
-        wing = self.record.wing
-        y = [s.y for s in wing.stations]
-        law = washout.smooth if wing.planform == "smooth" else washout.straight
-        return Loft(
-            y=np.array(y),
-            sections=self._sections,
-            planform=law(y, [[s.chord, s.le, s.z] for s in wing.stations]),
-            washout=self._washout(),
-            skin=washout.straight(*self._skin_table()),
-            axis=wing.twist_axis,
-        )
-
-    def _washout(self) -> washout.Law:
-        wing = self.record.wing
-        y = np.array([s.y for s in wing.stations])
-        if wing.washout.law == "table":
-            places, twist = np.array(wing.washout.points).T
-            return washout.smooth(places, np.radians(twist))
-        angles = np.radians([s.washout if s.washout is not None else np.nan for s in wing.stations])
-        if wing.washout.law == "power":
-            return washout.Power(y[[0, -1]], float(angles[0]), float(angles[-1]), wing.washout.exponent or 1.0)
-        return (washout.straight if wing.washout.law == "straight" else washout.smooth)(y, angles)
-
-    def _skin_table(self) -> tuple[Sequence[float], Sequence[float]]:
-        thickness, stations = self.record.skin.thickness, self.record.wing.stations
-        if isinstance(thickness, float):
-            return (stations[0].y, stations[-1].y), (thickness, thickness)
-        y, value = zip(*thickness, strict=True)
-        return y, value
+        return panel.loft(self.record, self._sections)
 
     @cached_property
     def cant(self) -> float:
@@ -350,40 +244,12 @@ class Job(Results):
         except KeyedError as fault:
             raise self._keyed(fault) from None
         except OffSection as fault:
-            raise self._outside(fault) from None
+            raise blame.outside(self, fault) from None
         except NothingInside as fault:
             if self.record.caps:
                 raise self.error("caps", f"wanted stacks that leave room for the web, got {fault}") from None
             text = f"wanted a skin that leaves room for the web, got {fault}"
             raise self.error("skin.thickness", text) from None
-
-    def _line_leaves(self, upright: Plane) -> bool:
-        """Whether the web line itself runs out of the section somewhere, whatever the sheet."""
-        s = np.linspace(0.0, upright.length, 201)
-        y = upright.origin[1] + s * upright.s[1]
-        skin = self.loft.skin(y, y)[0]
-        return any(np.isnan(web.edge(self.loft, upright, s, 0.0, side, -skin).h).any() for side in SIDES)
-
-    def _outside(self, fault: OffSection) -> WingError:
-        """Which key is to blame for a web that leaves the section: the line, the cant, the thickness or the skin."""
-        upright, s = self.plane_at(0.0), np.array([fault.s])
-        y = float(upright.origin[1] + fault.s * upright.s[1])
-        skin = self.loft.skin(np.array([y]), np.array([y]))[0]
-
-        def fits(plane: Plane, n: ArrayLike, depth: ArrayLike) -> bool:
-            return not any(np.isnan(web.edge(self.loft, plane, s[:, None], n, side, depth).h).any() for side in SIDES)
-
-        sides = np.column_stack([self.face(name)(s) for name in blank.FACES])
-        here = f"the {fault.side} edge leaves the section at s = {fault.s:.0f} mm (rib y = {y:.0f} mm)"
-        if self._line_leaves(upright):
-            return self.error("web.line", f"wanted a web line inside the section, got one where {here}")
-        if not fits(upright, sides, -skin):
-            return self.error("web.thickness", f"wanted faces inside the section, got a web where {here}")
-        if not fits(self.plane_at(self.cant), sides, -skin):
-            return self.error("web.cant", f"wanted a cant that keeps the web inside the wing, got one where {here}")
-        if self.record.caps and fits(self.plane_at(self.cant), sides, strips.under(self)):
-            return self.error("caps", f"wanted stacks that stay inside the section, got some where {here}")
-        return self.error("skin.thickness", f"wanted a skin that leaves room for the web, got one where {here}")
 
     def laid_tube(self, built: BuiltWeb) -> Tube | None:
         """Where the joint's pin lies in a web, tube and overwrap round it; None without a joint.
@@ -471,43 +337,8 @@ class Job(Results):
         return np.append(np.arange(0.0, length - 1e-6, every), length)
 
     def rows(self, places: ArrayLike) -> list[Row]:
-        """The bevel table at places s (k,) in mm.
-
-        Raises
-        ------
-        OffWeb
-            If a place lies beyond the web line.
-        """
-        s = np.asarray(places, dtype=float)
-        plane = self.web.plane
-        beyond = s[(s < 0.0) | (s > plane.length + 1e-9) | ~np.isfinite(s)]
-        if beyond.size:
-            raise OffWeb(f"wanted places from 0 to {plane.length:.1f} mm, got {beyond[0]:g}")
-        thickness, middle = (law(s) for law in self.over())
-        n = middle[:, None] + thickness[:, None] / 2.0 * seat.lobatto(self.web.survey.n.shape[-1])[0]
-        edges = {side: self._edge_rows(side, s, n, thickness) for side in SIDES}
-        y = plane.origin[1] + s * plane.s[1]
-        return [
-            Row(float(s[i]), float(y[i]), float(thickness[i]), edges["top"][i], edges["bottom"][i])
-            for i in range(len(s))
-        ]
-
-    def _edge_rows(self, side: Side, s: Array, n: Array, thickness: Array) -> list[EdgeRow]:
-        skin = web.edge(self.loft, self.web.plane, s[:, None], n, side).h
-        bedded = web.edge(self.loft, self.web.plane, s[:, None], n, side, self.depth[side](s)[:, None]).h
-        slope = seat.slope_at(self.web.cut(side), s, bedded, thickness)
-        height = seat.rest(bedded, n, slope, side)
-        gap = seat.clearance(bedded, n, height, slope, side).max(axis=1)
-        columns = (
-            skin[:, 0],
-            skin[:, -1],
-            np.degrees(web.bevel(skin[:, 0], skin[:, -1], thickness)),
-            seat.crown(skin, n, side),
-            gap,
-            height + slope * n[:, 0],
-            height + slope * n[:, -1],
-        )
-        return [EdgeRow(*map(float, row)) for row in zip(*columns, strict=True)]
+        """The bevel table at places s (k,) in mm; see `bevels.rows`."""
+        return bevels.rows(self, places)
 
 
 def load(path: str | Path, changes: Mapping[str, object] | None = None) -> Job:

@@ -17,7 +17,8 @@ from .stock import Pin
 from .values import KeyedError
 
 if TYPE_CHECKING:
-    from .job import BuiltWeb, Job
+    from .built import BuiltWeb
+    from .job import Job
 
 _NO_PAD = 1e-6  # mm
 

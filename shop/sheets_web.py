@@ -44,12 +44,15 @@ class View:
     sense: float
 
     def on(self, points: Array) -> Array:
+        """Points (k, 2) in (s, h) as they lie on the sheet."""
         return np.asarray(points * [self.sense, 1.0])
 
     def edge(self, side: Side) -> Array:
+        """One edge of the face, (k, 2) in (s, h)."""
         return self.face.top if side == "top" else self.face.bottom
 
     def h(self, side: Side, s: float) -> float:
+        """Height of one edge at s."""
         return self.face.heights(s)[1 if side == "top" else 0]
 
     def beyond(self, side: Side, s: float, half: float) -> float:

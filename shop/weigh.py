@@ -12,8 +12,9 @@ import numpy as np
 
 from ..geom.seat import Survey, Treatment
 from ..geom.web import SIDES, NothingInside, OffSection, Side
+from .built import BuiltWeb
 from .flanges import BuiltFlange
-from .job import BuiltWeb, Job
+from .job import Job
 from .laminate import laminate
 from .records import Limits
 from .stock import Adhesive, Filler, Foam, Strip

@@ -9,6 +9,7 @@ import pkgutil
 from pathlib import Path
 
 import pytest
+
 import wrywing
 from wrywing.shop import keys
 

@@ -99,7 +99,7 @@ def test_a_wing_with_only_the_tables_that_are_needed(tmp_path):
         assert re.search(r"<svg|<table|<dd>|<p", body)
 
 
-@settings(max_examples=6, deadline=None, suppress_health_check=list(HealthCheck))
+@settings(max_examples=4, deadline=None, suppress_health_check=list(HealthCheck))
 @given(wing_files())
 def test_any_wing_that_can_be_made_has_a_report(tmp_path_factory, text):
     path = tmp_path_factory.mktemp("any") / "wing.toml"

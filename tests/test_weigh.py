@@ -7,6 +7,7 @@ from pathlib import Path
 
 import numpy as np
 import pytest
+
 from wrywing.shop import job as jobs
 from wrywing.shop import weigh
 
