@@ -51,8 +51,8 @@ def plan(job: Job) -> Figure:
     ax.spines[:].set_visible(False)
     ax.set_xlim(ring[:, 0].min() - 0.02 * wide, ring[:, 0].max() + 0.045 * wide)
     ax.set_ylim(ring[:, 1].max() + 0.03 * wide, ring[:, 1].min() - 0.09 * wide)
-    ax.set_xlabel(f"y, {job.record.units} out along the span")
-    ax.set_ylabel(f"x, {job.record.units} aft")
+    ax.set_xlabel(f"y, {job.wording.length_unit} out along the span")
+    ax.set_ylabel(f"x, {job.wording.length_unit} aft")
     key_above(made, 2)
     made.set_figheight(1.0 + 0.1 * len(made.legends[0].get_texts()) + (WIDTH - 0.75) * 1.12 * tall / wide)
     return made
@@ -139,7 +139,7 @@ def washout(job: Job) -> Figure:
     for place in in_units(job, np.array(job.record.web.ends)):
         ax.axvline(place, color=QUIET, linewidth=0.8, linestyle=(0, (1, 2)))
     ax.set_ylabel("washout, degrees")
-    ax.set_xlabel(f"y, {job.record.units} (dotted: the web's ends)")
+    ax.set_xlabel(f"y, {job.wording.length_unit} (dotted: the web's ends)")
     return made
 
 
@@ -169,7 +169,7 @@ def trade(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Figure:
         name_ends(ax, ends[ax])
     total.set_ylabel(f"the whole web, {job.wording.mass_unit}")
     filler.set_ylabel(f"of it filler, {job.wording.mass_unit}")
-    filler.set_xlabel(f"thickness of the sheet, {job.record.units}")
+    filler.set_xlabel(f"thickness of the sheet, {job.wording.length_unit}")
     return made
 
 

@@ -23,7 +23,7 @@ def straight_cut(job: Job) -> Figure | None:
     made, axes = figure(0.7 + 1.75 * len(job.cores), len(job.cores))
     for ax, core in zip(axes, job.cores, strict=True):
         _core(job, ax, core)
-    axes[-1].set_xlabel(f"y, {job.record.units}")
+    axes[-1].set_xlabel(f"y, {job.wording.length_unit}")
     return made
 
 
@@ -60,7 +60,7 @@ def _core(job: Job, ax: Axes, core: BuiltCore) -> None:
                 sign * float(in_units(job, core.stated.tolerance)), color=INK, linewidth=0.9, linestyle=(0, (1, 2))
             )
     ax.set_ylim(-1.45 * float(most), 1.45 * float(most))
-    ax.set_ylabel(f"off, {job.record.units}")
+    ax.set_ylabel(f"off, {job.wording.length_unit}")
     ax.set_title(f"core {core.number}, {core.stated.region}")
     if core.number == 1:
         ax.legend(loc="upper right", fontsize=8, ncols=2)

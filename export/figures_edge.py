@@ -99,9 +99,9 @@ def heights(job: Job) -> Figure:
         ends.append((float((rear - front)[-1]), side, colour))
     for ax in (high, more):
         ax.axhline(0.0, color=QUIET, linewidth=0.7)
-    high.set_ylabel(f"h over the web line, {job.record.units}")
+    high.set_ylabel(f"h over the web line, {job.wording.length_unit}")
     high.legend(loc="best", fontsize=8, ncols=2)
-    more.set_ylabel(f"rear less front, {job.record.units}")
+    more.set_ylabel(f"rear less front, {job.wording.length_unit}")
     more.margins(y=0.15)
     more.set_xlabel(_along(job))
     name_ends(more, ends)
@@ -128,7 +128,7 @@ def fill(job: Job) -> Figure:
         ax.set_ylim(0.0, 1.2 * max(ax.dataLim.y1, 1e-6))
         name_ends(ax, named)
     _allowed(job, gap)
-    gap.set_ylabel(f"gap, {job.record.units}")
+    gap.set_ylabel(f"gap, {job.wording.length_unit}")
     mass.set_ylabel("filler in it, oz a foot" if job.record.units == "in" else "filler in it, g a metre")
     mass.set_xlabel(_along(job))
     return made
@@ -158,7 +158,7 @@ def _allowed(job: Job, ax: Axes) -> None:
 
 
 def _along(job: Job) -> str:
-    return f"s, {job.record.units} along the web from its inner end"
+    return f"s, {job.wording.length_unit} along the web from its inner end"
 
 
 def places(job: Job) -> list[float]:

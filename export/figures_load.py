@@ -33,7 +33,7 @@ def strips(job: Job) -> Figure | None:
         ax.set_ylim(0.0, len(found.stacks[side].stops) + 0.5)
         ax.yaxis.set_major_locator(_whole(len(found.stacks[side].stops)))
     axes[0].legend(loc="upper right", fontsize=8)
-    axes[1].set_xlabel(f"s, {job.record.units} along the web from its inner end")
+    axes[1].set_xlabel(f"s, {job.wording.length_unit} along the web from its inner end")
     return made
 
 
@@ -81,7 +81,7 @@ def reserves(job: Job) -> Figure | None:
     ax.axhline(1.0, color=INK, linewidth=1.2)
     name_ends(ax, ends)
     ax.set_ylabel("reserve factor")
-    ax.set_xlabel(f"s, {job.record.units} along the web from its inner end")
+    ax.set_xlabel(f"s, {job.wording.length_unit} along the web from its inner end")
     return made
 
 
@@ -101,5 +101,5 @@ def flanges(job: Job) -> Figure | None:
     ax.margins(y=0.12)
     name_ends(ax, ends)
     ax.set_ylabel("angle of web and skin, degrees")
-    ax.set_xlabel(f"s, {job.record.units} along the web (arrows: bars)")
+    ax.set_xlabel(f"s, {job.wording.length_unit} along the web (arrows: bars)")
     return made

@@ -12,7 +12,7 @@ from ..geom import web as web_geometry
 from ..geom.web import SIDES, Side
 from . import describe_core, describe_cutting, describe_joint, describe_strength
 from .job import Job
-from .weigh import masses
+from .weigh import amount, broken_limits, masses
 from .wording import degrees
 
 STEEP = 15.0  # degrees of bevel from which a saw cut is doubtful
@@ -170,6 +170,7 @@ def doubts(job: Job) -> tuple[str, ...]:
         *_section_doubts(job),
         *_edge_doubts(job),
         *_bevel_doubts(job),
+        *(f"limits.{miss.limit} is broken, by {amount(miss, job)}" for miss in broken_limits(job)),
         *describe_strength.doubts(job),
         *describe_joint.doubts(job),
         *describe_core.doubts(job),

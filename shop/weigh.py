@@ -278,6 +278,14 @@ def _refuse_thick(job: Job, thickness: float) -> None:
         raise Thick(f"a sheet of {job.wording.length(thickness)} is thicker than its joint, {most}")
 
 
+def broken_limits(job: Job) -> tuple[Miss, ...]:
+    """Limits of the wing file that its own web breaks."""
+    built = job.web
+    bevel, _ = built.cut_bevels()
+    stated = _misses(job, job.record.web.thickness, built.gap, bevel, masses(job, built).total)
+    return tuple(miss for miss in stated if miss.limit in Limits.model_fields)
+
+
 def _misses(job: Job, thickness: float, gap: float, bevel: float, mass: float) -> tuple[Miss, ...]:
     limits = job.record.limits or Limits()
     over = {
@@ -324,11 +332,12 @@ def _no_verdict(found: Sequence[Candidate], job: Job) -> Verdict:
         return Verdict(None, None, f"No candidate can be made: at each of them the web {why}.")
     limits = job.record.limits
     nearest = min(made, key=lambda c: max(m.over / (getattr(limits, m.limit, None) or 1.0) for m in c.misses))
-    by = " and ".join(f"{m.limit} by {_amount(m, job)}" for m in nearest.misses)
+    by = " and ".join(f"{m.limit} by {amount(m, job)}" for m in nearest.misses)
     return Verdict(None, nearest, f"No candidate meets the limits. Nearest: {_named(nearest, job)}, which misses {by}.")
 
 
-def _amount(miss: Miss, job: Job) -> str:
+def amount(miss: Miss, job: Job) -> str:
+    """By how much a limit is broken, in words."""
     if miss.limit == "max_mass":
         return job.wording.mass(miss.over)
     if miss.limit.endswith("shear"):

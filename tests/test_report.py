@@ -165,9 +165,8 @@ def test_the_first_part_answers_what_a_builder_asks(job, said, wing):
         assert lengths == pytest.approx([v["length"] / INCH for v in layers if v["side"] == side], abs=0.1)
     (buy,) = found["To buy"].more
     assert numbers(found["Cores"].answer)[0] == sum(len(core["bays"]) for core in facts["cores"])
-    assert {"1 sheet pvc foam 80", "microballoon paste"} <= set(
-        re.findall(r"1 sheet pvc foam 80|microballoon paste", buy)
-    )
+    assert re.search(r"^\d+ sheets? pvc foam 80, ", buy)
+    assert "microballoon paste" in buy
 
 
 def rows(page, title):

@@ -153,3 +153,11 @@ def test_every_candidate_of_the_examples_keeps_the_order_of_the_edge_cuts(wing):
     found = candidates(job, [8.0, 12.0])
     for square, set_bevel, full in zip(found[::3], found[1::3], found[2::3], strict=True):
         assert full.masses.filler <= set_bevel.masses.filler <= square.masses.filler
+
+
+def test_a_web_that_breaks_its_own_limits_is_doubtful():
+    changes = {"web.edge": "square", "web.thickness": 20, "limits.max_gap": 1.0, "limits.max_bevel": 0.5}
+    job = jobs.load(EXAMPLES / "saltpan.toml", changes)
+    assert [doubt for doubt in job.doubts if "limits" in doubt] == [
+        f"limits.max_gap is broken, by {job.wording.length(job.web.gap - 1.0)}"
+    ]
