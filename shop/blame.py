@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from ..geom import blank, web
-from ..geom.web import SIDES, OffSection, Plane
+from ..geom.web import SIDES, NothingInside, OffSection, Plane
 from . import strips
 from .wingfile import WingError
 
@@ -33,6 +33,22 @@ def outside(job: Job, fault: OffSection) -> WingError:
     if job.record.caps and _fits(job, canted, s, faces, strips.under(job)):
         return job.error("caps", f"wanted stacks that stay inside the section, got some {here}")
     return job.error("skin.thickness", f"wanted a skin that leaves room for the web, got one {here}")
+
+
+def nothing_inside(job: Job, fault: NothingInside) -> WingError:
+    """The error of the first layer that leaves no height for the web: the skin, the bond line, the caps."""
+    s = np.array([fault.s])
+    faces = np.column_stack([job.face(name)(s) for name in blank.FACES])
+
+    def left(depth: float) -> float:
+        top, bottom = (web.edge(job.loft, job.plane_at(job.cant), s[:, None], faces, side, depth).h for side in SIDES)
+        return float((top - bottom).min())
+
+    if not left(0.0) > 0.0:
+        return job.error("skin.thickness", f"wanted a skin that leaves room for the web, got {fault}")
+    if not left(job.record.web.bond) > 0.0:
+        return job.error("web.bond", f"wanted a bond line that leaves room for the web, got {fault}")
+    return job.error("caps", f"wanted stacks that leave room for the web, got {fault}")
 
 
 def _fits(job: Job, plane: Plane, s: ArrayLike, n: ArrayLike, depth: ArrayLike) -> bool:

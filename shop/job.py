@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from functools import cached_property
 from pathlib import Path
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..geom import blank, cant, seat, web
+from ..geom import blank, cant, runs, seat, web
 from ..geom.joint import Pad, Tube
 from ..geom.loft import Loft
 from ..geom.rib import Cradle, Rib
@@ -31,8 +31,9 @@ Array = NDArray[np.float64]
 
 COARSE = 40.0  # mm, cells of the surveys that a search makes
 SWEEP = np.radians(1.0)
-CLOSE = np.radians(0.005)
+CLOSE = np.radians(0.01)
 REGISTER = 5.0  # mm between the middle of a register hole and the joint's tube
+FINEST = 0.01  # degrees
 FINE_SAW = 20  # a saw this many times finer than the real one stands for one without steps
 
 
@@ -81,9 +82,18 @@ class Job(Results):
         return self.best_cant("gap" if stated.kind == "least gap" else "filler")[0]
 
     def best_cant(
-        self, aim: Aim, thickness: float | None = None, treatment: Treatment | None = None
+        self,
+        aim: Aim,
+        thickness: float | None = None,
+        treatment: Treatment | None = None,
+        surveys: Callable[[float], Survey] | None = None,
     ) -> tuple[float, float]:
         """Cant within the stated limit that makes the filler (mm^3) or the largest gap (mm) least, and that figure.
+
+        Parameters
+        ----------
+        surveys
+            Where surveys of this sheet by cant come from, if not from `trial_survey`.
 
         Raises
         ------
@@ -94,7 +104,7 @@ class Job(Results):
 
         def figure(angle: float) -> float:
             try:
-                survey = self.survey(angle, thickness, longest=COARSE, depth=self._trial_depth)
+                survey = surveys(angle) if surveys else self.trial_survey(angle, thickness)
             except (OffSection, NothingInside):
                 return float("inf")
             built = self.fit(angle, survey, treatment)
@@ -108,6 +118,10 @@ class Job(Results):
                 f"wanted a cant at which the web fits inside the wing, got none from {limits}",
             )
         return angle, least
+
+    def trial_survey(self, angle: float, thickness: float | None = None) -> Survey:
+        """The coarser survey that a search for the best cant makes do with."""
+        return self.survey(angle, thickness, longest=COARSE, depth=self._trial_depth)
 
     def plane_at(self, angle: float) -> Plane:
         """The web plane at a cant in radians."""
@@ -221,10 +235,10 @@ class Job(Results):
         return seat.cut(survey, side, treatment, self._runs(survey, side, self.record.web.angle_step))
 
     def _runs(self, survey: Survey, side: Side, step: float) -> tuple[Run, ...]:
-        angles = seat.saw_angles(survey, side, float(np.radians(step)))
+        angles = runs.saw_angles(survey, side, float(np.radians(step)))
         stated = self.record.web
         try:
-            return seat.best_runs(survey, side, runs=stated.runs, angles=angles, aim=stated.aim)
+            return runs.best_runs(survey, side, runs=stated.runs, angles=angles, aim=stated.aim)
         except ValueError as fault:
             raise self.error("web.runs", f"wanted {fault}") from None
 
@@ -246,10 +260,7 @@ class Job(Results):
         except OffSection as fault:
             raise blame.outside(self, fault) from None
         except NothingInside as fault:
-            if self.record.caps:
-                raise self.error("caps", f"wanted stacks that leave room for the web, got {fault}") from None
-            text = f"wanted a skin that leaves room for the web, got {fault}"
-            raise self.error("skin.thickness", text) from None
+            raise blame.nothing_inside(self, fault) from None
 
     def laid_tube(self, built: BuiltWeb) -> Tube | None:
         """Where the joint's pin lies in a web, tube and overwrap round it; None without a joint.
@@ -326,7 +337,7 @@ class Job(Results):
         """Filler in mm^3 that a set bevel costs more than it would with a saw that has no steps; 0 for other edges."""
         if self.record.web.edge != "set bevel":
             return 0.0
-        step = self.record.web.angle_step / FINE_SAW
+        step = max(self.record.web.angle_step / FINE_SAW, FINEST)
         survey = self.web.survey
         ideal = [seat.cut(survey, side, "set bevel", self._runs(survey, side, step)) for side in SIDES]
         return self.web.filler - sum(c.filler for c in ideal)

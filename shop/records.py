@@ -43,6 +43,7 @@ from .values import (
     read_mass,
 )
 
+SHORTEST = 10.0  # mm between the ribs that cut the web off
 PRINTERS_OFF = 0.05  # a bar further off than this was not printed at 100 %
 
 
@@ -172,9 +173,9 @@ class Web(Record):
         ge=1,
         description="the saw settings along each edge with a set bevel, a whole number of 1 or more",
     )
-    angle_step: Tilt = Field(
-        default=0.5, description="the step to which the saw's angle can be set, in degrees up to 45"
-    )
+    angle_step: Annotated[
+        float, BeforeValidator(fit(read_angle, "an angle from 0.05 to 45 degrees", lambda v: 0.05 <= v <= 45))
+    ] = Field(default=0.5, description="the step to which the saw's angle can be set, from 0.05 to 45 degrees")
     aim: Literal["filler", "gap"] = Field(
         default="filler", description='what a set bevel\'s runs make least: "filler" or the largest "gap"'
     )
@@ -187,6 +188,9 @@ class Web(Record):
     @model_validator(mode="after")
     def _outwards(self, info: ValidationInfo) -> Self:
         ascending(((("ends", i), y) for i, y in enumerate(self.ends)), file_units(info))
+        if self.ends[1] - self.ends[0] < SHORTEST:
+            least, got = (said(v, file_units(info)) for v in (SHORTEST, self.ends[1] - self.ends[0]))
+            raise KeyedError(("ends",), f"wanted ribs {least} or more apart, got {got}")
         return self
 
 

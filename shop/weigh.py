@@ -197,27 +197,36 @@ def candidates(
     cants
         Degrees, or ``least filler`` and ``least gap`` to be found for each thickness and edge.
     """
+    swept = cache(partial(_surveys, job.trial_survey, job, max(thicknesses)))
     for stated in cants:
         if isinstance(stated, str):
             for thickness, edge in product(thicknesses, edges):
-                angle = job.best_cant("gap" if stated == "least gap" else "filler", thickness, edge)[0]
+                found = partial(_thinner, swept, thickness)
+                angle = job.best_cant("gap" if stated == "least gap" else "filler", thickness, edge, found)[0]
                 yield _candidate(job, angle, thickness, edge, partial(job.survey, angle))
         else:
             angle = float(np.radians(stated))
-            surveys = cache(_surveys(job, angle, max(thicknesses)))
+            surveys = cache(_surveys(job.survey, job, max(thicknesses), angle))
             for thickness, edge in product(thicknesses, edges):
                 yield _candidate(job, angle, thickness, edge, surveys)
 
 
-def _surveys(job: Job, angle: float, widest: float) -> Callable[[float], Survey]:
+_Surveyor = Callable[[float, float | None], Survey]
+
+
+def _surveys(survey: _Surveyor, job: Job, widest: float, angle: float) -> Callable[[float], Survey]:
     """Surveys by thickness: all read from the widest sheet's, or, where that does not hold them, made one by one."""
     if job.joint is not None:
-        return partial(job.survey, angle)
+        return partial(survey, angle)
     try:
-        wide = job.survey(angle, widest)
+        wide = survey(angle, widest)
     except (OffSection, NothingInside):
-        return lambda thickness: job.survey(angle, thickness)
+        return partial(survey, angle)
     return lambda thickness: wide.thinner(thickness / widest)
+
+
+def _thinner(surveys: Callable[[float], Callable[[float], Survey]], thickness: float, angle: float) -> Survey:
+    return surveys(angle)(thickness)
 
 
 def _candidate(
@@ -307,10 +316,14 @@ def _or_inf(limit: float | None) -> float:
 def verdict(found: Sequence[Candidate], job: Job) -> Verdict:
     """The lightest candidate within the limits, with the reason and how close the next one is.
 
-    Of equal ones the easier edge is taken, then the thinner sheet.
+    Of those that weigh the same in the figures shown, the easier edge is taken, then the thinner sheet.
     """
     order = {edge: i for i, edge in enumerate(TREATMENTS)}
-    ranked = sorted((c for c in found if c.fits), key=lambda c: (round(c.masses.total, 6), order[c.edge], c.thickness))
+
+    def rank(c: Candidate) -> tuple[float, int, float]:
+        return float(job.wording.mass_column(c.masses.total)), order[c.edge], c.thickness
+
+    ranked = sorted((c for c in found if c.fits), key=rank)
     if not ranked:
         return _no_verdict(found, job)
     best, limited = ranked[0], job.record.limits is not None
@@ -320,7 +333,8 @@ def verdict(found: Sequence[Candidate], job: Job) -> Verdict:
     sentence = f"Take {_named(best, job)}: at {job.wording.mass(best.masses.total)} the lightest {among}."
     if len(ranked) > 1:
         more = ranked[1].masses.total - best.masses.total
-        sentence += f" Next: {_named(ranked[1], job)}, {job.wording.mass(more)} heavier."
+        by = f"{job.wording.mass(more)} heavier" if rank(ranked[1])[0] > rank(best)[0] else "as heavy in these figures"
+        sentence += f" Next: {_named(ranked[1], job)}, {by}."
     return Verdict(best, None, sentence)
 
 
@@ -360,11 +374,12 @@ def saving(job: Job) -> Saving:
 
 def saving_sentence(found: Saving, job: Job) -> str:
     """What the best cant would save, as a sentence."""
-    at = f"With the stated sheet and edge, cant {found.best:.2f}° needs least filler at the cut edges"
     by = found.filler_stated - found.filler_best
-    return (
-        f"{at}: {job.wording.mass(found.filler_best)}, {job.wording.mass(by)} less than the stated {found.stated:.2f}°."
-    )
+    if not float(job.wording.mass_column(by)):
+        return f"No other cant would save filler worth having at the cut edges; the stated one is {found.stated:.2f}°."
+    at = f"With the stated sheet and edge, cant {found.best:.2f}° needs least filler at the cut edges"
+    least, less = job.wording.mass(found.filler_best), job.wording.mass(by)
+    return f"{at}: {least}, {less} less than the stated {found.stated:.2f}°."
 
 
 def cautions(job: Job) -> list[tuple[str, str]]:

@@ -12,6 +12,7 @@ from hypothesis import strategies as st
 from wings import Bent, loft, slab
 
 from wrywing.geom import cant as cants
+from wrywing.geom import runs as runs_of
 from wrywing.geom import seat, web
 from wrywing.geom.airfoil import naca
 from wrywing.shop import job as jobs
@@ -43,7 +44,7 @@ def made(slope, thickness, crown=0.0, length=10.0):
 def fill(survey, treatment, runs=1, angles=None, aim="filler"):
     chosen = ()
     if treatment == "set bevel":
-        chosen = seat.best_runs(survey, "top", runs=runs, angles=angles, aim=aim)
+        chosen = runs_of.best_runs(survey, "top", runs=runs, angles=angles, aim=aim)
     return seat.cut(survey, "top", treatment, chosen)
 
 
@@ -120,7 +121,7 @@ def test_one_set_bevel_is_the_median_for_filler_and_the_mid_range_for_gap(slopes
 def test_more_runs_never_need_more_filler(slopes, crown):
     slope = np.repeat(np.array(slopes)[:, None], 3, axis=1)
     survey = made(slope, 8.0, crown)
-    angles = seat.saw_angles(survey, "top", np.radians(1.0))
+    angles = runs_of.saw_angles(survey, "top", np.radians(1.0))
     needs = [fill(survey, "set bevel", runs, angles).filler for runs in (1, 2, 3, 4)]
     assert all(b <= a + 1e-9 for a, b in pairwise(needs))
 
@@ -129,7 +130,7 @@ def test_more_runs_never_need_more_filler(slopes, crown):
 def test_full_bevel_never_needs_more_than_set_nor_set_than_square(slopes, crown, runs):
     slope = np.repeat(np.array(slopes)[:, None], 3, axis=1)
     survey = made(slope, 8.0, crown)
-    angles = seat.saw_angles(survey, "top", np.radians(0.5))
+    angles = runs_of.saw_angles(survey, "top", np.radians(0.5))
     square, full = (fill(survey, t).filler for t in ("square", "full bevel"))
     set_bevel = fill(survey, "set bevel", min(runs, len(slopes)), angles).filler
     assert full <= set_bevel + 1e-9
@@ -174,7 +175,7 @@ def test_dynamic_programming_equals_brute_force(count, runs, aim, random):
 @pytest.mark.parametrize("runs", [0, 6])
 def test_runs_beyond_the_places_are_refused(runs):
     with pytest.raises(ValueError, match=f"from 1 to 5 runs .* got {runs}"):
-        seat.best_runs(made(np.zeros((5, 3)), 6.0), "top", runs=runs, angles=np.zeros(1))
+        runs_of.best_runs(made(np.zeros((5, 3)), 6.0), "top", runs=runs, angles=np.zeros(1))
 
 
 def nasa(tmp_path):
