@@ -119,7 +119,7 @@ def weigh(
     ] = None,
     edge: Annotated[str | None, typer.Option(help='Edge cuts to try: "square,full bevel". All unless given.')] = None,
     cant: Annotated[
-        str | None, typer.Option(help='Cants to try: "0,5,least filler". The stated one unless given.')
+        str | None, typer.Option(help='Cants: "0,5,square at 900,least filler,least gap". The stated one unless given.')
     ] = None,
     as_json: AsJson = False,
     as_csv: AsCsv = False,
@@ -153,7 +153,7 @@ def templates(
     formats: Annotated[
         str, typer.Option(help="Any of dxf,svg,pdf; csv: lists, a wire's path; nc: that path; solids: stl,3mf,glb.")
     ] = "dxf,svg,pdf,csv,nc",
-    hand: Annotated[str, typer.Option(help="right, left or both: right,left.")] = "right",
+    hand: Annotated[str, typer.Option(help="right, left or both.")] = "right",
     paper: Annotated[
         str | None, typer.Option(help='a4 to a0, letter, legal, tabloid or "roll 610 mm"; else as the wing file says.')
     ] = None,
@@ -169,7 +169,8 @@ def templates(
 
     job = _job(wing)
     kinds = _list_of(formats, {kind: kind for kind in (*bundle.FORMATS, *_PATHS, *_MESHES)}, "--formats")
-    hands: list[Hand] = _list_of(hand, {"right": "right", "left": "left"}, "--hand")
+    named: dict[str, Hand] = {"right": "right", "left": "left"}
+    hands: list[Hand] = [*named.values()] if hand == "both" else _list_of(hand, named, "--hand")
     options = _options(job, paper, dxf_version, arcs, kerf)
     laid = job.nestings if len(hands) == 2 else nestings(job, hands)
     drawings = [drawing for side in hands for drawing in sheets.drawings(job, side)]
@@ -188,8 +189,9 @@ def templates(
             made.add(f"{name}-{side}.{kind}", kind, name, side, content)
     for name, content in _lists(job) if "csv" in kinds else ():
         made.add(f"{name}.csv", "csv", name, "both", content)
-    folder.write(out, made.files, made.records, stamp=job.stamp)
-    typer.echo(f"wrote {len(made.files)} files and manifest.json to {out}")
+    gone = folder.write(out, made.files, made.records, stamp=job.stamp)
+    earlier = f"; {gone} of an earlier run, which this one does not make, are gone" if gone else ""
+    typer.echo(f"wrote {len(made.files)} files and manifest.json to {out}{earlier}")
 
 
 @app.command()
@@ -200,7 +202,7 @@ def report(
     """Write one page to look at: figures, a 3D view, lists and cautions; it needs no network."""
     from .export import onefile
 
-    onefile.require_place(out)
+    onefile.require_page(out)
     job = _job(wing)
     from .export import report as page
 
@@ -268,11 +270,10 @@ def _meshes(job: Job, kinds: list[str], hand: Hand) -> list[tuple[str, str, byte
 
 def _lists(job: Job) -> list[tuple[str, bytes]]:
     """Name and content of the cut list and the shopping list, which are for both hands."""
-    from dataclasses import asdict
-
+    from .export import table_lists
     from .export.table import to_csv
 
-    tables = {"cut-list": [asdict(c) for c in job.cut_list], "shopping-list": [asdict(b) for b in job.shopping_list]}
+    tables = {"cut-list": table_lists.records(job.cut_list), "shopping-list": table_lists.records(job.shopping_list)}
     return [(name, to_csv(rows).encode()) for name, rows in tables.items()]
 
 
@@ -354,10 +355,13 @@ def _cants(job: Job, cant: str | None) -> list[float | str]:
         if part in ("least filler", "least gap"):
             cants.append(part)
             continue
+        if part.startswith("square at "):
+            cants.append(math.degrees(job.square_at(_length(job, part.removeprefix("square at "), "--cant"))))
+            continue
         try:
             angle = units.angle(part)
         except ValueError as fault:
-            raise UsageError(f"--cant: wanted {fault}") from None
+            raise UsageError(f'--cant: wanted "square at Y", "least filler", "least gap" or {fault}') from None
         if abs(angle) > 45.0:
             raise UsageError(f"--cant: wanted angles within 45 degrees, got {part!r}")
         cants.append(angle)

@@ -1,1 +1,5 @@
 """Drawings, meshes and tables to bytes; one module for each format."""
+
+from . import home
+
+home.provide()

@@ -17,7 +17,7 @@ class FolderError(ValueError):
     """The folder cannot take the files; the message is one line for the user, and nothing was changed."""
 
 
-def write(folder: Path, files: Mapping[str, bytes], records: Iterable[Mapping[str, str]], *, stamp: str) -> None:
+def write(folder: Path, files: Mapping[str, bytes], records: Iterable[Mapping[str, str]], *, stamp: str) -> int:
     """Put `files` and their manifest into `folder`; what an earlier run put there and this one does not goes.
 
     A run that is killed leaves what stood there before or all that is new; see `swap`, and `moves` for the few folders
@@ -35,6 +35,11 @@ def write(folder: Path, files: Mapping[str, bytes], records: Iterable[Mapping[st
     stamp
         The wing file's revision.
 
+    Returns
+    -------
+    int
+        How many files of an earlier run went, as this one does not make them.
+
     Raises
     ------
     FolderError
@@ -45,9 +50,9 @@ def write(folder: Path, files: Mapping[str, bytes], records: Iterable[Mapping[st
         place = folder.resolve()
         swap.recover(place)
         if place.exists():
-            _renew(folder, place, content)
-        else:
-            _create(folder, place, content)
+            return _renew(folder, place, content)
+        _create(folder, place, content)
+        return 0
     except OSError as error:
         raise FolderError(f"output folder {folder}: wanted to write there, got: {error.strerror or error}") from error
 
@@ -59,7 +64,7 @@ def _create(folder: Path, place: Path, content: Mapping[str, bytes]) -> None:
     swap.create(place, content)
 
 
-def _renew(folder: Path, place: Path, content: Mapping[str, bytes]) -> None:
+def _renew(folder: Path, place: Path, content: Mapping[str, bytes]) -> int:
     if not place.is_dir():
         raise FolderError(f"output folder {folder}: wanted a folder, got a file")
     if not os.access(place, os.W_OK):
@@ -74,3 +79,4 @@ def _renew(folder: Path, place: Path, content: Mapping[str, bytes]) -> None:
             )
     if not swap.renew(place, content, ours):
         moves.renew(place, content, ours)
+    return sum(name not in content for name in ours)

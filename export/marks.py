@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+import unicodedata
 from collections.abc import Iterator, Sequence
 
 import numpy as np
@@ -45,9 +46,21 @@ def begin(canvas: Canvas, page: Page) -> None:
     canvas.setLineJoin(1)
 
 
+def in_type(words: str) -> str:
+    """`words` in the characters of Helvetica (Latin-1: ISO 8859-1); of any other letter what lettering makes of it.
+
+    Examples
+    --------
+    >>> in_type("Möwe − Łódź")
+    'Möwe - Lódz'
+    """
+    composed = unicodedata.normalize("NFC", words)
+    return "".join(c if "\u00a1" <= c <= "\u00ff" else lettering.plain(c) for c in composed)
+
+
 def breadth(words: str, height: float = TEXT, *, bold: bool = False) -> float:
     """Length in mm of a line of type with capitals `height` mm tall."""
-    return float(stringWidth(lettering.plain(words), _font(bold), height / CAP))
+    return float(stringWidth(in_type(words), _font(bold), height / CAP))
 
 
 def wrapped(words: str, room: float, height: float = TEXT) -> Iterator[str]:
@@ -115,7 +128,7 @@ class Marks:
         room: float = np.inf,
     ) -> None:
         """Write one line; what is too long for `room` mm is cut short with dots."""
-        words = lettering.plain(words)
+        words = in_type(words)
         if breadth(words, height, bold=bold) > room:
             while words and breadth(words + "...", height, bold=bold) > room:
                 words = words[:-1]

@@ -24,6 +24,28 @@ def require_place(path: Path) -> None:
         raise FolderError(f"output file {path}: wanted a folder {path.parent} that exists, got {got}")
 
 
+_PAGE = b"<!DOCTYPE html>"
+
+
+def require_page(path: Path) -> None:
+    """Refuse a place for a page that is not named like one, or where something other than a page stands.
+
+    Raises
+    ------
+    FolderError
+        Besides what `require_place` refuses.
+    """
+    require_place(path)
+    if path.suffix.lower() not in (".html", ".htm"):
+        raise FolderError(f"output file {path}: wanted a name that ends in .html, got {path.name!r}")
+    try:
+        start = path.read_bytes()[:200] if path.exists() else _PAGE
+    except OSError as error:
+        raise FolderError(f"output file {path}: wanted to read what stands there, got: {error.strerror}") from error
+    if start.strip() and not start.lstrip().upper().startswith(_PAGE.upper()):
+        raise FolderError(f"output file {path}: wanted to write there, got a file that is no page; move it away first")
+
+
 def write(path: Path, content: bytes) -> None:
     """Write a file, in place of one that is there.
 

@@ -82,7 +82,9 @@ def paged(drawing: Drawing, how: Print, *, wing: str = "") -> tuple[bytes, int]:
     pen = _PdfPen()
     drawing.play(pen)
     shapes = np.array(pen.shapes, dtype=object)
-    layout = plan(shapes, how.paper, margins=MARGINS, least=LEAST_WINDOW, printed=how.printed)
+    layout = plan(
+        shapes[~np.array(pen.frames, dtype=bool)], how.paper, margins=MARGINS, least=LEAST_WINDOW, printed=how.printed
+    )
     buffer = io.BytesIO()
     canvas = open_file(buffer, title(drawing, wing), identity(drawing))
     who = identity(drawing) + (", print corrected" if how.corrected else "")
@@ -106,16 +108,18 @@ class _PdfPen:
     def __init__(self) -> None:
         self.shapes: list[shapely.LineString] = []
         self.roles: list[Role] = []
+        self.frames: list[bool] = []
         self.labels: list[Label] = []
         self.middles: list[tuple[float, float]] = []
 
-    def _take(self, shape: shapely.LineString, role: Role) -> None:
+    def _take(self, shape: shapely.LineString, role: Role, frame: bool) -> None:
         self.shapes.append(shape)
         self.roles.append(role)
+        self.frames.append(frame)
 
     def stroke(self, stroke: Stroke) -> None:
         shape = shapely.LinearRing if stroke.closed else shapely.LineString
-        self._take(shape(np.round(stroke.points, DIGITS) + 0.0), stroke.role)  # PDF knows no exponents
+        self._take(shape(np.round(stroke.points, DIGITS) + 0.0), stroke.role, stroke.frame)  # PDF knows no exponents
 
     def hole(self, hole: Hole) -> None:
         radius = hole.diameter / 2.0
@@ -132,6 +136,7 @@ class _PdfPen:
             of = np.repeat(np.arange(len(lines)), [len(line) for line in lines])
             self.shapes += list(np.asarray(shapely.linestrings(np.concatenate(lines), indices=of)))
             self.roles += [label.role] * len(lines)
+            self.frames += [False] * len(lines)
 
 
 def _show(canvas: Canvas, tile: Tile, pen: _PdfPen, shapes: Shapes) -> None:

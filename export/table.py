@@ -150,13 +150,17 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
     words = job.wording
     unit = words.mass_unit
     heads = ("", "sheet", "edge", "cant", "runs", "foam", "filler", "other", "total", "gap", "bevel", "swing", "limits")
-    rows = []
+    rows: list[tuple[str, ...]] = []
+    marked = set()
     for c in found:
-        mark = "→" if c is verdict.chosen else ""
-        start = (mark, words.plain(c.thickness), c.edge, degrees(c.cant))
+        start = ("→" if c is verdict.chosen else "", words.plain(c.thickness), c.edge, degrees(c.cant))
         if c.outside:
-            rows.append((*start, *[""] * 8, c.refused or ""))
+            refused = (*start, *[""] * 8, c.refused or "")
+            alike = rows and rows[-1][1::2] == refused[1::2]  # the same sheet and cant, whatever the edge
+            rows[-1:] = [(*refused[:2], "any", *refused[3:])] if alike else [*rows[-1:], refused]
             continue
+        if c is verdict.chosen:
+            marked.add(len(rows))
         rows.append(
             (
                 *start,
@@ -171,9 +175,8 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
                 _verdict(job, c),
             )
         )
-    marked = frozenset(i for i, c in enumerate(found) if c is verdict.chosen)
     title = f"{job.record.name}: what a web costs (lengths in {job.wording.length_unit}, masses in {unit})"
-    return Table(title, heads, tuple(rows), marked)
+    return Table(title, heads, tuple(rows), frozenset(marked))
 
 
 def _verdict(job: Job, candidate: Candidate) -> str:

@@ -2,8 +2,22 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from dataclasses import asdict
+from typing import Any
+
+from ..shop.cutlist import Cut
 from ..shop.job import Job
+from ..shop.shopping import Buy
 from .table import Table
+
+_UNITS = {"length": "mm", "width": "mm", "thickness": "mm", "mass": "g", "mass_both": "g"}
+
+
+def records(rows: Sequence[Cut] | Sequence[Buy]) -> list[dict[str, Any]]:
+    """Lines of either list as rows of a CSV file, whose heads name the unit: ``length_mm``, ``mass_g``."""
+    heads = {key: f"{key}_{unit}" for key, unit in _UNITS.items()}
+    return [{heads.get(key, key): value for key, value in asdict(row).items()} for row in rows]
 
 
 def cut_list(job: Job) -> Table:

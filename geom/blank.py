@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 import numpy as np
+import shapely
 from numpy.typing import NDArray
 
 from .seat import Along, Cut
@@ -14,6 +15,8 @@ from .web import Plane
 Array = NDArray[np.float64]
 FaceName = Literal["front", "rear"]
 FACES: tuple[FaceName, FaceName] = ("front", "rear")
+
+REGISTER_SIZES = (3.0, 2.0, 1.5, 1.0, 0.6, 0.3, 0.1)  # mm, diameters of register holes; the last are pricked
 
 _FINE = np.linspace(0.0, 1.0, 9)[:-1]  # places in a cell at which its quadratic is drawn
 _SPARE = 10.0  # mm by which an edge is carried on before the rib planes cut it
@@ -81,24 +84,58 @@ def register_places(
 ) -> Array:
     """(k, 2) places (s, h), three or more, that lie on both faces: a pin pushed square through the sheet hits both.
 
-    They stand on the web line where it runs well inside the sheet, else at mid-height, and are spaced unevenly, so that
-    a face cannot be laid on end for end. One that would fall between the two places s of `keep_off` moves clear.
+    They stand on the web line where it runs well inside the sheet, else half-way up, and are spaced unevenly, so that a
+    face cannot be laid on end for end. One that would fall between the two places s of `keep_off` moves clear. Every
+    hole has room, its own diameter of sheet all round: where a tip is too thin they stay inboard, and where even half
+    the sheet's length has no room for them they are smaller; `register_diameter` says what they are then.
     """
-    start = max(f.outline()[:, 0].min() for f in (front, rear)) + inset
-    stop = min(f.outline()[:, 0].max() for f in (front, rear)) - inset
-    if stop - start < 2.0 * inset:
-        start, stop = start - inset / 2.0, stop + inset / 2.0
+    s = np.concatenate([f.outline()[:, 0] for f in (front, rear)])
+    for size in REGISTER_SIZES:
+        room = _room(front, rear, size)
+        start, stop = _stretch(room, inset, keep_off)
+        if stop - start > 0.5 * float(np.ptp(s)):
+            break
     count = max(3, int(np.ceil((stop - start) / apart)) + 1)
     share = np.linspace(0.0, 1.0, count)
     share[1:-1] -= 0.12 / (count - 1)
-    places = []
-    for wanted in start + share * (stop - start):
-        s = _clear_of(float(wanted), keep_off, start, stop)
-        low = max(f.heights(s)[0] for f in (front, rear))
-        high = min(f.heights(s)[1] for f in (front, rear))
-        margin = 0.25 * (high - low)
-        places.append([s, 0.0 if low + margin < 0.0 < high - margin else (low + high) / 2.0])
-    return np.array(places)
+    places = (_clear_of(float(wanted), keep_off, start, stop) for wanted in start + share * (stop - start))
+    return np.array([[at, _height(room, at)] for at in places])
+
+
+def register_diameter(front: Face, rear: Face, places: Array) -> float:
+    """The largest diameter in mm, of those in use, for which all the places (k, 2) of the register holes have room."""
+    points = shapely.points(places)
+    fitting = (d for d in REGISTER_SIZES if shapely.covers(_room(front, rear, d).buffer(1e-6), points).all())
+    return next(fitting, REGISTER_SIZES[-1])
+
+
+def _room(front: Face, rear: Face, diameter: float) -> shapely.Polygon:
+    """Where the middle of a hole may stand, so that both faces have its diameter to spare round it; may be empty."""
+    both = shapely.Polygon(front.outline()).intersection(shapely.Polygon(rear.outline()))
+    parts = shapely.get_parts(both.buffer(-1.5 * diameter))
+    return max(parts, key=lambda part: part.length, default=shapely.Polygon())
+
+
+def _stretch(room: shapely.Polygon, inset: float, keep_off: tuple[float, float] | None) -> tuple[float, float]:
+    """First and last place s with room, `inset` from the ends and clear of `keep_off`; both 0 if there is none."""
+    if room.is_empty:
+        return 0.0, 0.0
+    start, _, stop, _ = room.bounds
+    inset = min(inset, 0.2 * (stop - start))
+    start, stop = start + inset, stop - inset
+    if keep_off is not None and keep_off[0] < start < keep_off[1]:
+        start = min(keep_off[1], stop)
+    if keep_off is not None and keep_off[0] < stop < keep_off[1]:
+        stop = max(keep_off[0], start)
+    return start, stop
+
+
+def _height(room: shapely.Polygon, s: float) -> float:
+    """The web line's where it runs well inside the room at s, else half-way up."""
+    _, bottom, _, top = room.bounds
+    _, low, _, high = room.intersection(shapely.LineString([[s, bottom - 1.0], [s, top + 1.0]])).bounds
+    margin = 0.1 * (high - low)
+    return 0.0 if low + margin < 0.0 < high - margin else float(low + high) / 2.0
 
 
 def _clear_of(s: float, keep_off: tuple[float, float] | None, start: float, stop: float) -> float:

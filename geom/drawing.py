@@ -37,11 +37,15 @@ class Role(StrEnum):
 
 @dataclass(frozen=True)
 class Stroke:
-    """A polyline (k, 2) in mm; a closed one does not repeat its first point."""
+    """A polyline (k, 2) in mm; a closed one does not repeat its first point.
+
+    A `frame` only bounds a drawing: no page is printed for its sake.
+    """
 
     points: NDArray[np.float64]
     role: Role
     closed: bool = False
+    frame: bool = False
 
 
 @dataclass(frozen=True)

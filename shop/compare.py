@@ -133,7 +133,7 @@ def _shape(a: Job, b: Job) -> Iterator[Effect]:
     yield Effect("web length", "mm", one.web_length, two.web_length)
     yield Effect("cant", "degrees", one.web_cant, two.web_cant)
     for i, end in enumerate(("inner", "outer")):
-        yield Effect(f"web height, {end} end", "mm", one.heights[i], two.heights[i])
+        yield Effect(f"height between the skins, {end} end", "mm", one.heights[i], two.heights[i])
         yield Effect(f"washout, {('root', 'tip')[i]}", "degrees", one.washout[i], two.washout[i])
     yield Effect("largest gap", "mm", one.gap, two.gap)
 

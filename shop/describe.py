@@ -12,10 +12,12 @@ from ..geom import web as web_geometry
 from ..geom.web import SIDES, Side
 from . import describe_core, describe_cutting, describe_joint, describe_strength
 from .job import Job
+from .stock import Foam
 from .weigh import amount, broken_limits, masses
 from .wording import degrees
 
 STEEP = 15.0  # degrees of bevel from which a saw cut is doubtful
+SHARP = 4.0  # degrees by which the skin may break at a station
 CLEAR = 3.0  # skin thicknesses a web keeps from either edge of the section
 
 
@@ -38,6 +40,8 @@ class Facts:
     web_thickness: float
     edge: str
     heights: tuple[float, float]
+    cut_heights: tuple[float, float]
+    planed: float
     bevel_top: tuple[float, float]
     bevel_bottom: tuple[float, float]
     gap: float
@@ -62,6 +66,7 @@ def facts(job: Job) -> Facts:
     twist = np.degrees(loft.washout(ends, ends)[0])
     steep_y, steep = washout.steepest(loft.washout)
     rows = job.rows([0.0, built.plane.length])
+    cut_heights = [max(r.top.cut_front - r.bottom.cut_front, r.top.cut_rear - r.bottom.cut_rear) for r in rows]
     heights = [(r.top.front + r.top.rear - r.bottom.front - r.bottom.rear) / 2.0 for r in rows]
     weights = masses(job, built)
     return Facts(
@@ -80,6 +85,8 @@ def facts(job: Job) -> Facts:
         web_thickness=job.record.web.thickness,
         edge=job.record.web.edge,
         heights=(heights[0], heights[1]),
+        cut_heights=(cut_heights[0], cut_heights[1]),
+        planed=(built.top.removed + built.bottom.removed) * job.stock.find(job.record.web.foam, Foam).density * 1e-6,
         bevel_top=_bevels(job, "top"),
         bevel_bottom=_bevels(job, "bottom"),
         gap=built.gap,
@@ -116,6 +123,7 @@ def panel(job: Job) -> list[tuple[str, str]]:
     ends = job.record.web.ends
     counts = [len(job.web.cut(side).runs) for side in SIDES]
     runs = f", {counts[0]} runs at the top, {counts[1]} at the bottom" if any(counts) else ""
+    planed = f", {words.mass(f.planed)} of foam planed off" if f.planed > 0.0 else ""
     unit = "metre" if words.units == "mm" else "foot"
     return [
         ("panel", f"{f.name}, revision {f.stamp}"),
@@ -133,7 +141,11 @@ def panel(job: Job) -> list[tuple[str, str]]:
             f"{words.length(f.web_length)} from rib {words.plain(ends[0])} to {words.plain(ends[1])}, "
             f"{words.length(f.web_thickness)} {job.record.web.foam}, cant {degrees(f.web_cant, 2)}",
         ),
-        ("height", f"{words.length(f.heights[0])} at the inner end, {words.length(f.heights[1])} at the outer"),
+        (
+            "height",
+            f"between the skins {words.length(f.heights[0])} at the inner end, {words.length(f.heights[1])} at "
+            f"the outer; the web is cut {words.length(f.cut_heights[0])} and {words.length(f.cut_heights[1])} high",
+        ),
         (
             "bevel",
             f"top {degrees(f.bevel_top[0])} to {degrees(f.bevel_top[1])}, "
@@ -141,7 +153,7 @@ def panel(job: Job) -> list[tuple[str, str]]:
         ),
         (
             "edge",
-            f"{f.edge}{runs}, largest gap {words.length(f.gap)}",
+            f"{f.edge}{runs}, largest gap {words.length(f.gap)}{planed}",
         ),
         ("masses", f"filler {words.mass(f.filler)}, the web with all that bonds it {words.mass(f.mass)}"),
     ]
@@ -167,6 +179,7 @@ def doubts(job: Job) -> tuple[str, ...]:
     """What a builder should look at twice before cutting."""
     return (
         *_washout_doubts(job),
+        *_kink_doubts(job),
         *_section_doubts(job),
         *_edge_doubts(job),
         *_bevel_doubts(job),
@@ -208,6 +221,22 @@ def _edge_doubts(job: Job) -> list[str]:
         f"less than {CLEAR:g} skin thicknesses"
         for name, (room, y) in nearest.items()
     ]
+
+
+def _kink_doubts(job: Job) -> list[str]:
+    """Stations where the skin breaks: close to one, the edge is off by a part of depth x break x slope."""
+    loft, plane = job.loft, job.web.plane
+    y1, y2 = job.record.web.ends
+    said = []
+    for y in loft.y[(loft.y > y1) & (loft.y < y2)]:
+        for side in SIDES:
+            t = web_geometry.edge(loft, plane, plane.s_at_rib(y, 0.0, 0.0), 0.0, side).t
+            inner, outer = (loft.normal(t, y, at) for at in (np.nextafter(y, -np.inf), y))
+            turn = float(np.degrees(np.arccos(np.clip(inner @ outer, -1.0, 1.0))))
+            if turn > SHARP:
+                at = job.wording.length(float(y))
+                said.append(f"the {side} skin breaks by {turn:.1f}° at y {at}: close to that rib fit the edge by hand")
+    return said
 
 
 def _bevel_doubts(job: Job) -> list[str]:

@@ -77,9 +77,12 @@ class Job(Results):
         if stated.kind == "angle":
             return float(np.radians(stated.value or 0.0))
         if stated.kind == "square":
-            ends, line = self.record.web.ends, self.record.web.line
-            return web.cant_square_at(self.loft, ends=ends, line=line, y=stated.value or 0.0)
+            return self.square_at(stated.value or 0.0)
         return self.best_cant("gap" if stated.kind == "least gap" else "filler")[0]
+
+    def square_at(self, y: float) -> float:
+        """Cant, radians, at which the web stands square to the chord line of rib y."""
+        return web.cant_square_at(self.loft, ends=self.record.web.ends, line=self.record.web.line, y=y)
 
     def best_cant(
         self,

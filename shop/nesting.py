@@ -124,7 +124,10 @@ def _laid_out(
     except TooShort as fault:
         where = f"s = {words.plain(fault.low)} and {words.length(fault.high)}"
         text = f"wanted a place for a scarf, {words.length(fault.length)} long, between {where}, got none that is clear"
-        raise job.error("cutting.scarf", f"{text} of strip ends, pins and changes of the saw") from None
+        scarfed = f"{cutting.scarf:g} times the sheet's {words.length(kind[1])}"
+        room_for = f"{words.length(room[0])} between the margins of a sheet {words.length(sheet.size[0])} long"
+        why = f"a scarf is {scarfed}, and needed as the web is {words.length(fault.web)} long and there are {room_for}"
+        raise job.error("cutting.scarf", f"{text} of strip ends, pins and changes of the saw; {why}") from None
     pieces += others
     outlines = [piece.outline for piece in pieces]
     try:

@@ -22,11 +22,15 @@ _ON = 0.05  # mm beyond its outline that what belongs to a piece may reach
 
 @dataclass(frozen=True)
 class Piece:
-    """One piece: its drawing, whose first stroke is the outline, what it is made of and how thick that is, mm."""
+    """One piece: its drawing, whose first stroke is the outline, what it is made of and how thick that is, mm.
+
+    Beside it, with its name, is written what finds no room on it.
+    """
 
     drawing: Drawing
     material: str
     thickness: float
+    beside: tuple[str, ...] = ()
 
     @property
     def outline(self) -> Array:

@@ -28,6 +28,7 @@ def strip_marks(job: Job, view: View, layout: Layout, inside: shapely.Polygon) -
         layout.keep_clear(shapely.LineString(stroke.points))
     for layer, stroke in zip(stopping, strokes, strict=True):
         text = f"layer {layer.number} to s {job.wording.plain(layer.stop)}, cut {cut_length(job, layer)}"
+        text += f", laid {_turn(job, layer)}"
         x, y = stroke.points[-1]
         up = 1.0 if layer.side == "bottom" else -1.0
         low = y - (2.5 if up < 0 else 0.0)
@@ -38,6 +39,12 @@ def strip_marks(job: Job, view: View, layout: Layout, inside: shapely.Polygon) -
         ]
         layout.put(text, spots, within=inside)
     return strokes
+
+
+def _turn(job: Job, layer: Layer) -> str:
+    """When a layer is laid: layers are counted from the skin, and the one furthest from it goes on first."""
+    turn = max(other.number for other in job.layers if other.side == layer.side) - layer.number
+    return ("first", "second", "third", "fourth", "fifth")[turn] if turn < 5 else f"as number {turn + 1}"
 
 
 def _mark(view: View, layer: Layer) -> Stroke:

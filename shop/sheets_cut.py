@@ -12,7 +12,7 @@ from .describe_strength import strip_notes
 from .job import Job
 from .layout import Layout, Spot
 from .sheets_joint import joint_notes
-from .sheets_web import LARGE, PIN, PLAIN, SMALL
+from .sheets_web import PLAIN, SMALL, pin_diameter, write_titles
 from .wording import degrees
 
 Array = NDArray[np.float64]
@@ -30,9 +30,10 @@ def web_cut(job: Job, hand: Hand = "right") -> list[Drawing]:
     layout = Layout()
     layout.keep_clear(whole.exterior)
     strokes = [Stroke(np.asarray(whole.exterior.coords)[:-1], Role.CUT_OUTSIDE, closed=True)]
-    holes = tuple(Hole(float(x), float(y), PIN) for x, y in job.register)
+    pin = pin_diameter(job)
+    holes = tuple(Hole(float(x), float(y), pin) for x, y in job.register)
     for hole in holes:
-        layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(PIN / 2.0 + 0.5))
+        layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(pin / 2.0 + 0.5))
     lines = [(face.name, line) for face in job.web.faces for line in _within(face, whole)]
     for _, line in lines:
         strokes.append(Stroke(line, Role.ENGRAVE))
@@ -41,10 +42,9 @@ def web_cut(job: Job, hand: Hand = "right") -> list[Drawing]:
         if len(line) > 2:
             _name(layout, _WHOSE[name], line, whole)
     strokes += _write_inside(job, layout, whole, hand)
-    x0, y0, _, _ = whole.bounds
     heads = [job.record.name, f"web blank, both faces, {hand.upper()} hand"]
     notes = _notes(job)
-    layout.write_block([*((t, LARGE) for t in heads), *((t, PLAIN) for t in notes)], x0, y0 - 6.0)
+    write_titles(layout, whole, heads, notes, hand)
     drawing = Drawing(
         name="web-cut",
         title="Web blank, both faces",
@@ -98,7 +98,8 @@ def _write_inside(job: Job, layout: Layout, whole: shapely.Polygon, hand: Hand) 
     for x in places:
         if arrow := layout.put_up_arrow(float(x), _middle(whole, x), whole):
             return arrow
-    return []
+    beside = (layout.put_up_arrow(float(x), middle[x0 + 1.0]) for x in np.arange(x0 - 14.0, x0 - 60.0, -3.0))
+    return next((arrow for arrow in beside if arrow), [])
 
 
 def _middle(whole: shapely.Polygon, x: float) -> float:
@@ -115,7 +116,7 @@ def _notes(job: Job) -> list[str]:
         f"{words.length(stated.thickness)} {stated.foam}, cant {degrees(np.degrees(job.cant))}, "
         f"bond line {words.length(stated.bond)}",
         "As seen from the rear; the outline is that of both faces together, to be cut through square to the sheet",
-        "The edges are worked from it to each face's own line: where no line is engraved, the outline is that line",
+        "A face ends at the line that says so, and elsewhere at the outline as it is cut: work each edge from face to face",
         *strip_notes(job),
         *joint_notes(job, job.web.faces[1]),
         f"Wing file revision {job.stamp}",

@@ -10,6 +10,7 @@ import shapely
 from numpy.typing import NDArray
 from shapely.geometry.base import BaseGeometry
 
+from ..geom import blank
 from ..geom.blank import Face
 from ..geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
 from ..geom.joint import Pad, Tube
@@ -22,7 +23,6 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 
-HOLE = 3.0  # mm, diameter of the register holes
 SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
 APART = 10.0  # mm between plan and profile
 OUT = 50.0  # mm that a pin along the web is drawn out of its end, to be cut off there
@@ -53,7 +53,26 @@ def joint_marks(job: Job, view: View, layout: Layout, inside: shapely.Polygon) -
             Spot(view.sense * s + aside, h, "middle", 90.0) for aside in (-1.5, 4.0) for h in np.linspace(low, high, 21)
         ]
         layout.put(text, spots, within=inside)
+    _name_tube(job, job.tube, view, layout, inside)
     return [Stroke(view.on(line), Role.ENGRAVE) for line in lines]
+
+
+def _name_tube(job: Job, tube: Tube, view: View, layout: Layout, inside: shapely.Polygon) -> None:
+    """Say beside its lines, or beyond the web's edge where there is no room, what the tube is and how wide it lies."""
+    text, angle = f"pin tube {job.wording.length(tube.across)}", 90.0 if tube.start[0] == tube.stop[0] else 0.0
+    (x0, y0), (x1, y1) = (f(view.on(tube.outline()), axis=0) for f in (np.min, np.max))
+    share = 0.5 + 0.45 * np.linspace(0.0, 1.0, 21)[:, None] * [1.0, -1.0]
+    if angle:
+        rows = y0 + (y1 - y0) * share.ravel()
+        spots = [Spot(x, float(y), "middle", 90.0) for x in (x1 + 4.0, x0 - 1.5, x1 + 7.0, x0 - 4.5) for y in rows]
+    else:
+        columns = x0 + (x1 - x0) * share.ravel()
+        spots = [Spot(float(x), y) for y in (y1 + 1.8, y0 - 4.3, y1 + 4.0, y0 - 7.0) for x in columns]
+    if not layout.put(text, spots, within=inside):
+        beyond = inside.bounds[3] + np.arange(8.0, 30.0, 4.0)
+        layout.put(
+            text, [Spot(float(x), float(y)) for y in beyond for x in ((x0 + x1) / 2.0 + np.arange(0.0, 40.0, 5.0))]
+        )
 
 
 def joint_notes(job: Job, face: Face) -> list[str]:
@@ -96,15 +115,16 @@ def _pad_sheet(job: Job, end: JointEnd, tube: Tube, pad: Pad, hand: Hand) -> Dra
     x0, low, x1, _ = whole.bounds
     marks = [*_tube_lines(tube, whole), _across(whole, end.thickening.place(end.thickening.full))]
     marks += _inside(np.array([[x0 - 1.0, 0.0], [x1 + 1.0, 0.0]]), whole)
+    pin = blank.register_diameter(*job.web.faces, job.register)
     holes = tuple(
-        Hole(float(x), float(y), HOLE)
+        Hole(float(x), float(y), pin)
         for x, y in job.register * flip
-        if inside.contains(shapely.Point(x, y).buffer(HOLE))
+        if inside.contains(shapely.Point(x, y).buffer(pin))
     )
     for mark in marks:
         layout.keep_clear(shapely.LineString(mark * flip))
     for hole in holes:
-        layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(HOLE / 2.0 + 0.5))
+        layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(pin / 2.0 + 0.5))
     arrow = _write_plan(job, end, pad, flip, layout, inside, hand)
     profile = _profile(end, tube, pad, job.web.plain, flip, low - APART - pad.thickness)
     foot = _write_profile(job, end, pad, profile, layout)

@@ -17,7 +17,7 @@ Array = NDArray[np.float64]
 
 SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
 _LEAST = 2.2
-_WIDE = 175.0  # mm, the longest line of notes
+_WIDE = 160.0  # mm, the longest line of notes
 _BESIDE: tuple[tuple[float, Anchor], ...] = ((9.0, "start"), (-9.0, "end"), (14.0, "start"))
 _STRIP = 36.0  # mm, width of the strip
 

@@ -29,7 +29,7 @@ def _sheet(job: Job, nesting: Nesting, index: int, hands: Sequence[Hand], number
     words, stated = job.wording, job.record.cutting
     long, wide = nesting.size
     placed = [_placed(nesting.pieces[laid.piece], laid) for laid in nesting.sheets[index]]
-    border = Stroke(np.array([[0.0, 0.0], [long, 0.0], [long, wide], [0.0, wide]]), Role.NOTE, closed=True)
+    border = Stroke(np.array([[0.0, 0.0], [long, 0.0], [long, wide], [0.0, wide]]), Role.NOTE, closed=True, frame=True)
     layout = Layout()
     layout.write_block([("grain or roll", PLAIN)], _ARROW + 4.0, wide + 6.0)
     whose = " and ".join(hands)
@@ -39,6 +39,7 @@ def _sheet(job: Job, nesting: Nesting, index: int, hands: Sequence[Hand], number
         f"Sheet {words.plain(long)} x {words.length(wide)}, grain along its length; {100.0 * used:.0f} % of it is used",
         f"Pieces of the {whose} hand, {words.length(stated.apart if stated else 0.0)} apart; each says which it is",
         "Cut along the outer lines; the web's bevels are planed to the engraved lines of its faces",
+        *dict.fromkeys(text for laid in nesting.sheets[index] for text in nesting.pieces[laid.piece].beside),
     ]
     lines = [(job.record.name, LARGE), (title, LARGE), *((note, PLAIN) for note in notes)]
     layout.write_block([*lines, (f"Wing file revision {job.stamp}", PLAIN)], 0.0, -4.0)

@@ -2,19 +2,22 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom import blank, web
+from ..geom import blank, lettering, web
 from ..geom.blank import Face
 from ..geom.drawing import Anchor, Drawing, Hand, Hole, Label, Role, Stroke, thin
+from ..geom.seat import Run
 from ..geom.web import Side
 from .describe_strength import strip_notes
 from .job import Job
-from .layout import Layout, Spot
+from .layout import Layout, Spot, wrapped
 from .sheets_caps import strip_marks
 from .sheets_joint import joint_marks, joint_notes
 from .units import MM_PER_INCH
@@ -22,10 +25,13 @@ from .wording import degrees
 
 Array = NDArray[np.float64]
 
-PIN = 3.0  # mm, diameter of the register holes
 TICK = 4.0
 SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+WIDE = 150.0  # mm, the longest line of notes: it leaves room on a sheet of paper for what stands beside it
 _LINE = 1.7  # line spacing, in heights
+_BEYOND = 1.5 + 2.0 * _LINE * SMALL  # mm from an edge, past a tick's bevel and its s
+_SAID = 150.0  # mm, within which the saw's angle is said again: on every sheet of paper
+_LIMIT = 0.35  # share of the web's height that the mark of a limit runs into the face
 
 
 def web_blank(job: Job, hand: Hand = "right") -> list[Drawing]:
@@ -34,6 +40,11 @@ def web_blank(job: Job, hand: Hand = "right") -> list[Drawing]:
     The front face is seen from the front, so that s runs to the left on a right-hand panel.
     """
     return [_face_sheet(job, face, hand) for face in job.web.faces]
+
+
+def pin_diameter(job: Job) -> float:
+    """Diameter of the register holes, mm."""
+    return blank.register_diameter(*job.web.faces, job.register)
 
 
 @dataclass(frozen=True)
@@ -73,18 +84,18 @@ def _face_sheet(job: Job, face: Face, hand: Hand) -> Drawing:
     strokes += _datum(view, inside)
     strokes += _ribs(job, view)
     strokes += _ticks(job, view, layout)
-    strokes += _saw_marks(job, view, layout)
+    strokes += _saw_marks(job, view, layout, hand)
     for stroke in strokes[1:]:
         layout.keep_clear(shapely.LineString(stroke.points))
-    places = view.on(job.register)
-    holes = tuple(Hole(float(x), float(y), PIN) for x, y in places)
+    pin = pin_diameter(job)
+    holes = tuple(Hole(float(x), float(y), pin) for x, y in view.on(job.register))
     for hole in holes:
-        layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(PIN / 2.0 + 0.5))
+        layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(pin / 2.0 + 0.5))
     strokes += joint_marks(job, view, layout, inside)
     strokes += strip_marks(job, view, layout, inside)
     strokes += _directions(job, view, layout, inside)
     _write_inside(job, view, layout, inside, hand)
-    _write_titles(job, view, layout, hand)
+    _write_titles(job, view, layout, inside, hand)
     drawing = Drawing(
         name=f"web-{face.name}",
         title=f"Web blank, {face.name} face",
@@ -138,25 +149,60 @@ def _ticks(job: Job, view: View, layout: Layout) -> list[Stroke]:
     return strokes
 
 
-def _saw_marks(job: Job, view: View, layout: Layout) -> list[Stroke]:
-    """Where the saw is set anew along a set bevel, and to what."""
+def _saw_marks(job: Job, view: View, layout: Layout, hand: Hand) -> list[Stroke]:
+    """Where the saw is set anew along a set bevel, and to what: said at each limit and again along every run."""
     strokes = []
     for side in web.SIDES:
         runs = job.web.cut(side).runs
-        outwards = 1.0 if side == "top" else -1.0
+        for before, after in pairwise(runs):
+            strokes += _limit_mark(view, side, after.start)
+            _write_limit(job, view, layout, (side, before, after), hand)
         for run in runs:
             start, stop = max(run.start, view.edge(side)[0, 0]), min(run.stop, view.edge(side)[-1, 0])
-            middle = (start + stop) / 2.0
-            far = 1.5 + 2.0 * _LINE * SMALL + (PLAIN if side == "bottom" else 0.0)
-            out = view.beyond(side, middle, 20.0) + outwards * far
-            text = f"saw {degrees(np.degrees(run.angle), 2)}"
-            layout.write(Label(text, view.sense * middle, out, PLAIN, anchor="middle"))
-            if run is not runs[0]:
-                at = view.h(side, run.start)
-                deep = 0.35 * (view.h("top", run.start) - view.h("bottom", run.start))
-                mark = np.array([[run.start, at], [run.start, at - outwards * deep]])
-                strokes.append(Stroke(view.on(mark), Role.ENGRAVE))
+            count = int(np.ceil((stop - start) / _SAID))
+            for share in (np.arange(count) + 0.5) / count:
+                at = float(start + share * (stop - start))
+                near = [s for step in np.arange(0.0, 60.0, 5.0) for s in (at + step, at - step) if start < s < stop]
+                _write_beyond(view, layout, side, _saw(run), [(s, 0.0, "middle") for s in near])
     return strokes
+
+
+def _saw(run: Run) -> str:
+    return f"saw {degrees(np.degrees(run.angle), 2)}"
+
+
+def _limit_mark(view: View, side: Side, s: float) -> list[Stroke]:
+    """An arrow from inside the face to its edge, much longer than a tick."""
+    high, low = view.h("top", s), view.h("bottom", s)
+    at, inwards = (high, -1.0) if side == "top" else (low, 1.0)
+    deep, barb = inwards * _LIMIT * (high - low), min(3.0, 0.15 * (high - low))
+    shaft = np.array([[s, at], [s, at + deep]])
+    barbs = np.array([[s + x * barb, at + y * inwards * barb] for x, y in ((-0.5, 1.3), (0.0, 0.2), (0.5, 1.3))])
+    return [Stroke(view.on(line), Role.ENGRAVE) for line in (shaft, barbs)]
+
+
+def _write_limit(job: Job, view: View, layout: Layout, limit: tuple[Side, Run, Run], hand: Hand) -> None:
+    """Place and both angles of a limit, each on its own side of a bar that stands over the mark."""
+    side, before, after = limit
+    look = 1.0 if hand == "right" else -1.0  # a left hand is mirrored, but its text still reads to the right
+    left, right = (before, after) if view.sense * look > 0.0 else (after, before)
+    head = f"s {job.wording.plain(after.start)}: {_saw(left)} "
+    back = lettering.width(head, PLAIN) + lettering.width("|", PLAIN) / 2.0
+    text = f"{head}| {degrees(np.degrees(right.angle), 2)}"
+    _write_beyond(view, layout, side, text, [(after.start, -look * back, "start" if look > 0.0 else "end")])
+
+
+def _write_beyond(view: View, layout: Layout, side: Side, text: str, places: list[tuple[float, float, Anchor]]) -> None:
+    """Write a text beyond the ticks' own figures at one of the places (s, shift on the sheet, anchor), or further out."""
+    outwards, wide = (1.0, lettering.width(text, PLAIN)) if side == "top" else (-1.0, lettering.width(text, PLAIN))
+    for row in range(12):
+        far = _BEYOND + row * _LINE * PLAIN + (PLAIN if side == "bottom" else 0.0)
+        spots = []
+        for s, shift, anchor in places:
+            out = view.beyond(side, s, wide / 2.0 if anchor == "middle" else wide) + outwards * far
+            spots.append(Spot(view.sense * s + shift, out, anchor))
+        if layout.put(text, spots, height=PLAIN):
+            return
 
 
 def _directions(job: Job, view: View, layout: Layout, inside: shapely.Polygon) -> list[Stroke]:
@@ -180,7 +226,16 @@ def _directions(job: Job, view: View, layout: Layout, inside: shapely.Polygon) -
             if arrow := layout.put_up_arrow(view.sense * s, (max(0.0, low) + high) / 2.0, inside):
                 strokes += arrow
                 break
-    return strokes
+    return strokes or _arrow_beside(view, layout)
+
+
+def _arrow_beside(view: View, layout: Layout) -> list[Stroke]:
+    """The arrow that says which edge is up, beside the ROOT end of a web too low to hold it."""
+    (s, low), (other, high) = view.face.bottom[0], view.face.top[0]
+    found = (
+        layout.put_up_arrow(view.sense * (min(s, other) - d), (low + high) / 2.0) for d in np.arange(14.0, 60.0, 3)
+    )
+    return next((arrow for arrow in found if arrow), [])
 
 
 def _write_inside(job: Job, view: View, layout: Layout, inside: shapely.Polygon, hand: Hand) -> None:
@@ -217,32 +272,40 @@ def _clear_of_datum(view: View, s: float, share: float, height: float) -> float:
     return ceiling - air - height - share * max(0.0, ceiling - low - 2.0 * air - height)
 
 
-def _write_titles(job: Job, view: View, layout: Layout, hand: Hand) -> None:
-    """Title block under the root end of the face."""
-    lines = [
-        (job.record.name, LARGE),
-        (f"web blank, {view.face.name.upper()} face, {hand.upper()} hand", LARGE),
-        *((text, PLAIN) for text in _notes(job, view.face)),
-    ]
-    start = view.face.bottom[0, 0]
-    wide = max(Label(text, 0.0, 0.0, height).box().bounds[2] for text, height in lines)
-    low = min(view.face.bottom[view.face.bottom[:, 0] < start + wide + 10.0, 1])
-    y = low - 1.5 - 2.0 * _LINE * SMALL - (2.0 * PLAIN if job.web.bottom.runs else 0.0) - 4.0
-    layout.write_block(lines, view.sense * start, y, "start" if view.sense > 0 else "end")
+def _write_titles(job: Job, view: View, layout: Layout, inside: shapely.Polygon, hand: Hand) -> None:
+    """Title block under the left end of the face as it is looked at, where a sheet of paper starts."""
+    heads = (job.record.name, f"web blank, {view.face.name.upper()} face, {hand.upper()} hand")
+    write_titles(layout, inside, heads, _notes(job, view.face), hand)
+
+
+def write_titles(
+    layout: Layout, inside: shapely.Polygon, heads: Sequence[str], notes: Sequence[str], hand: Hand
+) -> None:
+    """Write a title block below all that stands at the left end of a piece, its notes wrapped."""
+    texts = [*((text, LARGE) for text in heads), *((text, PLAIN) for text in notes)]
+    lines = [(line, height) for text, height in texts for line in wrapped(text, height, WIDE)]
+    x0, low, x1, high = inside.bounds
+    strip = shapely.box(x0, low, x0 + WIDE, high) if hand == "right" else shapely.box(x1 - WIDE, low, x1, high)
+    foot = inside.intersection(strip).bounds[1]
+    boxes = [label.box().bounds for label in layout.labels]
+    feet = [box[1] for box in boxes if box[2] > strip.bounds[0] - 10.0 and box[0] < strip.bounds[2] + 10.0]
+    # a left hand is mirrored: its text starts at the right end
+    start: tuple[float, Anchor] = (x0, "start") if hand == "right" else (x1, "end")
+    layout.write_block(lines, start[0], min([foot, *feet]) - 4.0, start[1])
 
 
 def _notes(job: Job, face: Face) -> list[str]:
     """What must be known to use the sheet."""
     stated, words = job.record.web, job.wording
     edges = {
-        "square": "both edges cut square: this outline serves both faces",
+        "square": "both edges cut square: the same on both faces, but each face has its own ends",
         "set bevel": "both edges cut with the saw set to the angle marked for each run",
         "full bevel": "both edges cut from this outline to that of the other face",
     }
     return [
         f"{words.length(stated.thickness)} {stated.foam}, cant {degrees(np.degrees(job.cant))}, "
         f"bond line {words.length(stated.bond)}",
-        f"As seen from the {face.name}; pins through the {PIN:g} mm holes register it with the other face",
+        f"As seen from the {face.name}; pins through the {pin_diameter(job):g} mm holes register it with the other",
         f"{edges[stated.edge][0].upper()}{edges[stated.edge][1:]}",
         f"At each tick: bevel of the skin, positive where the edge rises aft; s and y in {words.length_unit}",
         *strip_notes(job),

@@ -31,7 +31,7 @@ class Buy:
 
 
 def shopping_list(job: Job, laid: Sequence[Nesting] | None = None, cuts: Sequence[Cut] | None = None) -> list[Buy]:
-    """What to buy; lengths in metres or feet, areas in square metres, volumes in cubic centimetres.
+    """What to buy; lengths in metres or feet, areas in square metres or square feet, volumes in cubic centimetres or cubic inches.
 
     Parameters
     ----------
@@ -67,7 +67,13 @@ def _sheets(job: Job, laid: Sequence[Nesting], cuts: Sequence[Cut]) -> Iterator[
     for (material, thickness), mm2 in area.items():
         size = words.length(thickness) if thickness else ""
         sheet = f"sheet for ribs and cradles, {NOT_STATED}" if material == NOT_STATED else material
-        yield Buy(sheet, size, _round(mm2 * 1e-6), "m²", None, "rectangles round the pieces; no sheet is stated for it")
+        yield Buy(
+            sheet,
+            size,
+            *_rounded(words.area_bought(mm2)),
+            None,
+            "rectangles round the pieces; no sheet is stated for it",
+        )
 
 
 def _strips(job: Job, cuts: Sequence[Cut]) -> Iterator[Buy]:
@@ -94,7 +100,7 @@ def _pastes(job: Job, weights: Masses) -> Iterator[Buy]:
     for name, density, grams, use in pastes:
         mass = 2.0 * grams * (1.0 + allowance)
         note = f"for {use}, {100.0 * allowance:.0f} % more than needed"
-        yield Buy(name, "", _round(mass / density * 1e3), "cm³", _round(mass), note)
+        yield Buy(name, "", *_rounded(job.wording.volume_bought(mass / density * 1e6)), _round(mass), note)
 
 
 def _plies(job: Job, weights: Masses) -> Iterator[tuple[str, float, float, float]]:
@@ -122,7 +128,13 @@ def _cloths(job: Job, weights: Masses) -> Iterator[Buy]:
         grams[name] += 2.0 * mass * (1.0 - resin)
         area[name] += 2.0 * mass * (1.0 - resin) / dry
     for name, m2 in area.items():
-        yield Buy(name, "", _round(m2), "m²", _round(grams[name]), "as laid, before what is cut off")
+        yield Buy(
+            name,
+            "",
+            *_rounded(job.wording.area_bought(m2 * 1e6)),
+            _round(grams[name]),
+            "as laid, before what is cut off",
+        )
 
 
 def _blocks(cuts: Sequence[Cut]) -> Iterator[Buy]:
@@ -143,6 +155,10 @@ def _joint(job: Job, cuts: Sequence[Cut]) -> Iterator[Buy]:
             pin = f"{job.wording.length(end.pin)} across"
             length = _long(job, cut.both_hands * cut.length)
             yield Buy(end.stated.material, pin, *length, None, "what lies in the webs, without the fittings")
+
+
+def _rounded(bought: tuple[float, str]) -> tuple[float, str]:
+    return _round(bought[0]), bought[1]
 
 
 def _long(job: Job, mm: float) -> tuple[float, str]:

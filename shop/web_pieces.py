@@ -21,7 +21,7 @@ from .strips import ramp
 Array = NDArray[np.float64]
 
 PIN = 3.0  # mm, diameter of the register holes
-SMALL, PLAIN = 2.5, 3.0  # heights of lettering
+LEAST, SMALL, PLAIN = 2.2, 2.5, 3.0  # heights of lettering
 _CLEAR = 5.0  # mm that a scarf keeps from what ends or is pinned near it
 _MARK = 40.0  # mm from a scarf to the marks it is set by
 _SAME = 0.1  # mm within which a face's line is lost in the cut
@@ -31,9 +31,9 @@ _FAR = 1e5  # mm, beyond everything
 class TooShort(ValueError):
     """A sheet on which the web goes only with scarfs that find no place."""
 
-    def __init__(self, fault: scarf.NoPlace, length: float) -> None:
+    def __init__(self, fault: scarf.NoPlace, length: float, web: float) -> None:
         super().__init__(str(fault))
-        self.low, self.high, self.length = fault.low, fault.high, length
+        self.low, self.high, self.length, self.web = fault.low, fault.high, length, web
 
 
 def web_pieces(job: Job, cutting: Cutting, longest: float, hand: Hand) -> list[Piece]:
@@ -56,7 +56,7 @@ def web_pieces(job: Job, cutting: Cutting, longest: float, hand: Hand) -> list[P
     try:
         joints = scarf.places(x0, x1, longest=longest, scarf=long, keep_off=_keep_off(job))
     except scarf.NoPlace as fault:
-        raise TooShort(fault, long) from None
+        raise TooShort(fault, long, x1 - x0) from None
     bounds = [-np.inf, *joints, np.inf]
     count = len(bounds) - 1
     out = []
@@ -104,21 +104,33 @@ class _Web:
             layout.keep_clear(shapely.LineString(line))
         for hole in holes:
             layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(PIN / 2.0 + 0.5))
+        scarfs = []
         for low, high in joints:
-            lines += self._scarf(low, high, inside, layout)
+            lines += self._scarf_lines(low, high, inside, layout)
+            scarfs.append(
+                self._scarf_texts(low, high, start == low, self._name_line(low, high, start == low, inside, layout))
+            )
         self._letter(inside, layout, bool(np.isinf(start)), bool(np.isinf(stop)))
+        beside = []
+        for (low, high), texts in zip(joints, scarfs, strict=True):
+            left = [text for text in texts if not self._put_near(text, (low + high) / 2.0, inside, layout)]
+            beside += [f"{self._name}, {text}" for text in left]
         strokes = (Stroke(ring, Role.CUT_OUTSIDE, closed=True), *(Stroke(line, Role.ENGRAVE) for line in lines))
         title = f"Web sheet{self.which}"
         name = "web-sheet" + self.which.replace(" of ", "-").replace(" ", "-")
         drawing = Drawing(name, title, self.job.stamp, "right", strokes, holes, tuple(layout.labels))
-        return Piece(drawing, foam_name(self.job, self.job.record.web.foam), self.job.web.plain)
+        return Piece(drawing, foam_name(self.job, self.job.record.web.foam), self.job.web.plain, tuple(beside))
 
     def _face_lines(self, face: shapely.Polygon, whole: shapely.Polygon, inside: shapely.Polygon) -> list[Array]:
         """The edges of a face where they run inside the envelope: what the bevel is planed to."""
         rim = face.exterior.difference(whole.exterior.buffer(_SAME)).intersection(inside.buffer(-_SAME))
         return [thin(np.asarray(part.coords)) for part in _lines(rim) if part.length > 5.0]
 
-    def _scarf(self, low: float, high: float, inside: shapely.Polygon, layout: Layout) -> list[Array]:
+    @property
+    def _name(self) -> str:
+        return f"WEB{self.which.upper()}, {self.hand} hand"
+
+    def _scarf_lines(self, low: float, high: float, inside: shapely.Polygon, layout: Layout) -> list[Array]:
         """Both ends of the slope, a line to set the two pieces by, and a mark on it beyond either end."""
         middle = self._middle((low + high) / 2.0)
         tall = 0.15 * (self.rear.bounds[3] - self.rear.bounds[1])
@@ -130,22 +142,40 @@ class _Web:
         found = [np.asarray(part.coords) for shape in seen for part in _lines(shape)]
         for line in found:
             layout.keep_clear(shapely.LineString(line))
-        words, apart = self.job.wording, high - low + 2.0 * _MARK
-        texts = (
-            f"scarf 1 in {(high - low) / self.job.web.plain:g}, from s {words.plain(low)} on the front face to "
-            f"s {words.plain(high)} on the rear",
-            f"set with the two marks {words.length(apart)} apart",
-        )
-        ends = inside.bounds[0], inside.bounds[2]
-        for text in texts:
-            spots = [
-                Spot(s, h)
-                for h in (middle + 3.0, middle - 3.0 - SMALL, middle + 8.0, middle - 8.0 - SMALL)
-                for s in np.arange(max(ends[0], low - 200.0), min(ends[1], high + 200.0), 10.0)
-            ]
-            spots.sort(key=lambda spot: abs(spot.x - (low + high) / 2.0))
-            layout.put(text, spots, height=SMALL, within=inside)
         return found
+
+    def _name_line(self, low: float, high: float, outer: bool, inside: shapely.Polygon, layout: Layout) -> bool:
+        """Write along the line that a scarf is planed from which face it is on, if there is room for it."""
+        line, text = (high, "this face: REAR") if outer else (low, "other face: FRONT")
+        offs, rows = (-2.0, 4.6, -3.0, 5.6), np.linspace(inside.bounds[1], inside.bounds[3], 40)
+        spots = [Spot(line + off, float(h), "middle", 90.0) for off in offs for h in rows]
+        return any(layout.put(text, spots, height=height, within=inside) for height in (SMALL, LEAST))
+
+    def _scarf_texts(self, low: float, high: float, outer: bool, named: bool) -> tuple[str, ...]:
+        """What is planed, on the piece towards the tip (`outer`) or towards the root of a scarf.
+
+        The joint runs from s = low on the front face to s = high on the rear: the inner piece is longest on the rear
+        face, so that its front is planed; the outer one is longest on the front face, so that its rear is.
+        """
+        words, end = self.job.wording, "root" if outer else "tip"
+        line, feather = (high, low) if outer else (low, high)
+        planed, kept = ("REAR", "FRONT") if outer else ("FRONT", "REAR")
+        sides = {"REAR": "this side", "FRONT": "the other side"}
+        return (
+            f"scarf 1 in {(high - low) / self.job.web.plain:g}: plane the {planed} face ({sides[planed]}) "
+            f"from the line s {words.plain(line)} to the {end} end",
+            *(() if named else (f"line s {words.plain(line)} is on the {planed} face ({sides[planed]})",)),
+            f"feather edge at the {end} end, s {words.plain(feather)}, on the {kept} face ({sides[kept]})",
+            f"set with the two marks {words.length(high - low + 2.0 * _MARK)} apart",
+        )
+
+    def _put_near(self, text: str, at: float, inside: shapely.Polygon, layout: Layout) -> bool:
+        """Write a text where there is room for it nearest to s; False if there is none within reach."""
+        x0, y0, x1, y1 = inside.bounds
+        s, h = np.meshgrid(np.arange(max(x0, at - 350.0), min(x1, at + 350.0), 5.0), np.arange(y0, y1, 1.0))
+        places = np.column_stack([s.ravel(), h.ravel()])
+        order = np.hypot(places[:, 0] - at, places[:, 1] - self._middle(at)).argsort(kind="stable")
+        return layout.put_within(text, places[order], inside, heights=(SMALL,))
 
     def _middle(self, s: float) -> float:
         """The web line's height where it lies well inside the sheet at s, else mid-height."""
@@ -162,11 +192,10 @@ class _Web:
                 layout.put(text, spots, within=inside)
         places = np.linspace(x0, x1, 60)[3:-3]
         spots = [Spot(float(x), float(y)) for x in places[np.abs(places - places.mean()).argsort()] for y in rows]
-        piece = f"WEB{self.which.upper()}, {self.hand} hand"
-        whole = f"{piece}, seen from the rear, UP this way, {self.job.stamp}"
-        if not any(layout.put(whole, spots, height=height, within=inside) for height in (PLAIN, SMALL)):
-            for text in (piece, "rear, UP", self.job.stamp):
-                layout.put(text, spots, height=SMALL, within=inside)
+        whole = f"{self._name}, seen from the rear, UP this way, {self.job.stamp}"
+        short = f"{self._name}, rear, UP, {self.job.stamp}"
+        tries = ((whole, PLAIN), (whole, SMALL), (short, SMALL), (short, LEAST))
+        any(layout.put(text, spots, height=height, within=inside) for text, height in tries)
 
 
 def _one(shape: BaseGeometry) -> shapely.Polygon:

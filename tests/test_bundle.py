@@ -124,7 +124,7 @@ class TestCover:
 
     def test_lists_drawings_pages_stamp_date_and_cautions(self):
         file, text = self.text()
-        for words in ("Mowe survey wing", "revision 3fa9c1d2", "wing file of 2026-03-14", *cover.CAUTIONS):
+        for words in ("Möwe survey wing", "revision 3fa9c1d2", "wing file of 2026-03-14", *cover.CAUTIONS):
             assert words in text
         assert "3 drawings on 6 pages of a4 paper" in text
         assert "Rib 2 left 200 x 31 mm 2 rib-2-left.pdf" in text

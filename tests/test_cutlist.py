@@ -8,7 +8,6 @@ import json
 import math
 import sys
 from collections import Counter
-from dataclasses import asdict
 from pathlib import Path
 
 import numpy as np
@@ -16,6 +15,7 @@ import pytest
 
 from wrywing import cli
 from wrywing.export.table import to_csv
+from wrywing.export.table_lists import records
 from wrywing.shop import job as jobs
 from wrywing.shop import weigh
 from wrywing.shop.cutlist import cut_list
@@ -69,10 +69,11 @@ def test_what_is_bought_is_what_is_cut(job):
     assert sum(row.both_hands for row in web) == len(laid[0].pieces)
     assert all(row.length <= 1210.0 for row in web)
     weights, allowed = weigh.masses(job, job.web), 2 * 1.5
-    filler = bought["microballoon paste", "cm³"]
-    assert filler.amount == pytest.approx(allowed * weights.filler / 0.6, abs=0.01)  # 600 kg/m^3, stock
+    unit, cm3 = ("cu in", 2.54**3) if job.record.units == "in" else ("cm³", 1.0)
+    filler = bought["microballoon paste", unit]
+    assert filler.amount * cm3 == pytest.approx(allowed * weights.filler / 0.6, abs=0.01)  # 600 kg/m^3, stock
     assert filler.mass == pytest.approx(allowed * weights.filler, abs=0.01)
-    resin = bought["laminating epoxy", "cm³"]
+    resin = bought["laminating epoxy", unit]
     laminates = weights.facing + weights.cover + weights.flanges
     assert resin.mass == pytest.approx(allowed * (weights.bond + laminates / 2.0), abs=0.01)  # half of each is resin
     if job.record.caps:
@@ -120,24 +121,24 @@ def test_without_sheets_the_area_stands_in_their_place(tmp_path):
     job = loaded(tmp_path, "highmoor", "")
     rows = {b.item: b for b in shopping_list(job)}
     outline = np.concatenate([face.outline() for face in job.web.faces])
-    assert rows["pvc foam 80"].unit == "m²"
-    assert rows["pvc foam 80"].amount == pytest.approx(2e-6 * np.prod(np.ptp(outline, axis=0)), abs=1e-3)
+    assert rows["pvc foam 80"].unit == "sq ft"
+    assert rows["pvc foam 80"].amount == pytest.approx(2.0 / 304.8**2 * np.prod(np.ptp(outline, axis=0)), abs=1e-3)
     assert "20 % more" in rows["microballoon paste"].note
 
 
 def test_csv_reads_back_in_plain_columns(job):
     rows = cut_list(job)
-    read = list(csv.DictReader(io.StringIO(to_csv([asdict(row) for row in rows]))))
+    read = list(csv.DictReader(io.StringIO(to_csv(records(rows)))))
     assert list(read[0]) == [
-        *("kind", "piece", "material", "size", "length", "width", "thickness"),
-        *("each_hand", "both_hands", "mass", "mass_both"),
+        *("kind", "piece", "material", "size", "length_mm", "width_mm", "thickness_mm"),
+        *("each_hand", "both_hands", "mass_g", "mass_both_g"),
     ]
     for row, line in zip(rows, read, strict=True):
         assert (line["piece"], int(line["both_hands"])) == (row.piece, row.both_hands)
-        assert math.isclose(float(line["length"]), row.length)
+        assert math.isclose(float(line["length_mm"]), row.length)
         assert line["size"].endswith(job.record.units)
-    bought = list(csv.DictReader(io.StringIO(to_csv([asdict(b) for b in shopping_list(job)]))))
-    assert list(bought[0]) == ["item", "size", "amount", "unit", "mass", "note"]
+    bought = list(csv.DictReader(io.StringIO(to_csv(records(shopping_list(job))))))
+    assert list(bought[0]) == ["item", "size", "amount", "unit", "mass_g", "note"]
     assert all(float(line["amount"]) > 0.0 for line in bought)
 
 

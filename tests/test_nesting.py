@@ -4,6 +4,8 @@ from __future__ import annotations
 
 import io
 import math
+import re
+from dataclasses import replace
 from itertools import combinations, pairwise
 from pathlib import Path
 
@@ -14,12 +16,13 @@ import shapely
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from wrywing.export import dxf
+from wrywing.export import contours, dxf, pdf
 from wrywing.geom import nest, scarf
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
 from wrywing.shop.nesting import HANDS, nestings, without_sheet
 from wrywing.shop.sheets_stock import stock_sheets
+from wrywing.shop.stock import PAPERS
 from wrywing.shop.strips import ramp
 from wrywing.shop.web_pieces import web_pieces
 from wrywing.shop.wingfile import WingError
@@ -112,6 +115,15 @@ def test_scarfed_pieces_go_together_to_the_web(wing):
         marks += [s[0, 0] for s in lines if s[0, 0] == s[1, 0] and 5.0 < np.ptp(s[:, 1]) < 20.0]
     assert max(marks) - min(marks) == pytest.approx(8.0 * 6.0 + 80.0)
     assert any("marks 128 mm apart" in label.text for label in inner.drawing.labels)
+    for piece, planed, kept in (
+        (inner, "FRONT", "REAR"),
+        (outer, "REAR", "FRONT"),
+    ):  # each is tapered on the other face
+        said = " ".join([label.text for label in piece.drawing.labels] + list(piece.beside))
+        assert f"plane the {planed} face" in said
+        assert re.search(f"feather edge at the .* end, s [\\d.]+, on the {kept} face", said)
+        assert f"face: {planed}" in said
+        assert "set with the two marks" in said
     left = web_pieces(job, job.record.cutting, 1210.0, "left")[0]
     assert shapely.affinity.scale(left.shape, -1, 1, origin=(0, 0)).symmetric_difference(inner.shape).area < 1e-6
 
@@ -226,6 +238,24 @@ def test_every_piece_on_a_sheet_says_which_it_is(wing):
             assert job.stamp in said
 
 
+def test_what_finds_no_room_on_a_piece_stands_under_its_sheet_with_its_name(wing):
+    job = wing("saltpan")
+    laid = nestings(job)
+    beside = {text for piece in laid[0].pieces for text in piece.beside}
+    assert beside
+    said = {label.text for drawing in stock_sheets(job, laid, HANDS) for label in drawing.labels}
+    assert beside <= said
+    assert all(text.startswith("WEB ") for text in beside)
+
+
+def test_no_page_is_printed_for_a_sheets_border(wing):
+    job = wing("saltpan", SHEETS.replace('"250 mm"', '"1220 mm"'))
+    drawing = contours.clean(stock_sheets(job, nestings(job), HANDS)[0])
+    pages = pdf.paged(drawing, pdf.Print(PAPERS["a4"]))[1]
+    whole = replace(drawing, strokes=tuple(replace(s, frame=False) for s in drawing.strokes))
+    assert pages < pdf.paged(whole, pdf.Print(PAPERS["a4"]))[1] / 2
+
+
 def test_the_size_of_which_least_is_bought_is_taken(wing):
     two = SHEETS + '[[cutting.sheets]]\nmaterial = "pvc foam 80"\nsize = ["1220 mm", "160 mm"]\n'
     assert nestings(wing("saltpan", two))[0].size == (1220.0, 160.0)
@@ -247,6 +277,7 @@ def test_without_the_table_nothing_is_laid_out(wing):
         (('["1220 mm", "250 mm"]', '["1220 mm", "50 mm"]'), r"cutting\.sheets\[1\]\.size: wanted a sheet that takes"),
         (('["1220 mm", "250 mm"]', '["9 mm", "50 mm"]'), r"cutting\.sheets\[1\]\.size: wanted a sheet larger"),
         (("scarf = 8", "scarf = 40"), r"cutting\.scarf: wanted a place for a scarf, 240 mm long, between s = "),
+        (("scarf = 8", "scarf = 39"), r"cutting\.scarf: .*39 times the sheet's 6 mm, and needed as the web is 1431\.\d+ mm long and"),
         (("scarf = 8", "scarf = 1"), r"cutting\.scarf: wanted a number from 2 to 40, got 1"),
         (("PVC foam 80", "pvc fom 80"), r"cutting\.sheets\[1\]\.material: wanted a known foam, got 'pvc fom 80'"),
         (("scarf = 8", "turn = 1"), r"cutting\.turn: wanted true or false"),
@@ -255,7 +286,11 @@ def test_without_the_table_nothing_is_laid_out(wing):
     ],
 )  # fmt: skip
 def test_faults_are_one_line_that_names_the_key(wing, change, words):
-    short = SHEETS.replace('["1220 mm", "250 mm"]', '["500 mm", "250 mm"]') if "40" in change[1] else SHEETS
+    short = (
+        SHEETS.replace('["1220 mm", "250 mm"]', '["500 mm", "250 mm"]')
+        if change[1] in ("scarf = 40", "scarf = 39")
+        else SHEETS
+    )
     with pytest.raises(WingError, match=rf"^wing\.toml: {words}") as fault:
         nestings(wing("saltpan", short.replace(*change)))
     assert "\n" not in str(fault.value)

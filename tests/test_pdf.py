@@ -172,7 +172,7 @@ def test_every_page_says_what_it_belongs_to(case):
     hand = {"right": "right-hand panel", "left": "left-hand panel", "both": "both hands"}[drawing.hand]
     for number, page in enumerate(pages, start=1):
         for words in (
-            "Mowe survey wing, outer panel",
+            "Möwe survey wing, outer panel",
             drawing.title,
             hand,
             drawing.stamp,

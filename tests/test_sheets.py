@@ -2,17 +2,18 @@
 
 from __future__ import annotations
 
-from itertools import combinations
+from itertools import combinations, pairwise
 from pathlib import Path
 
 import numpy as np
 import pytest
 import shapely
 
-from wrywing.geom import web
+from wrywing.geom import lettering, web
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
 from wrywing.shop.sheets_web import web_blank
+from wrywing.shop.wording import degrees
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
 WINGS = ["saltpan.toml", "highmoor.toml"]
@@ -71,7 +72,7 @@ def test_a_pin_pushed_square_through_the_sheet_hits_both_faces(job):
 def test_ticks_stand_every_50_mm_or_2_in_with_the_local_bevel(job):
     step = 50.8 if job.record.units == "in" else 50.0
     rear = web_blank(job)[1]
-    bevels = [t for t in rear.labels if t.text.endswith("°") and not t.text.startswith("saw")]
+    bevels = [t for t in rear.labels if t.text.endswith("°") and "saw" not in t.text]
     rows = {round(row.s, 6): row for row in job.rows(np.arange(1, int(job.web.plane.length / step) + 1) * step)}
     for s, row in rows.items():
         here = sorted((t for t in bevels if abs(t.x - s) < 1e-6), key=lambda t: t.y)
@@ -121,9 +122,87 @@ def test_a_square_cut_has_one_outline_but_for_its_ends():
         np.testing.assert_allclose(np.interp(s, *a.T), np.interp(s, *b.T), atol=1e-9)
 
 
-def test_a_set_bevel_shows_where_the_saw_is_set_and_to_what():
+@pytest.mark.parametrize("hand", ["right", "left"])
+def test_a_set_bevel_says_at_each_limit_what_the_saw_changes_from_and_to(hand):
     job = jobs.load(EXAMPLES / "saltpan.toml")
+    for drawing in web_blank(job, hand):
+        sense = (-1.0 if "front" in drawing.name else 1.0) * (1.0 if hand == "right" else -1.0)
+        said = [t for t in drawing.labels if t.text.startswith("s ") and "saw" in t.text]
+        limits = [pair for side in web.SIDES for pair in pairwise(job.web.cut(side).runs)]
+        assert len(said) == len(limits) == 4
+        for before, after in limits:
+            left, right = (degrees(np.degrees(run.angle), 2) for run in (before, after)[:: int(sense)])
+            (label,) = (t for t in said if t.text == f"s {job.wording.plain(after.start)}: saw {left} | {right}")
+            bar = label.place([lettering.width(label.text.split("|")[0] + "|", 3.0) - lettering.width("|", 1.5), 0.0])
+            assert bar[0] == pytest.approx(sense * after.start)
+
+
+def test_the_saw_is_said_often_enough_for_every_sheet_of_paper():
+    job = jobs.load(EXAMPLES / "saltpan.toml")
+    for drawing, sense in zip(web_blank(job), (-1.0, 1.0), strict=True):
+        middle = np.interp(0.0, *job.web.faces[1].top.T) / 2.0
+        for side in web.SIDES:
+            for run in job.web.cut(side).runs:
+                text = f"saw {degrees(np.degrees(run.angle), 2)}"
+                s = [sense * t.x for t in drawing.labels if t.text == text and (t.y > middle) == (side == "top")]
+                here = sorted(v for v in s if run.start < v < run.stop)
+                places = [max(run.start, 0.0), *here, min(run.stop, job.web.plane.length)]
+                assert here
+                assert np.diff(places).max() < 180.0
+
+
+def test_notes_are_no_wider_than_a_sheet_of_paper(job):
     for drawing in web_blank(job):
-        said = sorted(t.text for t in drawing.labels if t.text.startswith("saw"))
-        runs = [run for side in web.SIDES for run in job.web.cut(side).runs]
-        assert said == sorted(f"saw {np.degrees(run.angle):+.2f}°".replace("+0.00", "0.00") for run in runs)
+        x0 = shapely.Polygon(outline(drawing)).bounds[0]
+        for label in drawing.labels:
+            a, _, b, _ = label.box().bounds
+            assert b - a < 170.0
+        (name,) = (t for t in drawing.labels if t.text == job.record.name)
+        assert name.x == pytest.approx(x0)
+
+
+THIN = """
+name = "thin tip"
+units = "mm"
+wing.stations = [
+    {{ y = 0, chord = {chord}, le = 0, airfoil = "naca 0010", washout = 0 }},
+    {{ y = 700, chord = 20, le = 40, airfoil = "naca 0010", washout = 0 }},
+]
+skin.thickness = 0.2
+[web]
+ends = [5, 690]
+line = [0.3, 0.3]
+thickness = {sheet}
+cant = 0
+edge = "full bevel"
+bond = 0.1
+foam = "pvc foam 80"
+filler = "microballoon paste"
+"""
+
+
+@pytest.mark.parametrize(("chord", "sheet", "least"), [(200, 3.0, 3.0), (60, 2.0, 1.0)])
+def test_register_holes_keep_their_room_on_a_thin_tip(tmp_path, chord, sheet, least):
+    path = tmp_path / "thin.toml"
+    path.write_text(THIN.format(chord=chord, sheet=sheet))
+    job = jobs.load(path)
+    faces = [shapely.Polygon(face.outline()) for face in job.web.faces]
+    for drawing, sense in zip(web_blank(job), (-1.0, 1.0), strict=True):
+        assert len(drawing.holes) >= 3
+        for hole in drawing.holes:
+            spare = shapely.Point(sense * hole.x, hole.y).buffer(1.49 * hole.diameter)
+            assert all(face.contains(spare) for face in faces)
+            assert hole.diameter == least
+        assert any(t.text == "UP" for t in drawing.labels)
+
+
+def test_a_web_too_low_for_its_arrow_has_it_beside_its_root(tmp_path):
+    path = tmp_path / "low.toml"
+    path.write_text(THIN.format(chord=60, sheet=2.0))
+    for drawing in web_blank(jobs.load(path)):
+        ring = shapely.Polygon(outline(drawing))
+        (up,) = (t for t in drawing.labels if t.text == "UP")
+        (root,) = (t for t in drawing.labels if t.text.startswith("ROOT"))
+        assert not up.box().intersects(ring)
+        assert up.box().distance(root.box()) < 10.0
+        assert any("FRONT face" in t.text or "REAR face" in t.text for t in drawing.labels)
