@@ -29,7 +29,7 @@ lint: $(VENV)/.dev
 bench: $(VENV)/.dev
 	@for script in tests/bench/bench_*.py; do echo "== $$script"; $(BIN)/python $$script || exit $$?; done
 
-# Renews the README's pictures and its table of keys.
+# Renews what README and DEVELOPERS.md take from the program: pictures, keys, modules.
 pictures: $(VENV)/.dev
 	$(BIN)/python tools/readme.py
 

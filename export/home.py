@@ -7,6 +7,7 @@ import logging
 import os
 import shutil
 import tempfile
+from collections.abc import Iterator
 from pathlib import Path
 
 _FOLDERS = {"XDG_CONFIG_HOME": ".config", "XDG_CACHE_HOME": ".cache"}  # XDG Base Directory Specification
@@ -15,11 +16,12 @@ _FOLDERS = {"XDG_CONFIG_HOME": ".config", "XDG_CACHE_HOME": ".cache"}  # XDG Bas
 def provide() -> None:
     """Point the libraries that draw to a passing folder if the home folder cannot be read or written.
 
-    Without one ezdxf stops or complains when it is imported, and so does matplotlib.
+    They read settings from there, and ezdxf and matplotlib keep lists of fonts; without it they stop or complain as
+    soon as they are imported.
     """
     # a first run may take its time to look for fonts: no cause for alarm
     logging.getLogger("matplotlib.font_manager").setLevel(logging.ERROR)
-    poor = [name for name, folder in _FOLDERS.items() if not _usable(os.environ.get(name) or f"~/{folder}")]
+    poor = list(_poor())
     if not poor:
         return
     passing = tempfile.mkdtemp(prefix="wrywing-")
@@ -28,12 +30,25 @@ def provide() -> None:
     os.environ.setdefault("MPLCONFIGDIR", passing)
 
 
-def _usable(folder: str) -> bool:
-    """Whether what is in a folder can be read, and more be put there, once it is made if need be."""
+def _poor() -> Iterator[str]:
+    """Variables that name, or leave to be guessed, a folder that cannot be used."""
     try:
-        path = Path(folder).expanduser()
-        while not path.exists():
-            path = path.parent
-    except (OSError, RuntimeError):  # RuntimeError: nobody knows where home is
+        home = Path.home()
+        readable = home.is_dir() and os.access(home, os.R_OK | os.X_OK)
+    except (OSError, RuntimeError):  # RuntimeError: nobody knows where it is
+        readable = False
+    if not readable:
+        yield "HOME"
+    for name, folder in _FOLDERS.items():
+        stated = os.environ.get(name)
+        if not (_writable(Path(stated)) if stated else readable and _writable(home / folder)):
+            yield name
+
+
+def _writable(folder: Path) -> bool:
+    """Whether a folder, made if need be as the libraries would, can be read and written."""
+    try:
+        folder.mkdir(parents=True, exist_ok=True)
+    except OSError:
         return False
-    return path.is_dir() and os.access(path, os.R_OK | os.W_OK | os.X_OK)
+    return os.access(folder, os.R_OK | os.W_OK | os.X_OK)

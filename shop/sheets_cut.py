@@ -116,7 +116,7 @@ def _notes(job: Job) -> list[str]:
         f"{words.length(stated.thickness)} {stated.foam}, cant {degrees(np.degrees(job.cant))}, "
         f"bond line {words.length(stated.bond)}",
         "As seen from the rear; the outline is that of both faces together, to be cut through square to the sheet",
-        "A face ends at the line that says so, and elsewhere at the outline as it is cut: work each edge from face to face",
+        "A face ends at the line that says so, elsewhere at the outline as cut: work each edge from face to face",
         *strip_notes(job),
         *joint_notes(job, job.web.faces[1]),
         f"Wing file revision {job.stamp}",

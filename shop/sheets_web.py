@@ -24,6 +24,7 @@ from .units import MM_PER_INCH
 from .wording import degrees
 
 Array = NDArray[np.float64]
+Place = tuple[float, float, Anchor]  # s, shift on the sheet, anchor
 
 TICK = 4.0
 SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
@@ -192,7 +193,7 @@ def _write_limit(job: Job, view: View, layout: Layout, limit: tuple[Side, Run, R
     _write_beyond(view, layout, side, text, [(after.start, -look * back, "start" if look > 0.0 else "end")])
 
 
-def _write_beyond(view: View, layout: Layout, side: Side, text: str, places: list[tuple[float, float, Anchor]]) -> None:
+def _write_beyond(view: View, layout: Layout, side: Side, text: str, places: list[Place]) -> None:
     """Write a text beyond the ticks' own figures at one of the places (s, shift on the sheet, anchor), or further out."""
     outwards, wide = (1.0, lettering.width(text, PLAIN)) if side == "top" else (-1.0, lettering.width(text, PLAIN))
     for row in range(12):

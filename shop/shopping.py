@@ -31,7 +31,7 @@ class Buy:
 
 
 def shopping_list(job: Job, laid: Sequence[Nesting] | None = None, cuts: Sequence[Cut] | None = None) -> list[Buy]:
-    """What to buy; lengths in metres or feet, areas in square metres or square feet, volumes in cubic centimetres or cubic inches.
+    """What to buy; in metres, square metres and cubic centimetres, or feet, square feet and cubic inches.
 
     Parameters
     ----------

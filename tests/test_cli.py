@@ -85,6 +85,8 @@ OUTSIDE = [
     ("thickness = 6", "thickness = 500", "web.thickness", "leaves the section at s ="),
     ("[skin]\nthickness = 1", "[skin]\nthickness = 14", "skin.thickness", "wanted a skin that leaves room"),
     ("line = [0.3, 0.3]\nthickness = 6", "cant = 45\nline = [0.012, 0.012]\nthickness = 4", "web.cant", "leaves"),
+    ("thickness = 6", "thickness = 6\nbond = 14", "web.bond", "wanted a bond line that leaves room"),
+    ("ends = [0, 980]", "ends = [0, 8]", "web.ends", "wanted ribs 10 mm or more apart, got 8 mm"),
     ("ends = [0, 980]", "ends = [0, 1200]", "web.ends", "got"),
     ("ends = [0, 980]", "ends = [-5, 980]", "web.ends", "got"),
     ("line = [0.3, 0.3]", "line = [0.3, 1.2]", "web.line", "got 1.2"),
@@ -118,6 +120,8 @@ def test_webs_that_do_not_fit_the_wing_are_refused_in_one_line(run, wing, tmp_pa
         (["weigh", "WING", "--thickness", "0"], "--thickness: wanted lengths above 0"),
         (["weigh", "WING", "--edge", "round"], "--edge: wanted one of square, set bevel, full bevel, got 'round'"),
         (["weigh", "WING", "--cant", "80"], "--cant: wanted angles within 45 degrees"),
+        (["weigh", "WING", "--cant", "upright"], '--cant: wanted "square at Y"'),
+        (["report", "WING", "--out", "WING"], "wanted a name that ends in .html"),
         (["templates", "WING", "--out", "OUT", "--formats", "png"], "--formats: wanted one of dxf, svg, pdf"),
         (["templates", "WING", "--out", "OUT", "--hand", "upper"], "--hand: wanted one of right, left"),
         (["templates", "WING", "--out", "OUT", "--paper", "a9"], "--paper: wanted a paper size"),
@@ -219,6 +223,8 @@ def test_check_describes_in_a_dozen_lines(run):
         ([("washout = 6\n[skin]", KINKED[:-2] + "2\n[skin]")], "the washout reverses at y 1000"),
         ([("line = [0.3, 0.3]", "line = [0.02, 0.02]")], "of the leading edge at y"),
         ([("washout = 6", "washout = 25")], "beyond 15°"),
+        ([("washout = 6\n[skin]", KINKED.replace("le = 800", "le = 200\nz = 150") + "[skin]"),
+          ("ends = [0, 980]", "ends = [0, 1950]")], "skin breaks by"),
     ],
 )  # fmt: skip
 def test_check_says_what_is_doubtful(run, wing, changes, doubt):
@@ -285,6 +291,31 @@ def test_templates_are_written_as_the_manifest_says_and_twice_the_same(run, tmp_
         data = (tmp_path / "a" / file["path"]).read_bytes()
         assert hashlib.sha256(data).hexdigest() == file["sha256"]
         assert (tmp_path / "b" / file["path"]).read_bytes() == data
+
+
+def test_a_page_never_takes_the_place_of_something_else(run, wing, tmp_path):
+    mine = tmp_path / "mine.html"
+    mine.write_text("my notes")
+    status, _, complaint = run("report", wing(), "--out", mine)
+    assert status == 2
+    assert "wanted to write there, got a file that is no page" in complaint
+    assert mine.read_text() == "my notes"
+
+
+def test_a_later_run_says_what_of_an_earlier_one_is_gone(run, wing, tmp_path):
+    out = tmp_path / "out"
+    run("templates", wing(), "--out", out, "--hand", "both", "--formats", "svg")
+    before = {path.name for path in out.iterdir()}
+    _, printed, _ = run("templates", wing(), "--out", out, "--hand", "left", "--formats", "svg")
+    gone = before - {path.name for path in out.iterdir()}
+    assert {name.rsplit("-", 1)[1] for name in gone} == {"right.svg"}
+    assert f"{len(gone)} of an earlier run" in printed
+
+
+def test_weigh_takes_a_cant_square_to_a_rib(run, wing):
+    record = json.loads(run("weigh", wing(), "--thickness", "6", "--cant", "square at 900", "--json")[1])
+    stated = json.loads(run("check", wing(("thickness = 6", 'thickness = 6\ncant = "square at 900"')), "--json")[1])
+    assert record["candidates"][0]["cant"] == pytest.approx(stated["web_cant"])
 
 
 def test_a_fault_of_the_program_shows_no_traceback(run, wing, monkeypatch):

@@ -43,6 +43,14 @@ def test_data_flows_one_way():
             assert imported(path) - {"__version__"} <= may, path.name
 
 
+def test_the_developers_guide_lists_every_module():
+    text = (ROOT / "DEVELOPERS.md").read_text(encoding="utf-8")
+    for name in MODULES:
+        path = ROOT.joinpath(*name.split(".")[1:]).with_suffix(".py")
+        said = ast.get_docstring(ast.parse(path.read_text(encoding="utf-8"))).splitlines()[0]
+        assert f"- `{path.name}`: {said}" in text
+
+
 def test_the_readme_lists_the_keys_that_the_code_knows():
     text = (ROOT / "README.md").read_text(encoding="utf-8")
     assert keys.markdown() in text

@@ -5,6 +5,7 @@ import io
 import os
 import subprocess
 import sys
+from pathlib import Path
 from xml.etree import ElementTree
 
 import ezdxf
@@ -154,3 +155,19 @@ def test_same_bytes_from_every_process():
             check=True,
         )
         assert other.stdout.strip() == sums()
+
+
+@pytest.mark.parametrize("command", ["templates", "report"])
+@pytest.mark.parametrize("home", ["/dev/null/nowhere", "/proc/nowhere", "locked"])
+def test_a_home_that_cannot_be_used_is_done_without(tmp_path, home, command):
+    if home == "locked":  # root may do all, so that it shows only to others
+        (tmp_path / home).mkdir(mode=0o000)
+        home = str(tmp_path / home)
+    wing = Path(__file__).parent.parent / "examples" / "saltpan.toml"
+    out = tmp_path / ("page.html" if command == "report" else "out")
+    words = ["-c", "from wrywing import cli; cli.main()", command, str(wing), "--out", str(out)]
+    words += ["--formats", "dxf,pdf"] if command == "templates" else []
+    env = {k: v for k, v in os.environ.items() if not k.startswith(("XDG_", "MPL"))} | {"HOME": home}
+    done = subprocess.run([sys.executable, *words], env=env, capture_output=True, text=True, check=False)
+    assert (done.returncode, done.stderr) == (0, "")
+    assert out.exists()

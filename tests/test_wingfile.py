@@ -295,7 +295,7 @@ BAD: list[tuple[tuple[str, str], str, str]] = [
     (("cant = 0", 'cant = "square at 3 kg"'), "web.cant", "got 'square at 3 kg'"),
     (("cant = 0", 'cant = "square at 2200"'), "web.cant", "within the stations, 0 mm to 2100 mm, got 2200 mm"),
     (("cant = 0", "cant_limit = 0"), "web.cant_limit", "above 0, up to 45 degrees, got 0"),
-    (("cant = 0", "angle_step = -0.5"), "web.angle_step", "above 0, up to 45 degrees, got -0.5"),
+    (("cant = 0", "angle_step = -0.5"), "web.angle_step", "an angle from 0.05 to 45 degrees, got -0.5"),
     (("cant = 0", 'aim = "mass"'), "web.aim", 'wanted "filler" or "gap"'),
     # airfoils
     ((OUTER, '"naca 99"'), OUTER_AIRFOIL, "wanted a NACA code of 4 or 5 digits"),

@@ -1,7 +1,8 @@
-"""Renews what the README takes from the program: its pictures in examples/pictures, and the table of keys."""
+"""Renews what the README and DEVELOPERS.md take from the program: pictures, the table of keys, the house."""
 
 from __future__ import annotations
 
+import ast
 import io
 import re
 from pathlib import Path
@@ -17,6 +18,7 @@ from wrywing.shop.job import Job
 
 ROOT = Path(__file__).parent.parent
 PICTURES = ROOT / "examples" / "pictures"
+HOUSE, END_OF_HOUSE = "<!-- house: renewed by make pictures -->", "<!-- end of house -->"
 START, END = "<!-- keys: renewed by make pictures -->", "<!-- end of keys -->"
 
 
@@ -30,10 +32,26 @@ def main() -> None:
         _save("section", figures_edge.section(faired, figures_edge.places(faired)[0]))
         _save("trade", figures.trade(swept, swept.usual_candidates, swept.verdict))
     (PICTURES / "page.png").write_bytes(_page(swept))
-    readme = ROOT / "README.md"
-    text = readme.read_text(encoding="utf-8")
-    table = f"{START}\n\n{keys.markdown()}\n\n{END}"
-    readme.write_text(re.sub(f"{START}.*?{END}", lambda _: table, text, flags=re.DOTALL), encoding="utf-8")
+    _between(ROOT / "README.md", START, keys.markdown(), END)
+    _between(ROOT / "DEVELOPERS.md", HOUSE, house(), END_OF_HOUSE)
+
+
+def house() -> str:
+    """Every module of the three rooms with the first line of its docstring."""
+    lines = []
+    for room in ("shop", "geom", "export"):
+        lines += [f"**`{room}/`**", ""]
+        for path in sorted((ROOT / room).glob("*.py")):
+            said = ast.get_docstring(ast.parse(path.read_text(encoding="utf-8"))) or ""
+            lines.append(f"- `{path.name}`: {said.splitlines()[0]}")
+        lines.append("")
+    return "\n".join(lines).replace("- `__init__.py`: ", "").rstrip()
+
+
+def _between(path: Path, start: str, content: str, end: str) -> None:
+    text = path.read_text(encoding="utf-8")
+    whole = f"{start}\n\n{content}\n\n{end}"
+    path.write_text(re.sub(f"{start}.*?{end}", lambda _: whole, text, flags=re.DOTALL), encoding="utf-8")
 
 
 def _save(name: str, made: Figure) -> None:
