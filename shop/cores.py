@@ -142,7 +142,7 @@ def _region(job: Job, stated: Core) -> Region:
     """What the core fills: its face beside the web stands off by the bond line."""
     if stated.region == "whole":
         ends = stated.ends or (job.record.wing.stations[0].y, job.record.wing.stations[-1].y)
-        return Region("whole", ends, to=stated.to, least=stated.least_thickness)
+        return Region("whole", ends, to=stated.to, least=stated.least)
     bond = job.record.web.bond if stated.bond is None else stated.bond
     face, away = (job.face("front"), -bond) if stated.region == "nose" else (job.face("rear"), bond)
     return Region(
@@ -151,7 +151,7 @@ def _region(job: Job, stated: Core) -> Region:
         job.plane_at(job.cant),
         Along(face.s, face.value + away),
         stated.to,
-        stated.least_thickness,
+        stated.least,
     )
 
 

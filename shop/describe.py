@@ -17,6 +17,8 @@ from .weigh import amount, broken_limits, masses
 from .wording import degrees
 
 STEEP = 15.0  # degrees of bevel from which a saw cut is doubtful
+SMALL, LARGE = 40.0, 4000.0  # mm of chord beyond which the unit is doubtful
+THICK_BOND = 1.5  # mm
 SHARP = 4.0  # degrees by which the skin may break at a station
 CLEAR = 3.0  # skin thicknesses a web keeps from either edge of the section
 
@@ -180,6 +182,7 @@ def doubts(job: Job) -> tuple[str, ...]:
     return (
         *_washout_doubts(job),
         *_kink_doubts(job),
+        *_size_doubts(job),
         *_section_doubts(job),
         *_edge_doubts(job),
         *_bevel_doubts(job),
@@ -221,6 +224,33 @@ def _edge_doubts(job: Job) -> list[str]:
         f"less than {CLEAR:g} skin thicknesses"
         for name, (room, y) in nearest.items()
     ]
+
+
+def _size_doubts(job: Job) -> list[str]:
+    """Figures that are more likely a slip of the pen, or of the unit, than meant."""
+    stated, words = job.record.web, job.wording
+    said = []
+    chord = max(s.chord for s in job.record.wing.stations)
+    if not SMALL <= chord <= LARGE:
+        said.append(f"the largest chord is {words.length(chord)}: is that the unit that is meant?")
+    survey = job.web.survey
+    low = float((survey.seat["top"] - survey.seat["bottom"]).min())
+    if stated.thickness > low:
+        said.append(
+            f"the web's sheet, {words.length(stated.thickness)}, is thicker than the web is high, {words.length(low)}"
+        )
+    foam = job.stock.find(stated.foam, Foam)
+    sheets = foam.sheets_in if words.units == "in" else foam.sheets_mm
+    if not any(abs(stated.thickness - sheet) < 0.02 * sheet for sheet in sheets):
+        near = min(sheets, key=lambda sheet: abs(sheet - stated.thickness))
+        said.append(
+            f"{foam.name} is not usual in {words.length(stated.thickness)}; the nearest is {words.length(near)}"
+        )
+    if stated.bond > THICK_BOND:
+        said.append(
+            f"a bond line of {words.length(stated.bond)} is thick: fill what is beyond {words.length(THICK_BOND)}"
+        )
+    return said
 
 
 def _kink_doubts(job: Job) -> list[str]:

@@ -9,6 +9,7 @@ from ..geom.straight import Miss
 from .cores import HOT_WIRE, BuiltCore
 from .job import Job
 
+FAR_OFF = 1.0  # mm of straight-cut error from which a core is doubtful
 _FLIMSY = 3.0  # mm, a template's tail thinner than this bends under the wire
 
 
@@ -34,7 +35,7 @@ def _core(job: Job, made: BuiltCore) -> str:
     words, count = job.wording, len(made.bays)
     bays = "1 bay" if count == 1 else f"{count} bays"
     return (
-        f"{made.number} {made.stated.region}, rib {words.plain(made.bounds[0])} to {words.plain(made.bounds[-1])}, "
+        f"{made.number} {made.stated.region}, y {words.plain(made.bounds[0])} to {words.plain(made.bounds[-1])}, "
         f"{made.foam.name}, {words.mass(made.mass)}: {bays}, the straight cut {miss_words(job, made.worst)}"
     )
 
@@ -55,7 +56,7 @@ def _bay(job: Job, made: BuiltCore, index: int) -> str:
     digits = 2 if words.units == "in" else 1
     block = " x ".join(words.column(v, digits) for v in (bay.length, wide, high))
     return (
-        f"{index + 1}: rib {words.column(bay.ends[0].y, digits)} to {words.column(bay.ends[1].y, digits)}, "
+        f"{index + 1}: y {words.column(bay.ends[0].y, digits)} to {words.column(bay.ends[1].y, digits)}, "
         f"block {block} {words.units}, {miss_words(job, made.misses[index])}"
     )
 
@@ -83,6 +84,9 @@ def doubts(job: Job) -> list[str]:
         if made.region.kind != "nose" and made.region.to == 1.0 and made.stated.passes == "one" and tail < _FLIMSY:
             thin = job.wording.length(tail)
             out.append(f'{where}: its templates\' tails are only {thin} thick, think of passes = "separate"')
+        if abs(made.worst.off) > FAR_OFF:
+            miss = miss_words(job, made.worst)
+            out.append(f"{where}: the straight cut is {miss}: think of more bays, or state a tolerance in their place")
         step = _step(job, made)
         if step > 0.05:
             out.append(

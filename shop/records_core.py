@@ -90,14 +90,21 @@ class Core(Record):
     passes: Literal["one", "separate"] = Field(
         default="one", description='upper and lower side cut with "one" template or with "separate" ones'
     )
-    least_thickness: Positive = Field(
-        default=1.0, description="the thinnest foam at the trailing edge that is worth cutting, a length above 0"
+    least_thickness: Positive | None = Field(
+        default=None,
+        description="the thinnest foam at the trailing edge that is worth cutting, a length above 0; the wider kerf, "
+        "and at least 1 mm, unless stated",
     )
     bond: NotNegative | None = Field(
         default=None, description="the bond line between core and web, a length of 0 or more; the web's unless stated"
     )
     runway: Positive = Field(default=30.0, description="how far templates reach out of the block, a length above 0")
     margin: NotNegative = Field(default=5.0, description="the foam left round the core in its block, a length")
+
+    @property
+    def least(self) -> float:
+        """The thinnest foam that is cut, mm."""
+        return max(1.0, *self.kerf) if self.least_thickness is None else self.least_thickness
 
     @model_validator(mode="after")
     def _divided(self) -> Self:

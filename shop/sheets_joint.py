@@ -59,10 +59,10 @@ def joint_marks(job: Job, view: View, layout: Layout, inside: shapely.Polygon) -
 
 def _name_tube(job: Job, tube: Tube, view: View, layout: Layout, inside: shapely.Polygon) -> None:
     """Say beside its lines, or beyond the web's edge where there is no room, what the tube is and how wide it lies."""
-    text, angle = f"pin tube {job.wording.length(tube.across)}", 90.0 if tube.start[0] == tube.stop[0] else 0.0
+    text = f"pin tube {job.wording.length(tube.across)}, wrapped"
     (x0, y0), (x1, y1) = (f(view.on(tube.outline()), axis=0) for f in (np.min, np.max))
     share = 0.5 + 0.45 * np.linspace(0.0, 1.0, 21)[:, None] * [1.0, -1.0]
-    if angle:
+    if tube.start[0] == tube.stop[0]:
         rows = y0 + (y1 - y0) * share.ravel()
         spots = [Spot(x, float(y), "middle", 90.0) for x in (x1 + 4.0, x0 - 1.5, x1 + 7.0, x0 - 4.5) for y in rows]
     else:

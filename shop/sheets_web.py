@@ -194,8 +194,8 @@ def _write_limit(job: Job, view: View, layout: Layout, limit: tuple[Side, Run, R
 
 
 def _write_beyond(view: View, layout: Layout, side: Side, text: str, places: list[Place]) -> None:
-    """Write a text beyond the ticks' own figures at one of the places (s, shift on the sheet, anchor), or further out."""
-    outwards, wide = (1.0, lettering.width(text, PLAIN)) if side == "top" else (-1.0, lettering.width(text, PLAIN))
+    """Write a text beyond the ticks' own figures at the first of the places with room, or further out."""
+    outwards, wide = 1.0 if side == "top" else -1.0, lettering.width(text, PLAIN)
     for row in range(12):
         far = _BEYOND + row * _LINE * PLAIN + (PLAIN if side == "bottom" else 0.0)
         spots = []
@@ -214,11 +214,12 @@ def _directions(job: Job, view: View, layout: Layout, inside: shapely.Polygon) -
         f"TIP y {y2}": (view.face.bottom[-1], view.face.top[-1], 1.0),
     }
     for text, (low, high, outwards) in ends.items():
-        s = min(low[0], high[0]) - 3.0 if outwards < 0 else max(low[0], high[0]) + 3.0
-        # Baseline on the side away from the end, whichever way the face is looked at.
-        x = view.sense * s + (PLAIN if view.sense * outwards > 0 else 0.0)
+        s = min(low[0], high[0]) if outwards < 0 else max(low[0], high[0])
+        # Baseline on the side away from the end, whichever way the face is looked at; past the figures of a low end.
+        across, aside = view.sense * outwards, (PLAIN if view.sense * outwards > 0 else 0.0)
         middle = (low[1] + high[1]) / 2.0
-        layout.write(Label(text, x, middle, PLAIN, 90.0, "middle"))
+        spots = [Spot(view.sense * s + across * d + aside, middle, "middle", 90.0) for d in np.arange(3.0, 40.0, 2.0)]
+        layout.put(text, spots, height=PLAIN)
     strokes: list[Stroke] = []
     start, stop = view.face.top[0, 0], view.face.top[-1, 0]
     for wanted in np.arange(start + 60.0, stop - 20.0, 400.0):
@@ -234,7 +235,7 @@ def _arrow_beside(view: View, layout: Layout) -> list[Stroke]:
     """The arrow that says which edge is up, beside the ROOT end of a web too low to hold it."""
     (s, low), (other, high) = view.face.bottom[0], view.face.top[0]
     found = (
-        layout.put_up_arrow(view.sense * (min(s, other) - d), (low + high) / 2.0) for d in np.arange(14.0, 60.0, 3)
+        layout.put_up_arrow(view.sense * (min(s, other) - d), (low + high) / 2.0) for d in np.arange(14.0, 80.0, 3)
     )
     return next((arrow for arrow in found if arrow), [])
 
@@ -306,7 +307,8 @@ def _notes(job: Job, face: Face) -> list[str]:
     return [
         f"{words.length(stated.thickness)} {stated.foam}, cant {degrees(np.degrees(job.cant))}, "
         f"bond line {words.length(stated.bond)}",
-        f"As seen from the {face.name}; pins through the {pin_diameter(job):g} mm holes register it with the other",
+        f"As seen from the {face.name}; pins through the {pin_diameter(job):g} mm holes register it with the "
+        "other face",
         f"{edges[stated.edge][0].upper()}{edges[stated.edge][1:]}",
         f"At each tick: bevel of the skin, positive where the edge rises aft; s and y in {words.length_unit}",
         *strip_notes(job),

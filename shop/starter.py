@@ -70,7 +70,7 @@ _FIGURES: dict[Units, dict[str, str]] = {
     },
     "in": {
         "chord0": "19", "chord1": "16", "chord2": "10", "y1": "36", "y2": "72", "le1": "6.5", "le2": "13.5",
-        "skin": "0.04", "end": "70", "web": '"5/16 in"', "bond": "0.01", "gap": "0.04",
+        "skin": "0.04", "end": "70", "web": '"1/4 in"', "bond": "0.01", "gap": "0.04",
     },
 }  # fmt: skip
 

@@ -164,8 +164,8 @@ class _Web:
         return (
             f"scarf 1 in {(high - low) / self.job.web.plain:g}: plane the {planed} face ({sides[planed]}) "
             f"from the line s {words.plain(line)} to the {end} end",
-            *(() if named else (f"line s {words.plain(line)} is on the {planed} face ({sides[planed]})",)),
-            f"feather edge at the {end} end, s {words.plain(feather)}, on the {kept} face ({sides[kept]})",
+            f"feather edge: {end} end, s {words.plain(feather)}, {kept} face ({sides[kept]})",
+            *(() if named else (f"line s {words.plain(line)}: {planed} face ({sides[planed]})",)),
             f"set with the two marks {words.length(high - low + 2.0 * _MARK)} apart",
         )
 
@@ -175,7 +175,7 @@ class _Web:
         s, h = np.meshgrid(np.arange(max(x0, at - 350.0), min(x1, at + 350.0), 5.0), np.arange(y0, y1, 1.0))
         places = np.column_stack([s.ravel(), h.ravel()])
         order = np.hypot(places[:, 0] - at, places[:, 1] - self._middle(at)).argsort(kind="stable")
-        return layout.put_within(text, places[order], inside, heights=(SMALL,))
+        return layout.put_within(text, places[order], inside, heights=(SMALL, LEAST))
 
     def _middle(self, s: float) -> float:
         """The web line's height where it lies well inside the sheet at s, else mid-height."""

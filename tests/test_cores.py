@@ -226,7 +226,7 @@ def saltpan():
 def test_check_reports_cores_and_bays(saltpan):
     text = "\n".join(figures for _, figures in describe.lines(saltpan))
     for made in saltpan.cores:
-        assert f"{made.number} {made.stated.region}, rib 15 to 1370, {made.foam.name}" in text
+        assert f"{made.number} {made.stated.region}, y 15 to 1370, {made.foam.name}" in text
         assert len(re.findall(r"block [\d.]+ x [\d.]+ x [\d.]+ mm", text)) == sum(len(c.bays) for c in saltpan.cores)
     assert cores.HOT_WIRE in text
     record = describe.facts(saltpan).cores

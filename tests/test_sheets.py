@@ -193,7 +193,9 @@ def test_register_holes_keep_their_room_on_a_thin_tip(tmp_path, chord, sheet, le
             spare = shapely.Point(sense * hole.x, hole.y).buffer(1.49 * hole.diameter)
             assert all(face.contains(spare) for face in faces)
             assert hole.diameter == least
-        assert any(t.text == "UP" for t in drawing.labels)
+        for word in ("UP", "ROOT y 5", "TIP y 690"):
+            assert any(t.text == word for t in drawing.labels)
+        assert not any(a.box().intersects(b.box()) for a, b in combinations(drawing.labels, 2))
 
 
 def test_a_web_too_low_for_its_arrow_has_it_beside_its_root(tmp_path):
@@ -206,3 +208,14 @@ def test_a_web_too_low_for_its_arrow_has_it_beside_its_root(tmp_path):
         assert not up.box().intersects(ring)
         assert up.box().distance(root.box()) < 10.0
         assert any("FRONT face" in t.text or "REAR face" in t.text for t in drawing.labels)
+
+
+def test_the_joints_tube_and_the_strips_turns_are_named():
+    job = jobs.load(EXAMPLES / "highmoor.toml")
+    for drawing in web_blank(job):
+        texts = [t.text for t in drawing.labels]
+        assert f"pin tube {job.wording.length(job.tube.across)}, wrapped" in texts
+        # the shortest strip of each edge lies furthest from the skin: it goes on the web first
+        for side in web.SIDES:
+            shortest = min((layer for layer in job.layers if layer.side == side), key=lambda layer: layer.length)
+            assert any(t.startswith(f"layer {shortest.number} ") and t.endswith("laid first") for t in texts)
