@@ -53,6 +53,13 @@ class Loft:
         return np.unique(inner[(inner >= self.y[0]) & (inner <= self.y[-1])])
 
     @cached_property
+    def breaks(self) -> Array:
+        """The knots at which the surface has a kink, its slope along the span not being the same on both sides."""
+        t = np.array([-0.8, -0.5, -0.2, 0.2, 0.5, 0.8])[:, None]
+        before, after = (self.outer(t, self.knots, at)[2] for at in (np.nextafter(self.knots, -np.inf), self.knots))
+        return self.knots[np.abs(after - before).max(axis=(0, 2)) > 1e-9]
+
+    @cached_property
     def _coef(self) -> Array:
         return np.stack([s.coef for s in self.sections])
 

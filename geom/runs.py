@@ -57,12 +57,15 @@ def _run_costs(costs: Array, aim: Aim) -> tuple[Array, NDArray[np.intp]]:
     angles, count = costs.shape
     best = np.full((count + 1, count + 1), np.inf)
     which = np.zeros((count + 1, count + 1), dtype=np.intp)
+    total = np.concatenate([np.zeros((angles, 1)), np.cumsum(costs, axis=1)], axis=1)
     block = max(1, _BLOCK // (angles * count))  # starts taken together: a fine saw has thousands of angles
     for first in range(0, count, block):
         starts = np.arange(first, min(first + block, count))
         ahead = np.arange(count) >= starts[:, None]
-        from_i = np.where(ahead, costs[:, None, :], 0.0)
-        grown = np.cumsum(from_i, axis=2) if aim == "filler" else np.maximum.accumulate(from_i, axis=2)
+        if aim == "filler":
+            grown = total[:, None, 1:] - total[:, starts, None]
+        else:
+            grown = np.maximum.accumulate(np.where(ahead, costs[:, None, :], 0.0), axis=2)
         chosen = grown.argmin(axis=0)
         which[starts, 1:] = chosen
         least = np.take_along_axis(grown, chosen[None], axis=0)[0]

@@ -272,8 +272,8 @@ def survey(
         _refuse_gaps(side, starts[side], 0.0)
         _refuse_gaps(side, stops[side], web.length)
     low, high = np.concatenate(list(starts.values())), np.concatenate(list(stops.values()))
-    kinks = _kinks(loft, web, thickness, middle)
-    corners = np.concatenate([kinks, thickness.s, *(depth[side].s for side in SIDES)])
+    kinks = [web.s_at_rib(loft.knots, 0.0, 0.0), _kinks(loft, web, thickness, middle)]
+    corners = np.concatenate([*kinks, thickness.s, *(depth[side].s for side in SIDES)])
     bounds = _bounds(float(low.min()), float(low.max()), float(high.min()), float(high.max()), corners, longest)
     places = np.empty(2 * len(bounds) - 1)
     places[::2], places[1::2] = bounds, (bounds[1:] + bounds[:-1]) / 2.0
@@ -316,14 +316,14 @@ def _refuse_gaps(side: Side, found: Array, s: ArrayLike) -> None:
 
 
 def _kinks(loft: Loft, web: Plane, thickness: Along, middle: Along) -> Array:
-    """Where the web's two faces and two edges first and last cross each knot of the loft.
+    """Where the web's two faces and two edges first and last cross each break of the loft.
 
     On a swept or canted web they cross a rib plane at different s: the kink there gets a short cell of its own.
     """
-    s = web.s_at_rib(loft.knots, 0.0, 0.0)
+    s = web.s_at_rib(loft.breaks, 0.0, 0.0)
     n = middle(s)[:, None] + thickness(s)[:, None] * np.array([-0.5, 0.5])
     heights = np.stack([edge(loft, web, s[:, None], n, side).h for side in SIDES], axis=-1)
-    crossings = web.s_at_rib(loft.knots[:, None, None], np.nan_to_num(heights), n[..., None])
+    crossings = web.s_at_rib(loft.breaks[:, None, None], np.nan_to_num(heights), n[..., None])
     return np.concatenate([crossings.min(axis=(1, 2)), crossings.max(axis=(1, 2))])
 
 

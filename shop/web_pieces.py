@@ -146,10 +146,11 @@ class _Web:
 
     def _name_line(self, low: float, high: float, outer: bool, inside: shapely.Polygon, layout: Layout) -> bool:
         """Write along the line that a scarf is planed from which face it is on, if there is room for it."""
-        line, text = (high, "REAR, this face") if outer else (low, "FRONT, other face")
+        line, texts = (high, ("REAR, this face", "REAR")) if outer else (low, ("FRONT, other face", "FRONT"))
         offs, rows = (-2.0, 4.6, -3.0, 5.6), np.linspace(inside.bounds[1], inside.bounds[3], 40)
         spots = [Spot(line + off, float(h), "middle", 90.0) for off in offs for h in rows]
-        return any(layout.put(text, spots, height=height, within=inside) for height in (SMALL, LEAST))
+        tries = ((text, height) for text in texts for height in (SMALL, LEAST))
+        return any(layout.put(text, spots, height=height, within=inside) for text, height in tries)
 
     def _scarf_texts(self, low: float, high: float, outer: bool, named: bool) -> tuple[str, ...]:
         """What is planed, on the piece towards the tip (`outer`) or towards the root of a scarf.
