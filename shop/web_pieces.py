@@ -20,7 +20,6 @@ from .strips import ramp
 
 Array = NDArray[np.float64]
 
-PIN = 3.0  # mm, diameter of the register holes
 LEAST, SMALL, PLAIN = 2.2, 2.5, 3.0  # heights of lettering
 _CLEAR = 5.0  # mm that a scarf keeps from what ends or is pinned near it
 _MARK = 40.0  # mm from a scarf to the marks it is set by
@@ -69,7 +68,8 @@ def web_pieces(job: Job, cutting: Cutting, longest: float, hand: Hand) -> list[P
 
 def _keep_off(job: Job) -> list[tuple[float, float]]:
     """Stretches of s that no scarf may touch: ends of strips, the joint, register pins, changes of the saw."""
-    off = [(float(s) - PIN / 2.0, float(s) + PIN / 2.0) for s, _ in job.register]
+    pin = blank.register_diameter(*job.web.faces, job.register) / 2.0
+    off = [(float(s) - pin, float(s) + pin) for s, _ in job.register]
     if job.record.caps is not None:
         off += [(layer.stop, layer.stop + ramp(job.record.caps)) for layer in job.layers if not layer.whole]
     if job.joint is not None and job.tube is not None:
@@ -99,11 +99,12 @@ class _Web:
         inside, layout = shapely.Polygon(ring), Layout()
         layout.keep_clear(inside.exterior)
         lines = [line for face in (self.front, self.rear) for line in self._face_lines(face, whole, inside)]
-        holes = tuple(Hole(x, y, PIN) for x, y in self.job.register.tolist() if inside.contains(shapely.Point(x, y)))
+        pin = blank.register_diameter(*self.job.web.faces, self.job.register)
+        holes = tuple(Hole(x, y, pin) for x, y in self.job.register.tolist() if inside.contains(shapely.Point(x, y)))
         for line in lines:
             layout.keep_clear(shapely.LineString(line))
         for hole in holes:
-            layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(PIN / 2.0 + 0.5))
+            layout.keep_clear(shapely.Point(hole.x, hole.y).buffer(pin / 2.0 + 0.5))
         scarfs = []
         for low, high in joints:
             lines += self._scarf_lines(low, high, inside, layout)

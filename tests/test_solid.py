@@ -104,8 +104,8 @@ def test_web_and_filler_of_every_edge_cut(job, treatment):
         assert is_closed(plain(filler))
         assert crossings(filler) == 0
         assert filler.volume == pytest.approx(cut.filler, rel=1e-3)
-        # a mesh kernel finds no overlap with the web beyond what facets 10 mm long leave
-        assert (whole ^ kernel_solid(filler)).volume() < 2e-4 * cut.survey.weight[cut.side].sum()
+        # a mesh kernel finds less overlap with the web than the film that keeps the filler in one piece
+        assert (whole ^ kernel_solid(filler)).volume() < solid.FILM * cut.survey.weight[cut.side].sum()
 
 
 def kernel_solid(mesh):
