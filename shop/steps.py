@@ -43,10 +43,11 @@ def steps(job: Job) -> list[Step]:
 
 def _sheet(job: Job) -> Step:
     words, web = job.wording, job.record.web
-    outline = np.concatenate([face.outline() for face in job.web.faces])
-    long, high = np.ptp(outline, axis=0)
     digits = 1 if words.units == "in" else 0
-    cut = f"cut from a piece {words.column(float(long), digits)} x {words.column(float(high), digits)} {words.units}"
+    sheets = [c for c in job.cut_list if c.piece.startswith("Web sheet")]
+    sizes = " and ".join(f"{words.column(c.length, digits)} x {words.column(c.width, digits)}" for c in sheets)
+    count = f"{len(sheets)} pieces, scarfed," if len(sheets) > 1 else "a piece"
+    cut = f"cut from {count} {sizes} {words.units}"
     faced = ""
     if web.facing is not None:
         faced = f", {_count(web.facing.layers, 'layer')} of {web.facing.cloth or 'cloth'} on each face"
@@ -105,8 +106,8 @@ def _runs(job: Job, side: Side) -> Iterator[str]:
 def _filler(job: Job) -> Step:
     words, web = job.wording, job.record.web
     grams, allowance = job.masses.filler, (job.record.cutting or Cutting()).allowance
-    volume = grams / job.stock.find(web.filler, Filler).density * 1e3
-    more = f"{volume:.2g} cm³ for one panel; mix {words.mass(2.0 * grams * (1.0 + allowance))} for both hands, "
+    volume, unit = words.volume_bought(grams / job.stock.find(web.filler, Filler).density * 1e6)
+    more = f"{volume:.2g} {unit} for one panel; mix {words.mass(2.0 * grams * (1.0 + allowance))} for both hands, "
     return Step("Filler", f"{words.mass(grams)} {web.filler}", (f"{more}{100.0 * allowance:.0f} % to spare",))
 
 

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from timing import EXAMPLES, best
 
-from wrywing.shop import sheets, weigh
 from wrywing.shop import job as jobs
+from wrywing.shop import sheets, weigh
 
 
 def reckoned() -> jobs.Job:
