@@ -57,7 +57,7 @@ class Loft:
         """The knots at which the surface has a kink, its slope along the span not being the same on both sides."""
         t = np.array([-0.8, -0.5, -0.2, 0.2, 0.5, 0.8])[:, None]
         before, after = (self.outer(t, self.knots, at)[2] for at in (np.nextafter(self.knots, -np.inf), self.knots))
-        return self.knots[np.abs(after - before).max(axis=(0, 2)) > 1e-9]
+        return np.asarray(self.knots[np.abs(after - before).max(axis=(0, 2)) > 1e-9])
 
     @cached_property
     def _coef(self) -> Array:
