@@ -133,8 +133,43 @@ def edge(loft: Loft, web: Plane, s: ArrayLike, n: ArrayLike, side: Side, depth: 
         mm, any shapes that broadcast.
     side
         The web's top or bottom edge.
+
+    Notes
+    -----
+    Where the skin breaks at a station, the surface of either bay is carried on past it, and the one that lies further
+    inside an outward break, or less far inside an inward one, is the surface: they meet where the normals say.
     """
-    return _meet(loft, web, web.s, np.asarray(s, dtype=float), s, n, side, depth)
+    s, n, depth = np.broadcast_arrays(*(np.asarray(v, dtype=float) for v in (s, n, depth)))
+    found = _meet(loft, web, web.s, s, s, n, side, depth)
+    inner = loft.breaks[(loft.breaks > loft.y[0]) & (loft.breaks < loft.y[-1])]
+    if not inner.size:
+        return found
+    y = web.point(s, np.nan_to_num(found.h), n)[..., 1]
+    nearest = inner[np.abs(y[..., None] - inner).argmin(axis=-1)]
+    skin = loft.skin(nearest, nearest)[0]
+    near = (np.abs(y - nearest) < skin + np.abs(depth)) & np.isfinite(found.h)
+    if near.any():
+        found.h[near] = _across_break(loft, web, s[near], n[near], side, depth[near], nearest[near], found.t[near])
+    return found
+
+
+def _across_break(
+    loft: Loft, web: Plane, s: Array, n: Array, side: Side, depth: Array, station: Array, t: Array
+) -> Array:
+    """Height (k,) near breaks of the skin, from the surfaces of the bays on both sides of each place's `station`."""
+    order = np.sign(web.s[1])  # s runs towards the larger y, or on a left-hand panel away from it
+    bays = (np.nextafter(station, -order * np.inf), np.nextafter(station, order * np.inf))
+    before, after = (_meet(loft, web, web.s, s, s, n, side, depth, bay).h for bay in bays)
+    slope_before, slope_after = (_slope(loft, web, t, station, bay) for bay in bays)
+    both = np.where(slope_after < slope_before, np.minimum(before, after), np.maximum(before, after))
+    return np.where(np.isnan(both), np.where(np.isnan(before), after, before), both)
+
+
+def _slope(loft: Loft, web: Plane, t: Array, y: Array, bay: Array) -> Array:
+    """dh/ds (k,) along the sheet of the outer surface of a bay, at its own coordinates (t, y)."""
+    _, by_t, by_y = loft.outer(t, y, bay)
+    s_t, s_y, n_t, n_y = by_t @ web.s, by_y @ web.s, by_t @ web.n, by_y @ web.n
+    return np.asarray(((by_t @ web.h) * n_y - (by_y @ web.h) * n_t) / (s_t * n_y - s_y * n_t))
 
 
 def end_places(loft: Loft, web: Plane, n: ArrayLike, side: Side, depth: ArrayLike = 0.0) -> tuple[Array, Array]:
@@ -156,18 +191,21 @@ def _meet(
     n: ArrayLike,
     side: Side,
     depth: ArrayLike,
+    bay: Array | None = None,
 ) -> Edge:
     """Where, over the layer n of the web, the surface under the skin is the distance `want` off in direction `along`.
 
     Newton's method on the two surface coordinates with the outer surface's tangents in place of the inner one's. Each
     round leaves about depth x curvature of the error, a few parts in a thousand under a skin. The bay that a place
-    belongs to is settled in the first rounds and then kept, so that a kink at a station cannot send it to and fro.
+    belongs to is settled in the first rounds and then kept, so that a kink at a station cannot send it to and fro;
+    unless `bay`, a y within it, says which.
     """
     s, n, depth, want = np.broadcast_arrays(*(np.asarray(v, dtype=float) for v in (s, n, depth, want)))
     share = np.clip(s / web.length, 0.0, 1.0)
     root = np.sqrt(web.line[0] + share * (web.line[1] - web.line[0]))
     t = root if side == "top" else -root
-    y = at = web.origin[1] + s * web.s[1] + n * web.n[1]
+    y = web.origin[1] + s * web.s[1] + n * web.n[1]
+    at = y if bay is None else bay
     for turn in range(_ROUNDS):
         point, by_t, by_y = loft.under_skin(t, y, depth, at)
         out = point - web.origin
@@ -175,7 +213,7 @@ def _meet(
         off = np.maximum(abs(miss_a), abs(miss_n))
         if turn > 3 and not np.any(off > _CLOSE):
             break
-        if turn < 3:
+        if turn < 3 and bay is None:
             at = point[..., 1]
         a_t, a_y, n_t, n_y = by_t @ along, by_y @ along, by_t @ web.n, by_y @ web.n
         with np.errstate(divide="ignore", invalid="ignore"):

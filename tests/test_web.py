@@ -89,6 +89,25 @@ def test_cylinder_of_elliptic_section():
     np.testing.assert_allclose(top, np.broadcast_to(wanted, top.shape), atol=1e-6)
 
 
+@pytest.mark.parametrize("turn", [0.14, -0.14])
+def test_the_inside_of_a_skin_that_breaks_at_a_station(turn):
+    # Closed form: flat plates at slopes a and b, their insides 5 mm under them square to each, meet where these cross.
+    a, b = 0.2, 0.2 + turn
+    wing = loft(slab(), [0.0, 500.0, 1000.0], z=[0.0, 500.0 * a, 500.0 * (a + b)], skin=5.0, axis=0.3)
+    plane = web.plane(wing, ends=ENDS, line=(0.3, 0.3))
+    s = np.linspace(plane.length / 2 - 20.0, plane.length / 2 + 20.0, 161)
+    for side, over in (("top", 1.0), ("bottom", -1.0)):
+        h = web.edge(wing, plane, s, 0.0, side).h
+        point = plane.point(s, h, np.zeros_like(s))
+        y, z = point[:, 1], point[:, 2]
+        plates = [
+            500.0 * a + k * (y - 500.0) + over * (10.0 - 5.0 * np.hypot(1.0, k))  # sections stand in rib planes
+            for k in (a, b)
+        ]
+        wanted = np.minimum(*plates) if b < a else np.maximum(*plates)
+        np.testing.assert_allclose(z, wanted, atol=1e-6)
+
+
 def test_edges_stop_at_the_rib_planes_on_a_swept_web():
     # Plane trigonometry: on an unskinned slab swept by phi the faces meet a rib t tan(phi) apart.
     wing = loft(slab(), ENDS, le=[0.0, 300.0], skin=0.0)
