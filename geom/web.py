@@ -158,11 +158,11 @@ def _across_break(
 ) -> Array:
     """Height (k,) near breaks of the skin, from the surfaces of the bays on both sides of each place's `station`."""
     order = np.sign(web.s[1])  # s runs towards the larger y, or on a left-hand panel away from it
-    bays = (np.nextafter(station, -order * np.inf), np.nextafter(station, order * np.inf))
-    before, after = (_meet(loft, web, web.s, s, s, n, side, depth, bay).h for bay in bays)
-    slope_before, slope_after = (_slope(loft, web, t, station, bay) for bay in bays)
+    bays = np.stack([np.nextafter(station, -order * np.inf), np.nextafter(station, order * np.inf)])
+    before, after = _meet(loft, web, web.s, s, s, n, side, np.stack([depth, depth]), bays).h
+    slope_before, slope_after = _slope(loft, web, t, station, bays)
     both = np.where(slope_after < slope_before, np.minimum(before, after), np.maximum(before, after))
-    return np.where(np.isnan(both), np.where(np.isnan(before), after, before), both)
+    return np.asarray(np.where(np.isnan(both), np.where(np.isnan(before), after, before), both))
 
 
 def _slope(loft: Loft, web: Plane, t: Array, y: Array, bay: Array) -> Array:
