@@ -19,6 +19,7 @@ SIDES: tuple[Side, Side] = ("top", "bottom")
 
 _ROUNDS = 40
 _CLOSE = 1e-9  # mm
+_REACH = 1.5  # depths under the skin from which a break of it is felt
 
 
 @dataclass(frozen=True)
@@ -136,33 +137,46 @@ def edge(loft: Loft, web: Plane, s: ArrayLike, n: ArrayLike, side: Side, depth: 
 
     Notes
     -----
-    Where the skin breaks at a station, the surface of either bay is carried on past it, and the one that lies further
-    inside an outward break, or less far inside an inward one, is the surface: they meet where the normals say.
+    Where the skin breaks, at a station, the surfaces of the bays on both sides are carried on past it until they meet:
+    the one further inside counts at an outward break, the one less far inside at an inward one. Within reach of
+    several breaks the bays are taken one after the other.
     """
     s, n, depth = np.broadcast_arrays(*(np.asarray(v, dtype=float) for v in (s, n, depth)))
     found = _meet(loft, web, web.s, s, s, n, side, depth)
-    inner = loft.breaks[(loft.breaks > loft.y[0]) & (loft.breaks < loft.y[-1])]
-    if not inner.size:
+    if not loft.breaks.size:
         return found
     y = web.point(s, np.nan_to_num(found.h), n)[..., 1]
-    nearest = inner[np.abs(y[..., None] - inner).argmin(axis=-1)]
-    skin = loft.skin(nearest, nearest)[0]
-    near = (np.abs(y - nearest) < skin + np.abs(depth)) & np.isfinite(found.h)
+    reach = _REACH * (loft.skin(y, y)[0] + np.abs(depth))
+    first, last = np.searchsorted(loft.breaks, y - reach), np.searchsorted(loft.breaks, y + reach)
+    near = last > first
     if near.any():
-        found.h[near] = _across_break(loft, web, s[near], n[near], side, depth[near], nearest[near], found.t[near])
+        places = (v[near] for v in (s, n, depth, found.t, y, first, last))
+        found.h[near] = _over_breaks(loft, web, side, *places)
     return found
 
 
-def _across_break(
-    loft: Loft, web: Plane, s: Array, n: Array, side: Side, depth: Array, station: Array, t: Array
+def _over_breaks(
+    loft: Loft, web: Plane, side: Side, s: Array, n: Array, depth: Array, t: Array, y: Array, first: Array, last: Array
 ) -> Array:
-    """Height (k,) near breaks of the skin, from the surfaces of the bays on both sides of each place's `station`."""
-    order = np.sign(web.s[1])  # s runs towards the larger y, or on a left-hand panel away from it
-    bays = np.stack([np.nextafter(station, -order * np.inf), np.nextafter(station, order * np.inf)])
-    before, after = _meet(loft, web, web.s, s, s, n, side, np.stack([depth, depth]), bays).h
-    slope_before, slope_after = _slope(loft, web, t, station, bays)
-    both = np.where(slope_after < slope_before, np.minimum(before, after), np.maximum(before, after))
-    return np.asarray(np.where(np.isnan(both), np.where(np.isnan(before), after, before), both))
+    """Height (k,) at places near y, t of the surface, within reach of the breaks `first` to `last` - 1."""
+    bounds = np.concatenate([[-np.inf], loft.breaks, [np.inf]])
+    outwards = web.s[1] > 0.0  # s runs towards the larger y, on a left-hand panel away from it
+
+    def surface(bay: Array) -> Array:
+        inside = np.clip(y, bounds[bay], np.nextafter(bounds[bay + 1], -np.inf))
+        return _meet(loft, web, web.s, s, s, n, side, depth, inside).h
+
+    h = surface(first if outwards else last)
+    for i in range(int((last - first).max())):
+        more = first + i < last
+        before, after = (first + i, first + i + 1) if outwards else (last - i, last - i - 1)
+        at = loft.breaks[np.clip(np.minimum(before, after), 0, len(loft.breaks) - 1)]
+        sides = (np.nextafter(at, -np.inf), at)
+        slope, next_slope = (_slope(loft, web, t, at, bay) for bay in (sides if outwards else sides[::-1]))
+        beyond = surface(np.clip(after, 0, len(loft.breaks)))
+        nearer = np.where(next_slope < slope, np.fmin(h, beyond), np.fmax(h, beyond))
+        h = np.where(more, nearer, h)
+    return h
 
 
 def _slope(loft: Loft, web: Plane, t: Array, y: Array, bay: Array) -> Array:

@@ -254,7 +254,7 @@ def _size_doubts(job: Job) -> list[str]:
 
 
 def _kink_doubts(job: Job) -> list[str]:
-    """Stations where the skin breaks: close to one, the edge is off by a part of depth x break x slope."""
+    """Stations where the skin breaks: a laminate rounds the corner that the reckoned edge has there."""
     loft, plane = job.loft, job.web.plane
     y1, y2 = job.record.web.ends
     said = []

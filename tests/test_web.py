@@ -6,6 +6,7 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
+import shapely
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from wings import Bent, ellipse, loft, slab, upside_down
@@ -106,6 +107,29 @@ def test_the_inside_of_a_skin_that_breaks_at_a_station(turn):
         ]
         wanted = np.minimum(*plates) if b < a else np.maximum(*plates)
         np.testing.assert_allclose(z, wanted, atol=1e-6)
+
+
+@pytest.mark.parametrize(
+    ("y", "z"),
+    [
+        ([498.0, 502.0], [0.0, 3.0]),  # a step
+        ([498.0, 500.0, 502.0], [0.0, 1.5, 1.5]),  # a corner in two breaks, of which the depth leaves nothing
+        ([499.5, 500.5], [2.0, 0.0]),
+        ([497.0, 500.0, 503.0], [0.0, -1.0, 0.0]),  # a dent
+    ],
+)
+@pytest.mark.parametrize("over", [1.0, -1.0])
+def test_the_inside_of_a_skin_with_breaks_close_together(y, z, over):
+    # Independent: shapely offsets the skin's trace in the web plane with mitred corners.
+    y, z = [0.0, *y, 1000.0], over * np.array([z[0], *z, z[-1]])
+    wing = loft(slab(), y, z=z, skin=1.5, axis=0.3)
+    plane = web.plane(wing, ends=ENDS, line=(0.3, 0.3))
+    s = np.linspace(plane.length / 2 - 12.0, plane.length / 2 + 12.0, 241)
+    side = "top" if over > 0 else "bottom"
+    at = plane.point(s, web.edge(wing, plane, s, 0.0, side, 0.5).h, np.zeros_like(s))
+    skin = shapely.LineString(np.column_stack([y, z + 10.0 * over]))
+    inside = shapely.get_coordinates(shapely.offset_curve(skin, -2.0 * over, join_style="mitre", mitre_limit=20.0))
+    np.testing.assert_allclose(at[:, 2], np.interp(at[:, 1], *inside.T), atol=1e-6)
 
 
 def test_edges_stop_at_the_rib_planes_on_a_swept_web():
