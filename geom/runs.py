@@ -5,12 +5,10 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
-from .seat import Aim, Run, Survey, clearance, rest
+from .seat import Aim, Run, Survey
 from .web import Side
 
 Array = NDArray[np.float64]
-
-_BLOCK = 4_000_000  # numbers held at once
 
 
 def saw_angles(survey: Survey, side: Side, step: float) -> Array:
@@ -46,10 +44,11 @@ def best_runs(survey: Survey, side: Side, *, runs: int, angles: Array, aim: Aim 
 
 def _cell_costs(survey: Survey, side: Side, angles: Array, aim: Aim) -> Array:
     """(A, C) filler of every cell at every angle, or its largest gap."""
-    seat, n, weight = survey.seat[side], survey.n, survey.weight[side]
-    line = np.broadcast_to(np.tan(angles)[:, None, None], (len(angles), *survey.s.shape))
-    room = clearance(seat, n, rest(seat, n, line, side), line, side)
-    return np.asarray(np.einsum("acpm,cpm->ac", room, weight) if aim == "filler" else room.max(axis=(2, 3)))
+    free = survey.seat[side] - survey.n * np.tan(angles)[:, None, None, None]
+    if aim == "gap":
+        return np.asarray(np.ptp(free, axis=-1).max(axis=-1))
+    room = free - free.min(axis=-1, keepdims=True) if side == "top" else free.max(axis=-1, keepdims=True) - free
+    return np.einsum("acpm,cpm->ac", room, survey.weight[side])
 
 
 def _run_costs(costs: Array, aim: Aim) -> tuple[Array, NDArray[np.intp]]:
@@ -57,19 +56,14 @@ def _run_costs(costs: Array, aim: Aim) -> tuple[Array, NDArray[np.intp]]:
     angles, count = costs.shape
     best = np.full((count + 1, count + 1), np.inf)
     which = np.zeros((count + 1, count + 1), dtype=np.intp)
-    total = np.concatenate([np.zeros((angles, 1)), np.cumsum(costs, axis=1)], axis=1)
-    block = max(1, _BLOCK // (angles * count))  # starts taken together: a fine saw has thousands of angles
-    for first in range(0, count, block):
-        starts = np.arange(first, min(first + block, count))
-        ahead = np.arange(count) >= starts[:, None]
-        if aim == "filler":
-            grown = total[:, None, 1:] - total[:, starts, None]
-        else:
-            grown = np.maximum.accumulate(np.where(ahead, costs[:, None, :], 0.0), axis=2)
-        chosen = grown.argmin(axis=0)
-        which[starts, 1:] = chosen
-        least = np.take_along_axis(grown, chosen[None], axis=0)[0]
-        best[starts, 1:] = np.where(ahead, least, np.inf)
+    by_cell = np.ascontiguousarray(costs.T)
+    total = np.concatenate([np.zeros((1, angles)), np.cumsum(by_cell, axis=0)])
+    for first in range(count):
+        ahead = by_cell[first:]
+        grown = total[first + 1 :] - total[first] if aim == "filler" else np.maximum.accumulate(ahead, axis=0)
+        chosen = grown.argmin(axis=1)
+        which[first, first + 1 :] = chosen
+        best[first, first + 1 :] = grown[np.arange(len(chosen)), chosen]
     return best, which
 
 
