@@ -128,7 +128,14 @@ class Job(Results):
 
     def plane_at(self, angle: float) -> Plane:
         """The web plane at a cant in radians."""
-        return web.plane(self.loft, ends=self.record.web.ends, line=self.record.web.line, cant=angle)
+        if angle not in self._planes:
+            stated = self.record.web
+            self._planes[angle] = web.plane(self.loft, ends=stated.ends, line=stated.line, cant=angle)
+        return self._planes[angle]
+
+    @cached_property
+    def _planes(self) -> dict[float, Plane]:
+        return {}
 
     @cached_property
     def joint(self) -> JointEnd | None:
