@@ -69,14 +69,16 @@ class Loft:
 
     def _profile(self, t: Array, y: Array, at: Array) -> tuple[Array, ...]:
         """p, q and their derivatives by t and by y: blended at equal t, which is equal chord fraction."""
-        bay = np.clip(np.searchsorted(self.y, at, side="right") - 1, 0, len(self.y) - 2)
+        bay = np.searchsorted(self.y[1:-1], at, side="right")
         width = self.y[bay + 1] - self.y[bay]
         out = (y - self.y[bay]) / width
-        cell = np.clip(np.floor((t + 1.0) * N).astype(int), 0, 2 * N - 1)
+        cell = np.minimum(np.maximum(((t + 1.0) * N).astype(int), 0), 2 * N - 1)
         d = t + 1.0 - cell / N
-        a, b = self._coef[bay, cell], self._coef[bay + 1, cell]
-        c0, c1, c2, c3 = np.moveaxis(a + (b - a) * out[..., None], -1, 0)
-        g0, g1, g2, g3 = np.moveaxis(b - a, -1, 0)
+        a = self._coef[bay, cell]
+        change = self._coef[bay + 1, cell] - a
+        blend = a + change * out[..., None]
+        c0, c1, c2, c3 = (blend[..., i] for i in range(4))
+        g0, g1, g2, g3 = (change[..., i] for i in range(4))
         nose = self._nose[bay] + (self._nose[bay + 1] - self._nose[bay]) * out
         p = nose + (1.0 - nose) * t * t
         q = ((c3 * d + c2) * d + c1) * d + c0
@@ -115,8 +117,8 @@ class Loft:
         )
         p, q, p_t, q_t, p_y, q_y = self._profile(t, y, at)
         plan, plan_y = self.planform(y, at)
-        c, le, z0 = np.moveaxis(plan, -1, 0)
-        c_y, le_y, z0_y = np.moveaxis(plan_y, -1, 0)
+        c, le, z0 = plan[..., 0], plan[..., 1], plan[..., 2]
+        c_y, le_y, z0_y = plan_y[..., 0], plan_y[..., 1], plan_y[..., 2]
         w, w_y = self.washout(y, at)
         cos, sin = np.cos(w), np.sin(w)
         u = p - self.axis
@@ -136,7 +138,7 @@ class Loft:
     def normal(self, t: ArrayLike, y: ArrayLike, at: ArrayLike | None = None) -> Array:
         """Outward unit normals (..., 3) of the outer surface."""
         _, by_t, by_y = self.outer(t, y, at)
-        return _unit(np.cross(by_t, by_y))
+        return _normal(by_t, by_y)
 
     def under_skin(
         self, t: ArrayLike, y: ArrayLike, depth: ArrayLike = 0.0, at: ArrayLike | None = None
@@ -149,7 +151,7 @@ class Loft:
         y = np.asarray(y, dtype=float)
         skin = self.skin(y, y if at is None else np.asarray(at, dtype=float))[0]
         under = skin + np.asarray(depth, dtype=float)
-        return point - under[..., None] * _unit(np.cross(by_t, by_y)), by_t, by_y
+        return point - under[..., None] * _normal(by_t, by_y), by_t, by_y
 
     def chord_point(self, fraction: float, y: float) -> Array:
         """Point (3,) of the twisted chord line at a chord fraction."""
@@ -168,5 +170,9 @@ class Loft:
         return float(np.sum(self.planform(y, y)[0][..., 0] * weights * half))
 
 
-def _unit(v: Array) -> Array:
-    return np.asarray(v / np.sqrt(np.einsum("...i,...i->...", v, v))[..., None])
+def _normal(by_t: Array, by_y: Array) -> Array:
+    """Unit cross product of the tangents, of which d/dt has no y and d/dy has y = 1."""
+    t_x, t_z, y_x, y_z = by_t[..., 0], by_t[..., 2], by_y[..., 0], by_y[..., 2]
+    aslant = t_z * y_x - t_x * y_z
+    length = np.sqrt(t_x**2 + aslant**2 + t_z**2)
+    return np.stack([-t_z / length, aslant / length, t_x / length], axis=-1)

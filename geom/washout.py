@@ -45,8 +45,8 @@ class Piecewise:
 
     def __call__(self, y: Array, at: Array) -> tuple[Array, Array]:
         """Value and slope, each shaped like `y` with the figures' axes after it."""
-        piece = np.clip(np.searchsorted(self.knots, at, side="right") - 1, 0, len(self.knots) - 2)
-        c3, c2, c1, c0 = self.coef[:, piece]
+        piece = np.searchsorted(self.knots[1:-1], at, side="right")
+        c3, c2, c1, c0 = self.coef.take(piece, axis=1)
         d = (y - self.knots[piece]).reshape(np.shape(y) + (1,) * (self.coef.ndim - 2))
         return ((c3 * d + c2) * d + c1) * d + c0, (3.0 * c3 * d + 2.0 * c2) * d + c1
 
