@@ -16,7 +16,7 @@ from ..geom.drawing import DIGITS, Drawing, Hole, Label, Role, Stroke
 from ..shop.stock import CHECK_BARS
 from ..shop.units import MM_PER_INCH, Units
 from .furniture import LEAST_WINDOW, MARGINS, Furniture
-from .marks import CAP, begin, open_file
+from .marks import CAP, begin, in_type, open_file
 from .style import INKS, identity, one_line, title
 from .tiles import Paper, Shapes, Tile, clip, plan
 
@@ -170,7 +170,7 @@ def _polyline(points: list[list[float]]) -> list[str]:
 
 def _unseen(canvas: Canvas, label: Label) -> None:
     """Set the label's words in invisible type over its strokes (ISO 32000-1, 9.3.6: mode 3)."""
-    words = lettering.plain(label.text)
+    words = in_type(label.text)
     size = label.height / CAP
     c, s = np.cos(np.radians(label.angle)), np.sin(np.radians(label.angle))
     text = canvas.beginText()

@@ -87,9 +87,10 @@ class Label:
         return lettering.split(self.text, np.round(placed, DIGITS) + 0.0)
 
     def box(self) -> shapely.Polygon:
-        """Rectangle that the text covers, from the foot of its descenders to the top of its brackets."""
+        """Rectangle that the text covers: its `lettering.width` by its `lettering.extent`."""
         long = lettering.width(self.text, self.height)
-        corners = np.array([[0.0, -0.34], [1.0, -0.34], [1.0, 1.2], [0.0, 1.2]]) * [long, self.height]
+        low, high = lettering.extent(self.text)
+        corners = np.array([[0.0, low], [1.0, low], [1.0, high], [0.0, high]]) * [long, self.height]
         return shapely.Polygon(self.place(corners))
 
 

@@ -55,8 +55,9 @@ class Layout:
         taken = shapely.STRtree(self._taken)
         for height in heights:
             half = lettering.width(text, height) / 2.0 + _AIR
+            low, high = (height * by for by in lettering.extent(text))
             x, y = places.T
-            boxes = shapely.box(x - half, y - 0.34 * height - _AIR, x + half, y + 1.2 * height + _AIR)
+            boxes = shapely.box(x - half, y + low - _AIR, x + half, y + high + _AIR)
             room = shapely.contains(within, boxes)
             room[taken.query(boxes, predicate="intersects")[0]] = False
             if room.any():

@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 from wrywing.geom import lettering
 from wrywing.geom.drawing import Drawing, Hole, Label, Role, Stroke, thin
 
-PRINTABLE = st.text(st.characters(codec="ascii", categories=["L", "N", "P", "S"]), min_size=1, max_size=12)
+PRINTABLE = st.text(st.characters(codec="latin-1", categories=["L", "N", "P", "S"]), min_size=1, max_size=12)
 LABELS = st.builds(
     Label,
     text=PRINTABLE,
@@ -94,6 +94,21 @@ def test_points_and_commas_stand_on_the_line():
 )
 def test_text_falls_back_to_what_can_be_drawn(text, drawn):
     assert lettering.plain(text) == drawn
+
+
+@pytest.mark.parametrize("letter", [*"äéñůčőÄÉÑŮČŐâàīğż", "a\u0302\u0301"])
+def test_an_accent_stands_clear_over_its_letter(letter):
+    bare, drawn = (lettering.strokes(t, 1.0) for t in (lettering.plain(letter), letter))
+    letter_top = max(line[:, 1].max() for line in bare if line[:, 1].min() < 0.6)  # an i without its dot
+    assert max(line[:, 1].min() for line in drawn) > letter_top
+    assert lettering.width(letter, 3.0) == lettering.width(lettering.plain(letter), 3.0)
+
+
+@pytest.mark.parametrize("letter", "çąșạŞ")
+def test_an_accent_hangs_below_its_letter(letter):
+    drawn, bare = (np.vstack(lettering.strokes(t, 1.0))[:, 1] for t in (letter, lettering.plain(letter)))
+    assert drawn.min() < bare.min()
+    assert drawn.max() == bare.max()
 
 
 @given(PRINTABLE, PRINTABLE)

@@ -16,7 +16,7 @@ from samples import A4, LETTER, ROLL, WING, Sheet, blank, card, core
 
 from wrywing.export import pdf, tiles
 from wrywing.export.pdf import Print
-from wrywing.geom.drawing import Drawing, Hole, Role, Stroke
+from wrywing.geom.drawing import Drawing, Hole, Label, Role, Stroke
 from wrywing.shop import stock
 
 MM = 25.4 / 72.0  # published: ISO 32000-1, 8.3.2.3, user space unit
@@ -360,3 +360,9 @@ def test_whatever_is_drawn_shows_somewhere(ends):
         shown += [shapely.LineString(p) for _, parts in tiles.clip(shapes, tile.window) for p in parts]
     for shape in shapes:
         assert off(shape, shapely.union_all(shown)) < 0.005
+
+
+def test_lettering_can_be_searched_for_with_its_accents():
+    lettered = replace(card(), labels=(Label("Flügel, François", 5.0, 5.0, 4.0),))
+    with pdfplumber.open(io.BytesIO(pdf.render(lettered, Print(A4)))) as file:
+        assert any("Flügel, François" in page.extract_text() for page in file.pages)
