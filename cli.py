@@ -356,16 +356,27 @@ def _cants(job: Job, cant: str | None) -> list[float | str]:
             cants.append(part)
             continue
         if part.startswith("square at "):
-            cants.append(math.degrees(job.square_at(_length(job, part.removeprefix("square at "), "--cant"))))
-            continue
-        try:
-            angle = units.angle(part)
-        except ValueError as fault:
-            raise UsageError(f'--cant: wanted "square at Y", "least filler", "least gap" or {fault}') from None
+            angle = _square_at(job, part.removeprefix("square at "))
+        else:
+            try:
+                angle = units.angle(part)
+            except ValueError as fault:
+                raise UsageError(f'--cant: wanted "square at Y", "least filler", "least gap" or {fault}') from None
         if abs(angle) > 45.0:
-            raise UsageError(f"--cant: wanted angles within 45 degrees, got {part!r}")
+            raise UsageError(f"--cant: wanted angles within 45 degrees, got {part!r}: {angle:.1f} degrees")
         cants.append(angle)
     return cants
+
+
+def _square_at(job: Job, rib: str) -> float:
+    """Degrees of the cant that is square to the chord line of a rib."""
+    import math
+
+    y, stations = _length(job, rib, "--cant"), job.record.wing.stations
+    if not stations[0].y <= y <= stations[-1].y:
+        within = f"{job.wording.length(stations[0].y)} to {job.wording.length(stations[-1].y)}"
+        raise UsageError(f"--cant: wanted y within the stations, {within}, got {rib!r}")
+    return math.degrees(job.square_at(y))
 
 
 def _paper(job: Job, name: str | None) -> Paper:

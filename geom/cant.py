@@ -9,7 +9,7 @@ from scipy.optimize import minimize_scalar
 
 
 def least(
-    figure: Callable[[float], float], low: float, high: float, *, step: float, close: float
+    figure: Callable[[float], float], low: float, high: float, *, step: float, close: float, near: float = 0.0
 ) -> tuple[float, float]:
     """Global minimum of `figure` over angles from `low` to `high`, radians.
 
@@ -20,6 +20,9 @@ def least(
     ----------
     close
         How near the angle must come, radians.
+    near
+        Angles of the sweep whose figure is within this of the least are as good: the one nearest to zero is taken, if
+        it is nearer than the least's.
 
     Returns
     -------
@@ -31,6 +34,9 @@ def least(
     >>> angle, value = least(lambda k: abs(k - 0.1), -0.3, 0.3, step=0.05, close=1e-4)
     >>> round(angle, 3)
     0.1
+    >>> angle, value = least(lambda k: abs(k - 0.1), -0.3, 0.3, step=0.05, close=1e-4, near=0.06)
+    >>> round(angle, 3)
+    0.05
     """
     angles = np.linspace(low, high, int(np.ceil((high - low) / step)) + 1)
     values = np.array([figure(float(k)) for k in angles])
@@ -42,4 +48,6 @@ def least(
         about = (float(angles[max(i - 1, 0)]), float(angles[min(i + 1, len(angles) - 1)]))
         result = minimize_scalar(figure, bounds=about, method="bounded", options={"xatol": close})
         found.append((float(result.x), float(result.fun)))
-    return min(found, key=lambda pair: pair[1], default=(low, float("inf")))
+    best = min(found, key=lambda pair: pair[1], default=(low, float("inf")))
+    good = [(float(k), float(v)) for k, v in zip(angles, values, strict=True) if v <= best[1] + near]
+    return min([best, *good], key=lambda pair: abs(pair[0])) if near else best

@@ -32,6 +32,7 @@ Array = NDArray[np.float64]
 COARSE = 40.0  # mm, cells of the surveys that a search makes
 SWEEP = np.radians(1.0)
 CLOSE = np.radians(0.01)
+TOLD_APART: dict[Aim, float] = {"filler": 100.0, "gap": 0.02}  # mm^3, mm: what a workshop cannot tell from the least
 REGISTER = 5.0  # mm between the middle of a register hole and the joint's tube
 FINEST = 0.01  # degrees
 FINE_SAW = 20  # a saw this many times finer than the real one stands for one without steps
@@ -93,6 +94,9 @@ class Job(Results):
     ) -> tuple[float, float]:
         """Cant within the stated limit that makes the filler (mm^3) or the largest gap (mm) least, and that figure.
 
+        Of cants that a workshop could not tell from the best one, the most upright. Filler is that at the cut edges
+        and the stack of the strips, of which all that is not strip and glue is filled: what a tilted edge adds to it.
+
         Parameters
         ----------
         surveys
@@ -111,9 +115,9 @@ class Job(Results):
             except (OffSection, NothingInside):
                 return float("inf")
             built = self.fit(angle, survey, treatment)
-            return built.filler if aim == "filler" else built.gap
+            return built.filler + self._trial_stack(survey) if aim == "filler" else built.gap
 
-        angle, least = cant.least(figure, -limit, limit, step=float(SWEEP), close=float(CLOSE))
+        angle, least = cant.least(figure, -limit, limit, step=float(SWEEP), close=float(CLOSE), near=TOLD_APART[aim])
         if not np.isfinite(least):
             limits = f"{-np.degrees(limit):g} to {np.degrees(limit):g} degrees"
             raise self.error(
@@ -205,14 +209,26 @@ class Job(Results):
         return {side: seat.Along(stack.s, under + stack.value) for side in SIDES for stack in [caps.height(side)]}
 
     @cached_property
-    def _trial_depth(self) -> dict[Side, seat.Along]:
-        """The depth while a cant is searched: strips as an upright web asks for them, none where that does not fit."""
+    def _trial_caps(self) -> strips.Schedule | None:
+        """The strips while a cant is searched: as an upright web asks for them, none where those do not fit."""
         if self.record.caps is None or self.record.web.cant.kind in ("angle", "square"):
-            return self.depth
+            return self.caps if self.record.caps else None
         try:
-            return self._depth(strips.schedule(self, self.plane_at(0.0)))
+            return strips.schedule(self, self.plane_at(0.0))
         except (OffSection, WingError):
-            return self._depth(None)
+            return None
+
+    @cached_property
+    def _trial_depth(self) -> dict[Side, seat.Along]:
+        return self._depth(self._trial_caps)
+
+    def _trial_stack(self, survey: Survey) -> float:
+        """Volume of the stacks of strips between the skin and the seats of a trial survey, mm^3."""
+        caps = self._trial_caps
+        if caps is None:
+            return 0.0
+        share = {side: caps.height(side)(survey.s) / self._trial_depth[side](survey.s) for side in SIDES}
+        return sum(survey.bedding(side, share[side]) for side in SIDES)
 
     def survey(
         self,

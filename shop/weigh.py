@@ -345,7 +345,13 @@ def _no_verdict(found: Sequence[Candidate], job: Job) -> Verdict:
         why = " or ".join(dict.fromkeys(_WHY[c.refused or "no room"] for c in found))
         return Verdict(None, None, f"No candidate can be made: at each of them the web {why}.")
     limits = job.record.limits
-    nearest = min(made, key=lambda c: max(m.over / (getattr(limits, m.limit, None) or 1.0) for m in c.misses))
+
+    def rank(c: Candidate) -> tuple[list[float], float]:
+        """By the worst miss, as a share of its limit; where those are alike by the next, and then by mass."""
+        shares = (round(m.over / (getattr(limits, m.limit, None) or 1.0), 3) for m in c.misses)
+        return sorted(shares, reverse=True), c.masses.total
+
+    nearest = min(made, key=rank)
     by = " and ".join(f"{m.limit} by {amount(m, job)}" for m in nearest.misses)
     return Verdict(None, nearest, f"No candidate meets the limits. Nearest: {_named(nearest, job)}, which misses {by}.")
 
@@ -366,18 +372,17 @@ def _named(candidate: Candidate, job: Job) -> str:
 
 def saving(job: Job) -> Saving:
     """What the cant of least filler would save over the stated one."""
-    density = job.stock.find(job.record.web.filler, Filler).density * _GRAM
     best = job.best_cant("filler")[0]
-    least = job.fit(best, job.survey(best)).filler
-    return Saving(float(np.degrees(job.cant)), float(np.degrees(best)), job.web.filler * density, least * density)
+    least = masses(job, job.fit(best, job.survey(best))).filler
+    return Saving(float(np.degrees(job.cant)), float(np.degrees(best)), masses(job, job.web).filler, least)
 
 
 def saving_sentence(found: Saving, job: Job) -> str:
     """What the best cant would save, as a sentence."""
     by = found.filler_stated - found.filler_best
     if not float(job.wording.mass_column(by)):
-        return f"No other cant would save filler worth having at the cut edges; the stated one is {found.stated:.2f}°."
-    at = f"With the stated sheet and edge, cant {found.best:.2f}° needs least filler at the cut edges"
+        return f"No other cant would save filler worth having; the stated one is {found.stated:.2f}°."
+    at = f"With the stated sheet and edge, cant {found.best:.2f}° needs least filler"
     least, less = job.wording.mass(found.filler_best), job.wording.mass(by)
     return f"{at}: {least}, {less} less than the stated {found.stated:.2f}°."
 

@@ -120,6 +120,8 @@ def test_webs_that_do_not_fit_the_wing_are_refused_in_one_line(run, wing, tmp_pa
         (["weigh", "WING", "--thickness", "0"], "--thickness: wanted lengths above 0"),
         (["weigh", "WING", "--edge", "round"], "--edge: wanted one of square, set bevel, full bevel, got 'round'"),
         (["weigh", "WING", "--cant", "80"], "--cant: wanted angles within 45 degrees"),
+        (["weigh", "WING", "--cant", "square at 3000"], "--cant: wanted y within the stations, 0 mm to"),
+        (["weigh", "WING", "--cant", "square at 3 kg"], "--cant: wanted a length"),
         (["weigh", "WING", "--cant", "upright"], '--cant: wanted "square at Y"'),
         (["report", "WING", "--out", "WING"], "wanted a name that ends in .html"),
         (["templates", "WING", "--out", "OUT", "--formats", "png"], "--formats: wanted one of dxf, svg, pdf"),

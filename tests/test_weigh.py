@@ -10,6 +10,7 @@ import pytest
 
 from wrywing.shop import job as jobs
 from wrywing.shop import weigh
+from wrywing.shop.stock import Filler
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
 
@@ -111,6 +112,21 @@ def test_limits_that_nothing_meets_say_which_fails_and_by_how_much(slab):
     assert f"misses max_mass by {lightest - 20.0:.1f} g" in verdict.sentence
 
 
+def test_of_equal_worst_misses_the_next_and_then_the_mass_decide(slab):
+    job = slab(PLAIN + "[limits]\nmin_thickness = 12\nmax_gap = 0.6\nmax_bevel = 1\n")
+    square, set_bevel, full = candidates(job, [8.0], weigh.TREATMENTS)
+    # Flat skins tilted by 5 degrees: the gap of a square edge, 0.7 mm, is over by 17 %, the bevel by 400 %.
+    assert [{m.limit for m in c.misses} for c in (square, full)] == [
+        {"min_thickness", "max_gap"},
+        {"min_thickness", "max_bevel"},
+    ]
+    assert weigh.verdict([full, set_bevel, square], job).nearest is square
+    other = slab(PLAIN + "[limits]\nmin_thickness = 12\n")
+    heavy, _, light = candidates(other, [8.0], weigh.TREATMENTS)
+    assert light.masses.total < heavy.masses.total
+    assert weigh.verdict([heavy, light], other).nearest is light
+
+
 def test_equal_masses_take_the_easier_edge(slab):
     job = slab(PLAIN.replace("washout = 5", "washout = 0"))
     verdict = weigh.verdict(candidates(job, [8.0]), job)
@@ -132,6 +148,17 @@ def test_what_the_best_cant_saves(slab):
     assert saving.best == pytest.approx(-5.0, abs=0.02)
     assert saving.filler_best == pytest.approx(0.0, abs=0.02)
     assert saving.filler_stated == pytest.approx(2 * 1.680, abs=0.01)
+
+
+def test_cants_that_nobody_could_tell_apart_leave_the_web_upright():
+    # A law: the chosen cant is within what a workshop can tell of the least over a sweep, and none so good is nearer 0.
+    job = jobs.load(EXAMPLES / "highmoor.toml", {"web.cant": "least filler", "web.edge": "set bevel", "web.runs": 2})
+    density = job.stock.find(job.record.web.filler, Filler).density * 1e-6
+    told = jobs.TOLD_APART["filler"] * density
+    sweep = {k: weigh.masses(job, job.fit(k, job.survey(k)), ()).filler for k in np.radians(np.arange(-8.0, 9.0))}
+    chosen = weigh.masses(job, job.web, ()).filler
+    assert chosen <= min(sweep.values()) + 2.0 * told
+    assert all(abs(k) >= abs(job.cant) - 1e-9 for k, mass in sweep.items() if mass < chosen - 2.0 * told)
 
 
 def test_a_finer_saw_would_save_what_rounding_costs(slab):
