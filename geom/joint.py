@@ -42,6 +42,11 @@ def area(pin: float) -> float:
     return float(np.pi / 4.0 * pin**2)
 
 
+def section_modulus(pin: float) -> float:
+    """``pi d^3 / 32`` of a solid pin, mm^3: what its bending moment is divided by for the stress at its surface."""
+    return float(np.pi / 32.0 * pin**3)
+
+
 @dataclass(frozen=True)
 class Thickening:
     """A web that is thicker at one end.

@@ -6,6 +6,7 @@ from typing import Any
 
 import numpy as np
 
+from ..geom.joint import section_modulus
 from .flanges import BuiltFlange, sprung
 from .job import Job
 from .joint import JointEnd
@@ -39,7 +40,7 @@ def _pin(job: Job, end: JointEnd) -> str:
     )
     if found.force is not None:
         text += f", reserve factor {found.reserve:.2f} over {words.force(found.force)} ultimate"
-    return text
+    return f"{text}; in shear alone: its bending, the walls it bears on and the glue round its tube are not looked at"
 
 
 def _flange(job: Job, made: BuiltFlange) -> str:
@@ -54,7 +55,7 @@ def _flange(job: Job, made: BuiltFlange) -> str:
 
 
 def doubts(job: Job) -> list[str]:
-    """A pin that no force is stated for, or a smaller one than the load asks for."""
+    """A pin that no force or too small a one is stated for, or one along the web that the moment would bend."""
     end, tube, found = job.joint, job.tube, job.caps
     if end is None or tube is None:
         return []
@@ -63,14 +64,21 @@ def doubts(job: Job) -> list[str]:
         return ["the joint's pin is not checked: no force is stated for it"]
     if found is None:
         return []
-    what, asked = ("cap force", found.force) if end.stated.pin_axis == "upright" else ("shear", found.shear)
+    upright, words, said = end.stated.pin_axis == "upright", job.wording, []
+    what, asked = ("cap force", found.force) if upright else ("shear", found.shear)
     ultimate = float(np.interp(tube.start[0], found.s, asked))
-    if ultimate <= force:
-        return []
-    words = job.wording
-    return [
-        f"the joint's force, {words.force(force)}, is below the {what} there, {words.force(ultimate)} at ultimate load"
-    ]
+    if ultimate > force:
+        there = words.force(ultimate)
+        said.append(f"the joint's force, {words.force(force)}, is below the {what} there, {there} at ultimate load")
+    if not upright:
+        moment = float(np.interp(tube.start[0], found.s, found.moment))
+        bent = words.stress(moment / section_modulus(end.pin))
+        said.append(
+            f"the joint's pin lies along the web and is looked at in shear alone: the bending moment there, "
+            f"{words.moment(moment)} at ultimate load, would ask {bent} of it, moment / (pi d^3 / 32), if nothing else "
+            f"carries it"
+        )
+    return said
 
 
 def joint_record(job: Job) -> dict[str, Any] | None:

@@ -318,3 +318,14 @@ def test_a_force_below_the_loads_is_doubted(tmp_path):
     moment = lift * semi * 16.0 / (3.0 * np.pi) * quad(lambda x: (x - e) * (1.0 - x * x) ** 1.5, e, 1.0)[0]
     force = moment / job.web.plane.s[1] / np.interp(at, job.caps.s, job.caps.apart) / POUND
     assert float(said[0].split("there, ")[1].split(" lbf")[0]) == pytest.approx(force, rel=0.002)
+
+
+def test_a_pin_along_the_web_is_doubted_for_the_moment_that_would_bend_it():
+    from wrywing.shop import describe_joint
+
+    job = jobs.load(EXAMPLES / "highmoor.toml", {"joint.pin_axis": "along"})
+    (said,) = describe_joint.doubts(job)
+    # Plane bending of a round bar, W = pi d^3 / 32, of 5/16 in under 1685 lbf ft: 6.75 million psi.
+    stress = 1685.0 * 12.0 / (np.pi * 0.3125**3 / 32.0)
+    found = float(said.split("would ask ")[1].split(" psi")[0].replace(",", ""))
+    assert found == pytest.approx(stress, rel=0.002)
