@@ -91,7 +91,7 @@ def bevels(
     from dataclasses import asdict
 
     from .export import table
-    from .shop import weigh as scales
+    from .shop import masses
     from .shop.bevels import OffWeb
 
     job = _job(wing)
@@ -108,7 +108,7 @@ def bevels(
             _show(shown)
         if job.record.web.edge == "set bevel":
             _show(table.runs(job))
-            typer.echo(f"Rounding to the saw's steps costs {job.wording.mass(scales.rounding(job))} of filler.")
+            typer.echo(f"Rounding to the saw's steps costs {job.wording.mass(masses.rounding(job))} of filler.")
 
 
 @app.command()
@@ -126,13 +126,14 @@ def weigh(
 ) -> None:
     """Say what each sheet thickness, edge cut and cant costs, and which one to take."""
     from .export import table
+    from .shop import verdict as choice
     from .shop import weigh as scales
 
     job = _job(wing)
     sheets, edges = _sheets(job, thickness), _edges(edge)
     cants = _cants(job, cant)
     found = _with_progress(scales.candidates(job, sheets, edges, cants), len(sheets) * len(edges) * len(cants))
-    verdict, saving = scales.verdict(found, job), scales.saving(job)
+    verdict, saving = choice.verdict(found, job), choice.saving(job)
     if as_json:
         typer.echo(table.to_json(table.weighed_record(job, found, verdict, saving)))
     elif as_csv:
@@ -141,8 +142,8 @@ def weigh(
         _show(table.weighed(job, found, verdict))
         typer.echo(table.WEIGHED_NOTE)
         typer.echo(verdict.sentence)
-        typer.echo(scales.saving_sentence(saving, job))
-        for what, figures in scales.cautions(job):
+        typer.echo(choice.saving_sentence(saving, job))
+        for what, figures in choice.cautions(job):
             _say(what, figures)
 
 

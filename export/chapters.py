@@ -15,7 +15,7 @@ from ..geom import washout
 from ..geom.web import SIDES, Side
 from ..shop import describe, describe_core, describe_cutting, describe_joint, describe_strength
 from ..shop.job import Job
-from ..shop.weigh import saving_sentence
+from ..shop.verdict import saving_sentence
 from ..shop.wording import CAUTIONS, degrees
 from . import figures, figures_core, figures_edge, figures_load, table, table_lists, table_strength, view3d
 from .plot import Shown, to_svg

@@ -12,7 +12,9 @@ from matplotlib.patches import Polygon
 
 from ..shop.cores import BuiltCore
 from ..shop.job import Job
-from ..shop.weigh import TREATMENTS, Candidate, Verdict, masses
+from ..shop.masses import masses
+from ..shop.verdict import Verdict
+from ..shop.weigh import TREATMENTS, Candidate
 from ..shop.wording import GRAMS_PER_OUNCE, degrees
 from .plot import (
     BLUE,

@@ -15,7 +15,8 @@ import numpy as np
 from ..geom.web import SIDES
 from ..shop.bevels import EdgeRow, Row
 from ..shop.job import Job
-from ..shop.weigh import Candidate, Saving, Verdict, cautions
+from ..shop.verdict import Saving, Verdict, cautions
+from ..shop.weigh import Candidate
 from ..shop.wording import degrees
 
 if TYPE_CHECKING:
@@ -153,7 +154,8 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
     rows: list[tuple[str, ...]] = []
     marked = set()
     for c in found:
-        start = ("→" if c is verdict.chosen else "", words.plain(c.thickness), c.edge, degrees(c.cant))
+        tilt = "" if math.isnan(c.cant) else degrees(c.cant)
+        start = ("→" if c is verdict.chosen else "", words.plain(c.thickness), c.edge, tilt)
         if c.outside:
             refused = (*start, *[""] * 8, c.refused or "")
             alike = rows and rows[-1][1::2] == refused[1::2]  # the same sheet and cant, whatever the edge

@@ -10,9 +10,9 @@ import numpy as np
 
 from ..geom.web import SIDES
 from .job import Job
+from .masses import Masses
 from .stated import stated
 from .strips import Layer, Schedule
-from .weigh import Masses
 
 Unit = Literal["mm", "mm2", "degrees", "g", ""]
 _SAME = 1e-9

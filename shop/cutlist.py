@@ -12,18 +12,18 @@ from numpy.typing import NDArray
 from ..geom import core
 from .describe_strength import cut_length
 from .job import Job
+from .masses import Masses, masses
 from .nesting import Nesting, nestings
 from .pieces import Piece, other_pieces
 from .records_caps import Facing
 from .records_cutting import Cutting
 from .stock import Foam, Strip
-from .weigh import Masses, masses
+from .units import GRAM
 
 Array = NDArray[np.float64]
 
 Kind = Literal["sheet", "strip", "cloth", "laminate", "block", "tube"]
 NOT_STATED = "not stated"
-_GRAM = 1e-6  # g per mm^3 at 1 kg/m^3
 
 
 @dataclass(frozen=True)
@@ -128,7 +128,7 @@ def _other_sheets(job: Job, weights: Masses) -> Iterator[Cut]:
     pads = sum(p.shape.area for p in found[: len(job.pads)])
     for i, piece in enumerate(found):
         density = job.stock.find(piece.material, Foam).density
-        flat = piece.shape.area * piece.thickness * density * _GRAM
+        flat = piece.shape.area * piece.thickness * density * GRAM
         yield _of_piece(job, piece, weights.pads * piece.shape.area / pads if i < len(job.pads) else flat)
 
 
@@ -144,7 +144,7 @@ def _strips(job: Job) -> Iterator[Cut]:
     density = job.stock.find(caps.strip, Strip).density
     for layer in job.layers:
         name, size = f"Cap strip, {layer.side} edge, layer {layer.number}", (layer.length, caps.width, caps.thickness)
-        line = _cut(job, "strip", name, caps.strip, size, layer.count, layer.volume / layer.count * density * _GRAM)
+        line = _cut(job, "strip", name, caps.strip, size, layer.count, layer.volume / layer.count * density * GRAM)
         section = f"{job.wording.plain(caps.width)} x {job.wording.length(caps.thickness)}"
         yield replace(line, size=f"{cut_length(job, layer)} of {section}")
 
@@ -182,7 +182,7 @@ def _cores(job: Job) -> Iterator[Cut]:
             wide, high = bay.upright
             mesh = core.solid(made.loft, replace(made.region, ends=(bay.ends[0].y, bay.ends[1].y)))
             name = f"Block of core {made.number}, {made.stated.region}, bay {i}"
-            mass = mesh.volume * made.foam.density * _GRAM
+            mass = mesh.volume * made.foam.density * GRAM
             yield _cut(job, "block", name, made.foam.name, (bay.length, wide, high), 1, mass)
 
 

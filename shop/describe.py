@@ -12,8 +12,10 @@ from ..geom import web as web_geometry
 from ..geom.web import SIDES, Side
 from . import describe_core, describe_cutting, describe_joint, describe_strength
 from .job import Job
+from .masses import masses
 from .stock import Foam
-from .weigh import amount, broken_limits, masses
+from .verdict import amount
+from .weigh import broken_limits
 from .wording import degrees
 
 STEEP = 15.0  # degrees of bevel from which a saw cut is doubtful

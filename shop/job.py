@@ -79,7 +79,10 @@ class Job(Results):
             return float(np.radians(stated.value or 0.0))
         if stated.kind == "square":
             return self.square_at(stated.value or 0.0)
-        return self.best_cant("gap" if stated.kind == "least gap" else "filler")[0]
+        try:
+            return self.best_cant("gap" if stated.kind == "least gap" else "filler")[0]
+        except KeyedError as fault:
+            raise self._keyed(fault) from None
 
     def square_at(self, y: float) -> float:
         """Cant, radians, at which the web stands square to the chord line of rib y."""
@@ -104,7 +107,7 @@ class Job(Results):
 
         Raises
         ------
-        WingError
+        KeyedError
             If the web fits inside the wing at no cant that may be tried.
         """
         limit = float(np.radians(self.record.web.cant_limit))
@@ -120,8 +123,8 @@ class Job(Results):
         angle, least = cant.least(figure, -limit, limit, step=float(SWEEP), close=float(CLOSE), near=TOLD_APART[aim])
         if not np.isfinite(least):
             limits = f"{-np.degrees(limit):g} to {np.degrees(limit):g} degrees"
-            raise self.error(
-                "web.cant_limit",
+            raise KeyedError(
+                ("web", "cant_limit"),
                 f"wanted a cant at which the web fits inside the wing, got none from {limits}",
             )
         return angle, least
@@ -266,7 +269,7 @@ class Job(Results):
         try:
             return runs.best_runs(survey, side, runs=stated.runs, angles=angles, aim=stated.aim)
         except ValueError as fault:
-            raise self.error("web.runs", f"wanted {fault}") from None
+            raise KeyedError(("web", "runs"), f"wanted {fault}") from None
 
     @cached_property
     def web(self) -> BuiltWeb:

@@ -17,10 +17,12 @@ if TYPE_CHECKING:
     from .cutlist import Cut
     from .describe import Facts
     from .job import Job
+    from .masses import Masses
     from .nesting import Nesting
     from .shopping import Buy
     from .solids import Solid
-    from .weigh import Candidate, Masses, Saving, Verdict
+    from .verdict import Saving, Verdict
+    from .weigh import Candidate
 
 
 class Results:
@@ -45,9 +47,9 @@ class Results:
     @cached_property
     def masses(self) -> Masses:
         """What the web as stated weighs, grams."""
-        from . import weigh
+        from . import masses
 
-        return weigh.masses(self._job, self._job.web)
+        return masses.masses(self._job, self._job.web)
 
     def candidates(
         self,
@@ -74,16 +76,16 @@ class Results:
     @cached_property
     def verdict(self) -> Verdict:
         """Which of the usual candidates to take, and why."""
-        from . import weigh
+        from . import verdict
 
-        return weigh.verdict(self.usual_candidates, self._job)
+        return verdict.verdict(self.usual_candidates, self._job)
 
     @cached_property
-    def saving(self) -> Saving:
+    def saving(self) -> Saving | None:
         """What the cant of least filler would save."""
-        from . import weigh
+        from . import verdict
 
-        return weigh.saving(self._job)
+        return verdict.saving(self._job)
 
     @cached_property
     def nestings(self) -> list[Nesting]:

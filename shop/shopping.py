@@ -9,13 +9,11 @@ from dataclasses import dataclass
 from .cutlist import NOT_STATED, Cut, cloth_name, cut_list
 from .describe_strength import cut_length
 from .job import Job
+from .masses import Masses, masses
 from .nesting import Nesting, nestings
 from .records_cutting import Cutting
 from .stock import Adhesive, Cloth, Filler, Strip
-from .units import MM_PER_INCH
-from .weigh import Masses, masses
-
-_GRAM = 1e-6  # g per mm^3 at 1 kg/m^3
+from .units import GRAM, MM_PER_INCH
 
 
 @dataclass(frozen=True)
@@ -83,7 +81,7 @@ def _strips(job: Job, cuts: Sequence[Cut]) -> Iterator[Buy]:
     found = [cut for cut in cuts if cut.kind == "strip"]
     size = f"{job.wording.plain(caps.width)} x {job.wording.length(caps.thickness)}"
     total, longest = sum(c.both_hands * c.length for c in found), max(job.layers, key=lambda layer: layer.length)
-    mass = total * caps.width * caps.thickness * job.stock.find(caps.strip, Strip).density * _GRAM
+    mass = total * caps.width * caps.thickness * job.stock.find(caps.strip, Strip).density * GRAM
     note = f"{sum(c.both_hands for c in found)} pieces, the longest {cut_length(job, longest)}"
     yield Buy(caps.strip, size, *_long(job, total), _round(mass), note)
 

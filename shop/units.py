@@ -15,6 +15,7 @@ from functools import cache
 from typing import Any, Literal
 
 Units = Literal["mm", "in"]
+GRAM = 1e-6  # what a mm^3 weighs at 1 kg/m^3, or a mm^2 at 1 g/m^2
 MM_PER_INCH = 25.4
 
 _NUMBER = re.compile(

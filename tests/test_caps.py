@@ -18,6 +18,8 @@ from wrywing import cli
 from wrywing.geom import caps, seat, web
 from wrywing.shop import describe_strength, sheets, weigh
 from wrywing.shop import job as jobs
+from wrywing.shop import masses as weights
+from wrywing.shop import verdict as choice
 from wrywing.shop.stock import Stock, Strip
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
@@ -79,14 +81,14 @@ def test_the_bed_follows_the_stack(slab):
 def test_masses_by_hand(slab):
     # At each edge 6 x 0.8 mm of strip over 1000 + 804 + 434 mm (a feathered end counts half): 10 742 mm^3.
     bare, job = slab(PLAIN), slab()
-    before, after = weigh.masses(bare, bare.web), weigh.masses(job, job.web)
+    before, after = weights.masses(bare, bare.web), weights.masses(job, job.web)
     strip = 6 * 0.8 * (1000.0 + 804.0 + 434.0)
     assert after.strips == pytest.approx(2 * strip * 1550e-6, rel=1e-3)
     # epoxy between the strips: an eighth of their volume; paste beside them: (8 / cos 5 - 6) x 0.9 over the same length
     assert after.bond - before.bond == pytest.approx(2 * strip / 8.0 * 1150e-6, rel=1e-3)
     beside = (8.0 / math.cos(math.radians(5.0)) - 6.0) * 0.9 * (1000.0 + 804.0 + 434.0)
     assert after.filler_top - before.filler_top == pytest.approx(beside * 600e-6, rel=5e-3)
-    parts = [weigh.bedded(job, job.web.survey, side) for side in web.SIDES]
+    parts = [weights.bedded(job, job.web.survey, side) for side in web.SIDES]
     beds = [job.web.survey.bedding(side) for side in web.SIDES]
     assert [p.bond + p.strips + p.cover + p.beside for p in parts] == pytest.approx(beds, rel=1e-6)
 
@@ -98,7 +100,7 @@ def test_a_cover_ply_lowers_the_bed_and_weighs(slab):
     cos = math.cos(math.radians(5.0))
     rows = [job.rows([900.0])[0].top.cut_front for job in (without, with_cover)]
     assert rows[0] - rows[1] == pytest.approx(0.13248 / cos, abs=1e-3)
-    assert weigh.masses(with_cover, with_cover.web).cover == pytest.approx(2 * 8.0 / cos * 1000.0 * 210e-6, rel=2e-3)
+    assert weights.masses(with_cover, with_cover.web).cover == pytest.approx(2 * 8.0 / cos * 1000.0 * 210e-6, rel=2e-3)
 
 
 def test_side_by_side_halves_the_layers(slab):
@@ -330,7 +332,7 @@ def test_weigh_refuses_a_sheet_thinner_than_its_strips_and_one_that_shears(slab)
     assert "5 mm is thinner than its strips, 6 mm" in thin.outside
     over = {miss.limit: miss.over for miss in made.misses}
     assert over["core in shear"] == pytest.approx(1.6875 / 0.95 - 1.0, rel=1e-3)
-    assert "core in shear by 78 %" in weigh.verdict([made], job).sentence
+    assert "core in shear by 78 %" in choice.verdict([made], job).sentence
 
 
 def run(*words):

@@ -22,6 +22,8 @@ from wrywing.geom import flange, seat, web
 from wrywing.geom.airfoil import naca
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
+from wrywing.shop import masses as weights
+from wrywing.shop import verdict as choice
 from wrywing.shop import weigh
 from wrywing.shop.sheets_flange import flange_patterns
 from wrywing.shop.wingfile import WingError
@@ -201,7 +203,7 @@ def test_masses(tmp_path):
     job = loaded(tmp_path)
     for made in job.flanges:
         assert made.mass == pytest.approx(made.flange.area * 0.5 * 1800e-6)
-    assert weigh.masses(job, job.web).flanges == pytest.approx(sum(made.mass for made in job.flanges))
+    assert weights.masses(job, job.web).flanges == pytest.approx(sum(made.mass for made in job.flanges))
     cloth = STATED.replace("thickness = 0.5\ndensity = 1800", 'cloth = "glass cloth 280"\nlayers = 2')
     job = loaded(tmp_path, cloth)
     # Laminate thickness: areal weight / (fibre density x fibre volume fraction), half of its mass being fibre.
@@ -215,7 +217,7 @@ def test_a_cant_that_springs_the_flanges_too_far_is_refused(tmp_path):
     near, far = weigh.candidates(job, [6.0], ["square"], [3.0, 14.0])
     assert near.masses.flanges > 0.0
     assert far.refused == "flanges"
-    assert "does not suit its flanges" in weigh.verdict([far], job).sentence
+    assert "does not suit its flanges" in choice.verdict([far], job).sentence
 
 
 # ---------------------------------------------------------------------------- what is refused

@@ -21,7 +21,9 @@ from wrywing.export import dxf
 from wrywing.geom import joint, seat, web
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
+from wrywing.shop import masses as weights
 from wrywing.shop import sheets, weigh
+from wrywing.shop import verdict as choice
 from wrywing.shop.stock import Pin, Stock
 from wrywing.shop.wingfile import WingError
 
@@ -154,7 +156,7 @@ def test_pads_weigh_what_they_are(tmp_path):
     wing = kernel.Wing((0.0, 900.0), (400.0, 400.0), (0.0, 0.0), (0.0, 0.0), (0.0, 0.0))
     job = loaded(tmp_path, STATED + 'pad = "balsa 160"\n', "square", wing, kernel.Web((0.0, 900.0), thickness=6.0))
     row = job.rows([0.0])[0]
-    found = weigh.masses(job, job.web)
+    found = weights.masses(job, job.web)
     assert job.web.pads == pytest.approx(2 * 2.0 * (row.top.cut_front - row.bottom.cut_front) * 160.0, rel=0.01)
     assert found.pads == pytest.approx(job.web.pads * 160e-6)
     assert found.foam == pytest.approx((job.web.sheet - job.web.pads) * 80e-6)
@@ -166,7 +168,7 @@ def test_a_sheet_thicker_than_the_joint_is_refused(tmp_path):
     assert thin.outside is None
     assert thin.masses.pads > 0.0
     assert thick.outside == "a sheet of 12 mm is thicker than its joint, 10 mm"
-    assert "is thicker than its joint" in weigh.verdict([thick], job).sentence
+    assert "is thicker than its joint" in choice.verdict([thick], job).sentence
 
 
 # ---------------------------------------------------------------------------- the pin between the seats

@@ -9,8 +9,11 @@ import numpy as np
 import pytest
 
 from wrywing.shop import job as jobs
+from wrywing.shop import masses as weights
+from wrywing.shop import verdict as choice
 from wrywing.shop import weigh
 from wrywing.shop.stock import Filler
+from wrywing.shop.values import KeyedError
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
 
@@ -95,7 +98,7 @@ def test_one_row_by_hand(slab):
 def test_the_lightest_within_the_limits_is_marked_and_the_next_named(slab):
     job = slab(PLAIN + "[limits]\nmax_gap = 0.5\nmin_thickness = 4\n")
     found = candidates(job, [3.0, 4.0, 5.0, 8.0])
-    verdict = weigh.verdict(found, job)
+    verdict = choice.verdict(found, job)
     within = [c for c in found if c.gap <= 0.5 and c.thickness >= 4.0]
     assert verdict.chosen in within
     assert verdict.chosen.masses.total == min(c.masses.total for c in within)
@@ -106,7 +109,7 @@ def test_the_lightest_within_the_limits_is_marked_and_the_next_named(slab):
 def test_limits_that_nothing_meets_say_which_fails_and_by_how_much(slab):
     job = slab(PLAIN + "[limits]\nmax_mass = 20\n")
     found = candidates(job, [3.0, 8.0])
-    verdict = weigh.verdict(found, job)
+    verdict = choice.verdict(found, job)
     lightest = min(c.masses.total for c in found)
     assert verdict.chosen is None
     assert f"misses max_mass by {lightest - 20.0:.1f} g" in verdict.sentence
@@ -120,16 +123,59 @@ def test_of_equal_worst_misses_the_next_and_then_the_mass_decide(slab):
         {"min_thickness", "max_gap"},
         {"min_thickness", "max_bevel"},
     ]
-    assert weigh.verdict([full, set_bevel, square], job).nearest is square
+    assert choice.verdict([full, set_bevel, square], job).nearest is square
     other = slab(PLAIN + "[limits]\nmin_thickness = 12\n")
     heavy, _, light = candidates(other, [8.0], weigh.TREATMENTS)
     assert light.masses.total < heavy.masses.total
-    assert weigh.verdict([heavy, light], other).nearest is light
+    assert choice.verdict([heavy, light], other).nearest is light
+
+
+def test_a_shear_that_nobody_checked_is_not_called_borne(tmp_path):
+    (tmp_path / "sections").symlink_to(EXAMPLES / "sections")
+    text = (EXAMPLES / "highmoor.toml").read_text()
+    path = tmp_path / "wing.toml"
+    path.write_text(
+        text.replace('foam      = "pvc foam 80"', 'foam = "my foam"')
+        + '\n[materials."my foam"]\nkind = "foam"\ndensity = 80\n'
+    )
+    job = jobs.load(path)
+    said = choice.verdict(candidates(job, [9.525], ["full bevel"]), job).sentence
+    assert "bears the shear" not in said
+    assert "what shear it bears is not checked" in said
+    cautions = dict(choice.cautions(job))
+    assert 'state the shear strength of "my foam"' in cautions["unchecked"]
+    assert "no proof of airworthiness" in cautions["caution"]
+
+
+def test_reserves_below_one_stand_beside_the_verdict():
+    weak = jobs.load(EXAMPLES / "highmoor.toml", {"caps.bond_shear": "200 psi"})
+    assert "strip bond 0." in dict(choice.cautions(weak))["doubt"]
+    assert "doubt" not in dict(choice.cautions(jobs.load(EXAMPLES / "highmoor.toml")))
+
+
+def test_runs_that_only_a_set_bevel_has_refuse_that_row_alone(slab):
+    job = slab(PLAIN.replace('edge = "square"', 'edge = "full bevel"\nruns = 5000'))
+    square, set_bevel, full = candidates(job, [8.0])
+    assert (square.fits, full.fits, set_bevel.refused) == (True, True, "runs")
+    assert set_bevel.outside.startswith("web.runs: wanted from 1 to")
+
+
+def test_a_search_that_finds_no_cant_refuses_its_row_and_saves_nothing(slab, monkeypatch):
+    job = slab()
+
+    def none(*_, **__):
+        raise KeyedError(("web", "cant_limit"), "wanted a cant at which the web fits")
+
+    monkeypatch.setattr(jobs.Job, "best_cant", none)
+    (row,) = weigh.candidates(job, [8.0], ["square"], ["least filler"])
+    assert row.refused == "cant_limit"
+    assert choice.saving(job) is None
+    assert choice.saving_sentence(None, job).startswith("No cant within web.cant_limit")
 
 
 def test_equal_masses_take_the_easier_edge(slab):
     job = slab(PLAIN.replace("washout = 5", "washout = 0"))
-    verdict = weigh.verdict(candidates(job, [8.0]), job)
+    verdict = choice.verdict(candidates(job, [8.0]), job)
     assert verdict.chosen.edge == "square"
 
 
@@ -138,13 +184,13 @@ def test_a_sheet_that_leaves_the_section_is_said_to(slab):
     thin, thick = candidates(job, [8.0, 420.0], ["square"])
     assert thin.outside is None
     assert "leaves the section" in thick.outside
-    assert weigh.verdict([thick], job).chosen is None
+    assert choice.verdict([thick], job).chosen is None
 
 
 def test_what_the_best_cant_saves(slab):
     # Closed form: flat skins tilted by 5 degrees are met squarely by a web canted 5 degrees forward: no filler at all.
     job = slab()
-    saving = weigh.saving(job)
+    saving = choice.saving(job)
     assert saving.best == pytest.approx(-5.0, abs=0.02)
     assert saving.filler_best == pytest.approx(0.0, abs=0.02)
     assert saving.filler_stated == pytest.approx(2 * 1.680, abs=0.01)
@@ -155,8 +201,8 @@ def test_cants_that_nobody_could_tell_apart_leave_the_web_upright():
     job = jobs.load(EXAMPLES / "highmoor.toml", {"web.cant": "least filler", "web.edge": "set bevel", "web.runs": 2})
     density = job.stock.find(job.record.web.filler, Filler).density * 1e-6
     told = jobs.TOLD_APART["filler"] * density
-    sweep = {k: weigh.masses(job, job.fit(k, job.survey(k)), ()).filler for k in np.radians(np.arange(-8.0, 9.0))}
-    chosen = weigh.masses(job, job.web, ()).filler
+    sweep = {k: weights.masses(job, job.fit(k, job.survey(k)), ()).filler for k in np.radians(np.arange(-8.0, 9.0))}
+    chosen = weights.masses(job, job.web, ()).filler
     assert chosen <= min(sweep.values()) + 2.0 * told
     assert all(abs(k) >= abs(job.cant) - 1e-9 for k, mass in sweep.items() if mass < chosen - 2.0 * told)
 
@@ -165,7 +211,7 @@ def test_a_finer_saw_would_save_what_rounding_costs(slab):
     # Closed form: a saw that only turns by 4 degrees is 1 degree off a bevel of 5: t^2/2 (tan 5 - tan 4) of paste.
     job = slab(PLAIN.replace('edge = "square"', 'edge = "set bevel"\nangle_step = 4'))
     off = math.tan(math.radians(5.0)) - math.tan(math.radians(4.0))
-    assert weigh.rounding(job) == pytest.approx(2 * 8.0**2 / 2 * off * 1000.0 * 600e-6, rel=0.01)
+    assert weights.rounding(job) == pytest.approx(2 * 8.0**2 / 2 * off * 1000.0 * 600e-6, rel=0.01)
 
 
 def test_more_runs_than_places_are_refused(slab):
