@@ -4,13 +4,16 @@ from __future__ import annotations
 
 import os
 import sys
+from contextlib import contextmanager
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any, NoReturn, TypeVar
 
 import typer
 
 if TYPE_CHECKING:
-    from .export.bundle import Options
+    from collections.abc import Callable, Iterable, Iterator
+
+    from .export.bundle import Bundle, Options
     from .export.cover import Revision
     from .geom.drawing import Hand
     from .geom.seat import Treatment
@@ -47,8 +50,7 @@ def new(
     """Write a commented wing file to start from."""
     from .shop import starter
 
-    kinds: dict[str, Units] = {"mm": "mm", "in": "in"}
-    text = starter.text(_one_of(units, kinds, "--units"))
+    text = starter.text(_units(units))
     try:
         with path.open("x", encoding="utf-8") as file:
             file.write(text)
@@ -67,15 +69,17 @@ def check(wing: WingPath, as_json: AsJson = False) -> None:
     from .export import table, table_strength
     from .shop import describe
 
-    job = _job(wing)
+    with _waiting("checking"):
+        job = _job(wing)
+        lines, doubts, tables = describe.lines(job), job.facts.doubts, table_strength.tables(job)
     if as_json:
-        typer.echo(table.to_json(asdict(describe.facts(job))))
+        typer.echo(table.to_json(asdict(job.facts)))
         return
-    for what, figures in describe.lines(job):
+    for what, figures in lines:
         _say(what, figures)
-    for doubt in describe.doubts(job):
+    for doubt in doubts:
         _say("doubt", doubt)
-    for shown in table_strength.tables(job):
+    for shown in tables:
         _show(shown)
 
 
@@ -94,9 +98,11 @@ def bevels(
     from .shop import masses
     from .shop.bevels import OffWeb
 
+    _one_format(as_json, as_csv)
     job = _job(wing)
     try:
-        rows = job.rows(_places(job, every, at))
+        with _waiting("working out the table"):
+            rows = job.rows(_places(job, every, at))
     except OffWeb as fault:
         raise UsageError(f"--at: {fault}") from None
     if as_json:
@@ -129,10 +135,13 @@ def weigh(
     from .shop import verdict as choice
     from .shop import weigh as scales
 
+    _one_format(as_json, as_csv)
     job = _job(wing)
     sheets, edges = _sheets(job, thickness), _edges(edge)
     cants = _cants(job, cant)
-    found = _with_progress(scales.candidates(job, sheets, edges, cants), len(sheets) * len(edges) * len(cants))
+    total = len(sheets) * len(edges) * len(cants)
+    with _waiting("weighing") as say:
+        found = list(_one_by_one(scales.candidates(job, sheets, edges, cants), total, "weighing", say))
     verdict, saving = choice.verdict(found, job), choice.saving(job)
     if as_json:
         typer.echo(table.to_json(table.weighed_record(job, found, verdict, saving)))
@@ -162,34 +171,23 @@ def templates(
     arcs: Annotated[bool, typer.Option("--arcs", help="DXF: arcs where they replace many points.")] = False,
     kerf: Annotated[str, typer.Option(help="DXF: what a laser burns away, 0.2mm; cuts are moved by half.")] = "0",
 ) -> None:
-    """Write every drawing at full size."""
+    """Write every drawing at full size.
+
+    DXF files are in millimetres (1 unit is 1 mm), those of a wing file in inches too.
+    """
     from .export import bundle, contours, folder, tiles
-    from .shop import sheets
-    from .shop.nesting import nestings
-    from .shop.sheets_stock import stock_sheets
 
     job = _job(wing)
     kinds = _list_of(formats, {kind: kind for kind in (*bundle.FORMATS, *_PATHS, *_MESHES)}, "--formats")
-    named: dict[str, Hand] = {"right": "right", "left": "left"}
-    hands: list[Hand] = [*named.values()] if hand == "both" else _list_of(hand, named, "--hand")
+    hands = _hands(hand)
     options = _options(job, paper, dxf_version, arcs, kerf)
-    laid = job.nestings if len(hands) == 2 else nestings(job, hands)
-    drawings = [drawing for side in hands for drawing in sheets.drawings(job, side)]
-    drawings += stock_sheets(job, laid, hands)
     try:
-        made = bundle.build(drawings, [k for k in kinds if k in bundle.FORMATS], options, _revision(job))
+        with _waiting("laying out the drawings") as say:
+            made = _bundle(job, hands, kinds, options, say)
     except tiles.PaperError as fault:
         raise (UsageError(f"--paper: {fault}") if paper else job.error("paper.size", str(fault))) from None
     except contours.KerfError as fault:
         raise UsageError(f"--kerf: {fault}") from None
-    for side in hands:
-        for kind in (k for k in kinds if k in _PATHS):
-            for name, content in _paths(job, kind, side):
-                made.add(f"{name}-{side}.{kind}", kind, name, side, content)
-        for kind, name, content in _meshes(job, [k for k in kinds if k in _MESHES], side):
-            made.add(f"{name}-{side}.{kind}", kind, name, side, content)
-    for name, content in _lists(job) if "csv" in kinds else ():
-        made.add(f"{name}.csv", "csv", name, "both", content)
     gone = folder.write(out, made.files, made.records, stamp=job.stamp)
     earlier = f"; {gone} of an earlier run, which this one does not make, are gone" if gone else ""
     typer.echo(f"wrote {len(made.files)} files and manifest.json to {out}{earlier}")
@@ -207,8 +205,36 @@ def report(
     job = _job(wing)
     from .export import report as page
 
-    onefile.write(out, page.render(job))
+    with _waiting("writing the report"):
+        content = page.render(job)
+    onefile.write(out, content)
     typer.echo(f"wrote {out}; open it in a browser")
+
+
+@app.command("stock")
+def list_stock(
+    kind: Annotated[
+        str | None, typer.Argument(metavar="[KIND]", help="foam, wood, filler, adhesive, cloth, strip or pin.")
+    ] = None,
+    units: Annotated[str, typer.Option(help='In what units: "mm" or "in", with pounds and psi.')] = "mm",
+    as_json: AsJson = False,
+    as_csv: AsCsv = False,
+) -> None:
+    """List the materials that a wing file may name, with what they weigh and bear."""
+    from .export import table, table_stock
+    from .shop.stock import KINDS, Stock
+
+    _one_format(as_json, as_csv)
+    stock, kinds = Stock(), [*KINDS] if kind is None else [_one_of(kind, {k: k for k in KINDS}, "KIND")]
+    if as_json:
+        typer.echo(table.to_json(table_stock.records(stock, kinds)))
+    elif as_csv:
+        typer.echo(table.to_csv(table_stock.rows(table_stock.records(stock, kinds))), nl=False)
+    else:
+        for shown in table_stock.tables(stock, kinds, _units(units)):
+            _show(shown)
+        for sentence in (*table_stock.why(stock, kinds), *table_stock.NOTES):
+            _say("", sentence)
 
 
 @app.command()
@@ -221,7 +247,8 @@ def compare(
     from .export import table, table_compare
     from .shop import compare as side_by_side
 
-    found = side_by_side.compare(_job(wing), _job(other))
+    with _waiting("comparing"):
+        found = side_by_side.compare(_job(wing), _job(other))
     if as_json:
         typer.echo(table.to_json(table_compare.record(found)))
         return
@@ -241,7 +268,31 @@ def _options(job: Job, paper: str | None, version: str, arcs: bool, kerf: str) -
     burnt = _length(job, kerf, "--kerf")
     if not 0.0 <= burnt <= 10.0:
         raise UsageError(f"--kerf: wanted a length from 0 to 10 mm, got {kerf!r}")
-    return Options(how, _one_of(version.upper(), {v: v for v in VERSIONS}, "--dxf-version"), arcs, burnt)
+    return Options(how, _one_of(version, {v: v for v in VERSIONS}, "--dxf-version"), arcs, burnt)
+
+
+def _bundle(job: Job, hands: list[Hand], kinds: list[str], options: Options, say: Callable[[str], None]) -> Bundle:
+    """Every file of the kinds asked for."""
+    from .export import bundle
+    from .shop import sheets
+    from .shop.nesting import nestings
+    from .shop.sheets_stock import stock_sheets
+
+    laid = job.nestings if len(hands) == 2 else nestings(job, hands)
+    drawings = [drawing for side in hands for drawing in sheets.drawings(job, side)]
+    drawings += stock_sheets(job, laid, hands)
+    told = _one_by_one(drawings, len(drawings), "writing drawing", say)
+    made = bundle.build(told, [k for k in kinds if k in bundle.FORMATS], options, _revision(job))
+    say("writing what is no drawing")
+    for side in hands:
+        for kind in (k for k in kinds if k in _PATHS):
+            for name, content in _paths(job, kind, side):
+                made.add(f"{name}-{side}.{kind}", kind, name, side, content)
+        for kind, name, content in _meshes(job, [k for k in kinds if k in _MESHES], side):
+            made.add(f"{name}-{side}.{kind}", kind, name, side, content)
+    for name, content in _lists(job) if "csv" in kinds else ():
+        made.add(f"{name}.csv", "csv", name, "both", content)
+    return made
 
 
 def _revision(job: Job) -> Revision:
@@ -300,21 +351,32 @@ def _show(shown: Any, width: int = 100) -> None:
     console.print(shown.rich())
 
 
-def _with_progress(found: Any, total: int) -> list[Any]:
-    """List what an iterator gives, with a bar on stderr once that takes more than a second."""
-    import time
+@contextmanager
+def _waiting(what: str) -> Iterator[Callable[[str], None]]:
+    """Say on a terminal what is being done, once that takes more than a second; gives what changes the words."""
+    if not sys.stderr.isatty():
+        yield lambda words: None
+        return
+    from threading import Timer
 
     from rich.console import Console
-    from rich.progress import Progress
 
-    out: list[Any] = []
-    start = time.monotonic()
-    with Progress(console=Console(stderr=True), transient=True, disable=not sys.stderr.isatty()) as bar:
-        task = bar.add_task("weighing", total=total, visible=False)
-        for item in found:
-            out.append(item)
-            bar.update(task, advance=1, visible=time.monotonic() - start > 1.0)
-    return out
+    status = Console(stderr=True).status(what)
+    timer = Timer(1.0, status.start)
+    timer.start()
+    try:
+        yield status.update
+    finally:
+        timer.cancel()
+        timer.join()
+        status.stop()
+
+
+def _one_by_one(found: Iterable[_Value], total: int, what: str, say: Callable[[str], None]) -> Iterator[_Value]:
+    """Give what an iterator gives, and say of each how many there are."""
+    for number, item in enumerate(found, start=1):
+        say(f"{what} {number} of {total}")
+        yield item
 
 
 def _places(job: Job, every: str | None, at: str | None) -> Any:
@@ -352,7 +414,7 @@ def _cants(job: Job, cant: str | None) -> list[float | str]:
     if cant is None:
         return [math.degrees(job.cant)]
     cants: list[float | str] = []
-    for part in _parts(cant, "--cant"):
+    for part in _parts(cant.lower(), "--cant"):
         if part in ("least filler", "least gap"):
             cants.append(part)
             continue
@@ -400,20 +462,43 @@ def _length(job: Job, text: str, option: str) -> float:
 
 
 def _parts(text: str, option: str) -> list[str]:
+    import re
+
     parts = [part.strip() for part in text.split(",")]
     if not all(parts):
         raise UsageError(f"{option}: wanted a list with commas between, got {text!r}")
+    if unclear := re.search(r"(\d+),(\d+\s*[a-zµ°\"″]+)", text, re.IGNORECASE):  # is 4,5mm two figures or 4.5 mm?
+        one, two = unclear.groups()
+        raise UsageError(f"{option}: wanted {one}.{two} with a point, or {one}, {two} with a blank, got {text!r}")
     return parts
 
 
 def _one_of(text: str, known: dict[str, _Value], option: str) -> _Value:
-    if text not in known:
+    """What a word stands for, whatever its case."""
+    plain = {word.lower(): value for word, value in known.items()}
+    if text.lower() not in plain:
         raise UsageError(f"{option}: wanted one of {', '.join(known)}, got {text!r}")
-    return known[text]
+    return plain[text.lower()]
 
 
 def _list_of(text: str, known: dict[str, _Value], option: str) -> list[_Value]:
-    return [_one_of(part, known, option) for part in dict.fromkeys(_parts(text, option))]
+    parts = dict.fromkeys(part.lower() for part in _parts(text, option))
+    return [_one_of(part, known, option) for part in parts]
+
+
+def _hands(text: str) -> list[Hand]:
+    known: dict[str, list[Hand]] = {"right": ["right"], "left": ["left"], "both": ["right", "left"]}
+    return [*dict.fromkeys(hand for hands in _list_of(text, known, "--hand") for hand in hands)]
+
+
+def _units(text: str) -> Units:
+    known: dict[str, Units] = {"mm": "mm", "in": "in"}
+    return _one_of(text, known, "--units")
+
+
+def _one_format(as_json: bool, as_csv: bool) -> None:
+    if as_json and as_csv:
+        raise UsageError("--csv: wanted none beside --json")
 
 
 def _reason(fault: OSError) -> str:

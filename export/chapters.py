@@ -171,7 +171,7 @@ def _load(job: Job) -> Iterator[Chapter]:
     if found.checks:
         worst = found.worst
         at = job.wording.length(float(found.schedule.s[worst.least]))
-        see += f" Least is {worst.name}, {worst.reserve[worst.least]:.2f} at s {at}."
+        see += f" Least is {worst.name}, {describe_strength.factor(float(worst.reserve.min()))} at s {at}."
     shown = _shown("reserves", "Reserve factors along the web", figures_load.reserves(job))
     notes = [f"Not checked: {what}." for what in found.unchecked]
     yield Chapter("reserves", "Load and reserves", see, shown, tables, describe_strength.lines(job), notes)

@@ -6,6 +6,7 @@ import io
 import logging
 from collections.abc import Iterator
 from contextlib import contextmanager
+from dataclasses import replace
 from typing import Literal, get_args
 
 import ezdxf
@@ -20,6 +21,7 @@ from .style import INKS, identity, one_line, title
 Array = NDArray[np.float64]
 Version = Literal["R12", "R2000", "R2010"]
 VERSIONS: tuple[Version, ...] = get_args(Version)
+SCALE = "DXF: 1 unit is 1 mm"
 _MILLIMETRES = 4  # $INSUNITS
 _ENTITIES = "  2\nENTITIES\n"  # start of the section that holds them
 _FIRST_HANDLE = 0x1000  # above those of the tables
@@ -93,7 +95,8 @@ def render(
     wing
         The wing's name, for the file's custom properties.
     version
-        R12 for old controllers. It knows no units, so that a comment says they are millimetres.
+        R12 for old controllers. It knows no units, so that a comment says they are millimetres, as does the lettering
+        below the drawing in every version.
     arcs
         Write arcs (bulges) where they replace many points, within `arcs.TOLERANCE`.
     kerf
@@ -111,6 +114,7 @@ def render(
     """
     if kerf:
         drawing = grown(drawing, kerf)
+    drawing = replace(drawing, labels=(*drawing.labels, _scale(drawing)))
     said = _said(drawing, wing, kerf)
     with _plainly():
         document = ezdxf.new(version, units=_MILLIMETRES)
@@ -130,6 +134,12 @@ def render(
         document.write(stream)
     head, tail = stream.getvalue().split(_ENTITIES)
     return document.encode("".join([head, _ENTITIES, *pen.lines, tail]))
+
+
+def _scale(drawing: Drawing) -> Label:
+    """What a unit is, in letters that show in any program, below all else."""
+    x0, y0, _, _ = drawing.bounds()
+    return Label(SCALE, round(x0, DIGITS), round(y0 - 7.0, DIGITS))
 
 
 def _frame(document: ezdxf.document.Drawing, drawing: Drawing) -> None:

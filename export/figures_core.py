@@ -17,7 +17,7 @@ _ROWS = 97
 
 
 def straight_cut(job: Job) -> Figure | None:
-    """For each core how far what the wire leaves stands proud of the skin's inside, and how far it falls short."""
+    """For each core how far what the wire leaves stands proud of skin and web, and how far it falls short."""
     if not job.cores:
         return None
     made, axes = figure(0.7 + 1.75 * len(job.cores), len(job.cores))
@@ -29,15 +29,10 @@ def straight_cut(job: Job) -> Figure | None:
 
 def _core(job: Job, ax: Axes, core: BuiltCore) -> None:
     grid = straight.grid(core.loft, core.region, rows=_ROWS)
-    first = 0
     for i, (a, b) in enumerate(pairwise(core.bounds)):
-        y, off, at_bounds = grid.off(a, b)
-        here = slice(first := int(np.searchsorted(grid.y, a, side="right")), first + len(y))
-        off = np.where(grid.inside[here], off, 0.0)
-        proud = np.maximum(np.maximum(off.max(axis=1), at_bounds.max(axis=1)), 0.0)
-        short = np.minimum(np.minimum(off.min(axis=1), at_bounds.min(axis=1)), 0.0)
+        y, (proud, short) = grid.extremes(a, b)
         at = in_units(job, np.concatenate([[a], y, [b]]))
-        for values, colour, dash, word in ((proud, BLUE, "-", "foam proud"), (short, RED, (0, (4, 2)), "foam short")):
+        for values, colour, dash, word in ((proud, BLUE, "-", "foam proud"), (-short, RED, (0, (4, 2)), "foam short")):
             ends = in_units(job, np.concatenate([[0.0], values, [0.0]]))
             ax.fill_between(at, ends, color=colour, alpha=0.22, linewidth=0.0)
             ax.plot(at, ends, color=colour, linestyle=dash, linewidth=1.3, label=None if i else word)

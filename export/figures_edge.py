@@ -124,37 +124,29 @@ def fill(job: Job) -> Figure:
             ax.plot(s, values, color=colour, linestyle=dash)
             named.append((float(values[-1]), side, colour))
         mass.fill_between(s, found[1], color=colour, alpha=0.15, linewidth=0.0)
-    for ax, named in zip((gap, mass), ends, strict=True):
+    for ax in (gap, mass):
         ax.set_ylim(0.0, 1.2 * max(ax.dataLim.y1, 1e-6))
+    ends[0] += _allowed(job, gap)
+    for ax, named in zip((gap, mass), ends, strict=True):
         name_ends(ax, named)
-    _allowed(job, gap)
     gap.set_ylabel(f"gap, {job.wording.length_unit}")
     mass.set_ylabel("filler in it, oz a foot" if job.record.units == "in" else "filler in it, g a metre")
     mass.set_xlabel(_along(job))
     return made
 
 
-def _allowed(job: Job, ax: Axes) -> None:
-    """The largest gap allowed, as a line, or in words where it is far above the figure."""
+def _allowed(job: Job, ax: Axes) -> list[tuple[float, str, str]]:
+    """The largest gap allowed, as a line with a name at its end, or in words where it is far above the figure."""
     limit = job.record.limits.max_gap if job.record.limits else None
     if limit is None:
-        return
+        return []
     most, high = float(in_units(job, limit)), ax.get_ylim()[1]
-    where, text = (
-        (most, "allowed") if most < high else (high, f"allowed: {job.wording.length(limit)}, above this figure")
-    )
     if most < high:
         ax.axhline(most, color=INK, linewidth=1.0, linestyle=(0, (1, 2)))
-    ax.annotate(
-        text,
-        (1.0, where),
-        xycoords=ax.get_yaxis_transform(),
-        ha="right",
-        va="bottom" if most < high else "top",
-        xytext=(0, 2),
-        textcoords="offset points",
-        color=QUIET,
-    )
+        return [(most, "allowed", QUIET)]
+    text = f"allowed: {job.wording.length(limit)}, above this figure"
+    ax.text(1.0, 1.0, text, transform=ax.transAxes, ha="right", va="top", color=QUIET)
+    return []
 
 
 def _along(job: Job) -> str:
@@ -228,9 +220,8 @@ def _rib(job: Job, ax: Axes, s: float) -> None:
 
 
 def _on(line: Array, z: float) -> Array:
-    """Place (x, z) at a height on a line through two places."""
-    share = (z - line[0, 1]) / (line[1, 1] - line[0, 1])
-    return np.asarray(line[0] + share * (line[1] - line[0]))
+    """Place (x, z) at a height on a line that rises."""
+    return np.array([np.interp(z, line[:, 1], line[:, 0]), z])
 
 
 def _edge(job: Job, ax: Axes, row: Row, side: Side) -> None:

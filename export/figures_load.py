@@ -8,10 +8,12 @@ from matplotlib.figure import Figure
 from matplotlib.ticker import FuncFormatter, MaxNLocator
 
 from ..geom.web import SIDES, Side
-from ..shop.describe_strength import cut_length
+from ..shop.describe_strength import factor
+from ..shop.describe_strips import cut_length
 from ..shop.job import Job
 from .plot import EDGES, INK, LINES, PAPER, figure, in_units, name_ends
 
+_LETTER = 0.015  # of the figure's width that a letter takes
 _MOST = 30.0  # reserve factors above this are cut off: they say no more
 
 
@@ -38,25 +40,21 @@ def strips(job: Job) -> Figure | None:
 
 
 def _whole(most: int) -> MaxNLocator:
-
     return MaxNLocator(nbins=min(most, 6), integer=True)
 
 
 def _bars(job: Job, ax: Axes, side: Side, colour: str) -> None:
-    layers = [layer for layer in job.layers if layer.side == side]
-    for layer in layers:
+    room = 0
+    for layer in (layer for layer in job.layers if layer.side == side):
         stop = float(in_units(job, layer.stop))
         ax.barh(layer.number - 0.5, stop, height=0.8, color=colour, alpha=0.28, edgecolor=colour, linewidth=0.6)
-        text, inwards = f"{layer.count} x {cut_length(job, layer)}", layer.stop > 0.6 * job.web.plane.length
+        text = f"{layer.count} x {cut_length(job, layer)}"  # beyond its end, where fewer layers are needed
         ax.annotate(
-            text,
-            (stop, layer.number - 0.5),
-            xytext=(-4 if inwards else 4, 0),
-            textcoords="offset points",
-            va="center",
-            ha="right" if inwards else "left",
-            fontsize=8,
+            text, (stop, layer.number - 0.5), xytext=(4, 0), textcoords="offset points", va="center", fontsize=8
         )
+        room = max(room, len(text))
+    length = float(in_units(job, job.web.plane.length))
+    ax.set_xlim(0.0, max(ax.get_xlim()[1], length / (1.0 - _LETTER * room)))
 
 
 def reserves(job: Job) -> Figure | None:
@@ -70,8 +68,8 @@ def reserves(job: Job) -> Figure | None:
     for check, (colour, dash) in sorted(looks, key=lambda pair: float(pair[0].reserve.min())):
         at = check.least
         ax.plot(s, np.where(check.reserve < 10.0 * _MOST, check.reserve, np.nan), color=colour, linestyle=dash)
-        ax.plot(s[at], check.reserve[at], "o", color=colour, markerfacecolor=PAPER, markersize=4.5)
-        ends.append((_MOST, f"{check.name} {check.reserve[at]:.2f}", colour))
+        ax.plot(s[at], min(check.reserve[at], 10.0 * _MOST), "o", color=colour, markerfacecolor=PAPER, markersize=4.5)
+        ends.append((_MOST, f"{check.name} {factor(float(check.reserve[at]))}", colour))
     ax.set_yscale("log")
     least = min(float(check.reserve.min()) for check in found.checks)
     ax.set_ylim(min(0.8, 0.9 * least), _MOST)

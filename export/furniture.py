@@ -35,9 +35,9 @@ class Furniture(Marks):
         super().__init__(canvas)
         self._layout = layout
         self._tile = tile
-        wide, high = layout.page.usable
+        x0, y0, x1, y1 = tile.window
         self._left, self._bottom = MARGINS[:2]
-        self._right, self._top = wide - MARGINS[2], high - MARGINS[3]
+        self._right, self._top = self._left + x1 - x0, self._bottom + y1 - y0
         self._seam = self._right - OVERLAP, self._bottom + OVERLAP
         row, column = tile.row, tile.column
         self._before, self._after = layout.find(row, column - 1), layout.find(row, column + 1)

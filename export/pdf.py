@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import io
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
 
 import numpy as np
 import shapely
@@ -17,8 +18,9 @@ from ..shop.stock import CHECK_BARS
 from ..shop.units import MM_PER_INCH, Units
 from .furniture import LEAST_WINDOW, MARGINS, Furniture
 from .marks import CAP, begin, in_type, open_file
+from .room import Room, own_pages, paragraphs
 from .style import INKS, identity, one_line, title
-from .tiles import Paper, Shapes, Tile, clip, plan
+from .tiles import Layout, Paper, Shapes, Tile, clip, plan
 
 _ROUND = 20.0  # sides of a quarter of a hole of radius 1 mm, four times as many for 16: within a thousandth of a mm
 
@@ -60,6 +62,8 @@ def render(drawing: Drawing, how: Print, *, wing: str = "") -> bytes:
 def paged(drawing: Drawing, how: Print, *, wing: str = "") -> tuple[bytes, int]:
     """`drawing` as a PDF file of as few pages as will hold it at full size, and how many these are.
 
+    Its title and notes go where these pages have room for them, on one page, else on a page of their own.
+
     Parameters
     ----------
     drawing
@@ -80,26 +84,66 @@ def paged(drawing: Drawing, how: Print, *, wing: str = "") -> tuple[bytes, int]:
         If the paper is too small to hold what every page needs.
     """
     pen = _PdfPen()
-    drawing.play(pen)
-    shapes = np.array(pen.shapes, dtype=object)
-    layout = plan(
-        shapes[~np.array(pen.frames, dtype=bool)], how.paper, margins=MARGINS, least=LEAST_WINDOW, printed=how.printed
-    )
+    replace(drawing, labels=tuple(label for label in drawing.labels if not label.paragraph)).play(pen)
+    layout, notes, apart = _laid_out(drawing, pen, how)
+    for label in notes:
+        pen.label(label)
+    sheets = [(layout, tile, pen) for tile in layout.tiles] + apart
     buffer = io.BytesIO()
     canvas = open_file(buffer, title(drawing, wing), identity(drawing))
     who = identity(drawing) + (", print corrected" if how.corrected else "")
-    for number, tile in enumerate(layout.tiles, start=1):
+    for number, (belongs, tile, what) in enumerate(sheets, start=1):
         begin(canvas, layout.page)
-        _show(canvas, tile, pen, shapes)
-        furniture = Furniture(canvas, layout, tile)
+        shapes = np.array(what.shapes, dtype=object)
+        _show(canvas, tile, what, shapes)
+        furniture = Furniture(canvas, belongs, tile)
         furniture.frame()
         furniture.register(shapes)
         furniture.seams()
         furniture.bars(how.units, how.corrected)
-        furniture.foot(one_line(drawing.title), one_line(wing), who, f"page {number} of {len(layout.tiles)}")
+        furniture.foot(one_line(drawing.title), one_line(wing), who, f"page {number} of {len(sheets)}")
         canvas.showPage()
     canvas.save()
-    return buffer.getvalue(), len(layout.tiles)
+    return buffer.getvalue(), len(sheets)
+
+
+def _laid_out(
+    drawing: Drawing, pen: _PdfPen, how: Print
+) -> tuple[Layout, Sequence[Label], list[tuple[Layout, Tile, _PdfPen]]]:
+    """The sheets for what the pen holds, the lines of title and notes on them, and pages for notes that are apart."""
+    said, texts = [label for label in drawing.labels if label.paragraph], paragraphs(drawing.labels)
+    layouts = _plan(pen, how)
+    if not said:
+        return layouts[0], (), []
+    found = Room(pen.marks(), layouts).find(texts)
+    if found is not None:
+        return *found, []
+    both = _PdfPen()
+    drawing.play(both)
+    for layout in _plan(both, how):  # as it stands in the drawing, if that needs no more: off a roll
+        if len(layout.tiles) <= len(layouts[0].tiles) and _on_one(layout, said):
+            return layout, said, []
+    layout, apart = layouts[0], []
+    x0, y0, x1, y1 = layout.tiles[0].window
+    for labels in own_pages(texts, x1 - x0, y1 - y0):
+        tile = Tile(0, 0, (0.0, y0 - y1, x1 - x0, 0.0), "notes")
+        alone = _PdfPen()
+        for label in labels:
+            alone.label(label)
+        apart.append((Layout(layout.page, (tile,)), tile, alone))
+    return layout, (), apart
+
+
+def _plan(pen: _PdfPen, how: Print) -> list[Layout]:
+    texts = [label.box().bounds for label in pen.labels]
+    return plan(pen.marks(), how.paper, margins=MARGINS, least=LEAST_WINDOW, printed=how.printed, texts=texts)
+
+
+def _on_one(layout: Layout, labels: Sequence[Label]) -> bool:
+    """Whether one sheet alone shows all of the labels."""
+    x0, y0, x1, y1 = shapely.union_all([label.box() for label in labels]).bounds
+    alone = map(layout.alone, layout.tiles)
+    return any(a <= x0 and b <= y0 and x1 <= c and y1 <= d for a, b, c, d in alone)
 
 
 class _PdfPen:
@@ -116,6 +160,12 @@ class _PdfPen:
         self.shapes.append(shape)
         self.roles.append(role)
         self.frames.append(frame)
+
+    def marks(self) -> Shapes:
+        """All that asks for paper: not the frames."""
+        return np.array(
+            [shape for shape, frame in zip(self.shapes, self.frames, strict=True) if not frame], dtype=object
+        )
 
     def stroke(self, stroke: Stroke) -> None:
         shape = shapely.LinearRing if stroke.closed else shapely.LineString

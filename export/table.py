@@ -6,7 +6,7 @@ import csv
 import io
 import json
 import math
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import asdict, dataclass, replace
 from typing import TYPE_CHECKING, Any
 
@@ -30,6 +30,8 @@ WEIGHED_NOTE = (
 _SHORT = {"max_gap": "gap", "max_bevel": "bevel", "min_thickness": "thin", "max_mass": "heavy"}
 _SHORT |= {"core in shear": "core", "facings in shear": "facing"}  # their names among the checks of strength
 
+_SIGNS = tuple("0123456789.+-\N{MINUS SIGN}")  # what a figure may begin with
+
 
 @dataclass(frozen=True)
 class Table:
@@ -49,11 +51,15 @@ class Table:
         look: dict[str, Any] = {"box": box.SIMPLE_HEAD, "pad_edge": False, "padding": (0, 1, 0, 0)}
         shown = RichTable(title=Text(self.title), title_justify="left", **look)
         for i, head in enumerate(self.heads):
-            words = all(not any(c.isdigit() for c in row[i]) for row in self.rows)
-            shown.add_column(head, justify="left" if words else "right", no_wrap=True)
+            figures = any(_is_figure(row[i]) for row in self.rows)
+            shown.add_column(head, justify="right" if figures else "left", no_wrap=True)
         for i, row in enumerate(self.rows):
             shown.add_row(*map(Text, row), style="bold" if i in self.marked else None)
         return shown
+
+
+def _is_figure(text: str) -> bool:
+    return text[:1] in _SIGNS and ", " not in text
 
 
 def to_json(record: object) -> str:
@@ -153,13 +159,11 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
     heads = ("", "sheet", "edge", "cant", "runs", "foam", "filler", "other", "total", "gap", "bevel", "swing", "limits")
     rows: list[tuple[str, ...]] = []
     marked = set()
-    for c in found:
+    for c, edge in _edges_joined(found):
         tilt = "" if math.isnan(c.cant) else degrees(c.cant)
-        start = ("→" if c is verdict.chosen else "", words.plain(c.thickness), c.edge, tilt)
+        start = ("→" if c is verdict.chosen else "", words.plain(c.thickness), edge, tilt)
         if c.outside:
-            refused = (*start, *[""] * 8, c.refused or "")
-            alike = rows and rows[-1][1::2] == refused[1::2]  # the same sheet and cant, whatever the edge
-            rows[-1:] = [(*refused[:2], "any", *refused[3:])] if alike else [*rows[-1:], refused]
+            rows.append((*start, *[""] * 8, c.refused or ""))
             continue
         if c is verdict.chosen:
             marked.add(len(rows))
@@ -179,6 +183,24 @@ def weighed(job: Job, found: Sequence[Candidate], verdict: Verdict) -> Table:
         )
     title = f"{job.record.name}: what a web costs (lengths in {job.wording.length_unit}, masses in {unit})"
     return Table(title, heads, tuple(rows), frozenset(marked))
+
+
+def _edges_joined(found: Sequence[Candidate]) -> Iterator[tuple[Candidate, str]]:
+    """The candidates with their edges; one for "any" where a sheet at a cant is refused alike whatever its edge."""
+    alike: dict[tuple[float, float | None], list[Candidate]] = {}
+    for c in found:
+        alike.setdefault(_sheet_and_cant(c), []).append(c)
+    for c in found:
+        first, *others = alike[_sheet_and_cant(c)]
+        if others and c.outside and all(other.refused == first.refused for other in others):
+            if c is first:
+                yield c, "any"
+        else:
+            yield c, c.edge
+
+
+def _sheet_and_cant(candidate: Candidate) -> tuple[float, float | None]:
+    return candidate.thickness, None if math.isnan(candidate.cant) else candidate.cant
 
 
 def _verdict(job: Job, candidate: Candidate) -> str:

@@ -2,13 +2,12 @@
 
 from __future__ import annotations
 
-from ..shop.describe_strength import cut_length, places
+from ..shop.describe_strength import factor, places
+from ..shop.describe_strips import cut_length
 from ..shop.job import Job
 from ..shop.strength import Check, Strength
 from ..shop.strips import Layer
 from .table import Table
-
-_MOST = 99.0  # a larger reserve factor says no more
 
 
 def tables(job: Job) -> list[Table]:
@@ -52,14 +51,10 @@ def _along(job: Job, found: Strength) -> Table:
 def _reserves(job: Job, found: Strength) -> Table:
     put, at = job.wording.column, found.schedule
     rows = tuple(
-        (put(at.s[i], 1), put(at.y[i], 1), *(_factor(float(check.reserve[i])) for check in found.checks))
+        (put(at.s[i], 1), put(at.y[i], 1), *(factor(float(check.reserve[i])) for check in found.checks))
         for i in places(found)
     )
     return Table("reserve factors at ultimate load", ("s", "rib y", *(check.name for check in found.checks)), rows)
-
-
-def _factor(reserve: float) -> str:
-    return f">{_MOST:g}" if reserve > _MOST else f"{reserve:.2f}"
 
 
 def _checks(job: Job, found: Strength) -> Table:
@@ -68,15 +63,13 @@ def _checks(job: Job, found: Strength) -> Table:
     def line(check: Check) -> tuple[str, ...]:
         i = check.least
         say = job.wording.force if check.unit == "N" else job.wording.stress
-        demand = float(check.demand[i])
-        allowed = demand * float(check.reserve[i])
         return (
             check.name,
-            _factor(float(check.reserve[i])),
+            factor(float(check.reserve[i])),
             put(at.s[i], 1),
             put(at.y[i], 1),
-            say(demand),
-            say(allowed),
+            say(float(check.demand[i])),
+            say(float(check.allowed[i])),
             check.origin,
         )
 

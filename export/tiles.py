@@ -24,6 +24,7 @@ Shapes = NDArray[Any]  # of shapely geometries
 OVERLAP = 10.0  # width of the glue strip, mm
 _PAD = 1.0  # white between the drawing and the outermost windows, mm
 _SHIFTS = (0.5, 0.0, 1.0, 0.25, 0.75)  # where in its play the grid may lie, centred first
+_FINE = (*_SHIFTS, 0.125, 0.375, 0.625, 0.875)  # the same where it has seams one way only
 _SLIVER = 1e-3  # what stands this little over a sheet's edge is not worth a sheet, mm
 _LONGEST = 5080.0  # of a page cut off a roll: 14400 units (ISO 32000-1, annex C), mm
 
@@ -87,16 +88,19 @@ class Tile:
     row: int
     column: int
     window: Box
+    title: str = ""
 
     @property
     def name(self) -> str:
-        """Row and column: A1, A2, ... Z1, AA1.
+        """Row and column, A1, A2, ... Z1, AA1; the title of a sheet that belongs to no others.
 
         Examples
         --------
         >>> Tile(1, 2, (0, 0, 1, 1)).name, Tile(26, 0, (0, 0, 1, 1)).name
         ('B3', 'AA1')
         """
+        if self.title:
+            return self.title
         letters, rest = "", self.row + 1
         while rest:
             rest, letter = divmod(rest - 1, 26)
@@ -123,15 +127,29 @@ class Layout:
         """Paper that is used, mm^2."""
         return len(self.tiles) * self.page.wide * self.page.high
 
+    def alone(self, tile: Tile) -> Box:
+        """Return the part of a tile's window that no neighbour shows as well."""
+        row, column = tile.row, tile.column
+        beside = (row, column - 1), (row + 1, column), (row, column + 1), (row - 1, column)
+        left, low, right, top = (OVERLAP if self.find(*place) else 0.0 for place in beside)
+        x0, y0, x1, y1 = tile.window
+        return x0 + left, y0 + low, x1 - right, y1 - top
+
     def find(self, row: int, column: int) -> Tile | None:
         """Return the sheet at that place, if it is one of those needed."""
         return next((t for t in self.tiles if (t.row, t.column) == (row, column)), None)
 
 
 def plan(
-    shapes: Shapes, paper: Paper, *, margins: Box, least: tuple[float, float], printed: tuple[float, float] = (1.0, 1.0)
-) -> Layout:
-    """Find the upright or sideways grid that needs the fewest sheets, then the least paper.
+    shapes: Shapes,
+    paper: Paper,
+    *,
+    margins: Box,
+    least: tuple[float, float],
+    printed: tuple[float, float] = (1.0, 1.0),
+    texts: Sequence[Box] = (),
+) -> list[Layout]:
+    """Find the upright or sideways grids that need the fewest sheets, then the least paper.
 
     Parameters
     ----------
@@ -145,6 +163,13 @@ def plan(
         Smallest window that will do: width and height in mm.
     printed
         How long the printer makes what should be 1 mm, across the sheet and along it.
+    texts
+        Bounds of the lettering.
+
+    Returns
+    -------
+    list of Layout
+        All that need as little paper as the best, the one whose seams cut least of the texts first.
 
     Raises
     ------
@@ -157,14 +182,32 @@ def plan(
     around = margins[0] + margins[2], margins[1] + margins[3]
     lengths = [max(size + 2.0 * _PAD, low) + m for size, low, m in zip((x1 - x0, y1 - y0), least, around, strict=True)]
     pages = _pages(paper, lengths, printed)
+    boxes = np.array(texts, dtype=float).reshape(-1, 4)
     layouts = []
     for page in pages if x1 - x0 > y1 - y0 else pages[::-1]:
         window = page.usable[0] - around[0], page.usable[1] - around[1]
         if window[0] >= least[0] and window[1] >= least[1]:
-            layouts += [Layout(page, _needed(tree, grid)) for grid in _grids(bounds, window)]
+            layouts += [Layout(page, _needed(tree, grid)) for grid in _grids(bounds, window, least, boxes)]
     if not layouts:
         raise PaperError(_too_small(paper, least[0] + around[0], least[1] + around[1]))
-    return min(layouts, key=lambda layout: (len(layout.tiles), layout.area))
+    few = min((len(layout.tiles), layout.area) for layout in layouts)
+    return sorted((t for t in layouts if (len(t.tiles), t.area) == few), key=lambda layout: _cut(layout, boxes))
+
+
+def _cut(layout: Layout, texts: NDArray[np.float64]) -> float:
+    """How much lettering, in mm of its length, the seams between a layout's sheets run through."""
+    places = {(t.row, t.column) for t in layout.tiles}
+    long = np.max(texts[:, 2:] - texts[:, :2], axis=1)
+    through = np.zeros(len(texts), dtype=bool)
+    for tile in layout.tiles:
+        x0, y0, x1, y1 = tile.window
+        across = (texts[:, 0] < x1) & (texts[:, 2] > x0)
+        upright = (texts[:, 1] < y1) & (texts[:, 3] > y0)
+        if (tile.row, tile.column - 1) in places:
+            through |= (texts[:, 0] < x0) & (texts[:, 2] > x0) & upright
+        if (tile.row - 1, tile.column) in places:
+            through |= (texts[:, 1] < y1) & (texts[:, 3] > y1) & across
+    return float(long[through].sum())
 
 
 def _pages(paper: Paper, lengths: Sequence[float], printed: tuple[float, float]) -> tuple[Page, Page]:
@@ -182,23 +225,83 @@ def _too_small(paper: Paper, wide: float, high: float) -> str:
     return f"paper {paper.name}: wanted at least {wide:g} x {high:g} mm, got {paper.width:g} x {paper.height:g} mm"
 
 
-def _grids(bounds: Box, window: tuple[float, float]) -> Iterator[list[Tile]]:
+def _grids(
+    bounds: Box, window: tuple[float, float], least: tuple[float, float], texts: NDArray[np.float64]
+) -> Iterator[list[Tile]]:
     """Grids of as few rows and columns as cover `bounds`, shifted within the play that is left."""
     x0, y0, x1, y1 = bounds
-    step = window[0] - OVERLAP, window[1] - OVERLAP
-    columns = max(1, int(np.ceil((x1 - x0 - OVERLAP) / step[0])))
-    rows = max(1, int(np.ceil((y1 - y0 - OVERLAP) / step[1])))
-    play = columns * step[0] + OVERLAP - (x1 - x0), rows * step[1] + OVERLAP - (y1 - y0)
-    for down, across in product(_SHIFTS, _SHIFTS):
-        left, top = round(x0 - across * play[0], 3), round(y1 + down * play[1], 3)
+    upside = -texts[:, [3, 1]]  # rows run down
+    long = np.max(texts[:, 2:] - texts[:, :2], axis=1)
+    columns = _Axis(x0, x1, window[0], least[0], texts[:, [0, 2]], long)
+    rows = _Axis(-y1, -y0, window[1], least[1], upside, long)
+    few = columns.count == 1 or rows.count == 1
+    for down, across in product(*([axis.windows(shift) for shift in axis.shifts(few)] for axis in (rows, columns))):
         yield [
-            Tile(
-                row,
-                column,
-                (at := left + column * step[0], (to := top - row * step[1]) - window[1], at + window[0], to),
-            )
-            for row, column in product(range(rows), range(columns))
+            Tile(row, column, (x, -y_end, x_end, -y))
+            for row, (y, y_end) in enumerate(down)
+            for column, (x, x_end) in enumerate(across)
         ]
+
+
+class _Axis:
+    """Where the sheets of a grid begin and end one way, from `low` on, with seams where they cut little lettering.
+
+    Every seam has the same play. A sheet may show less than it could, so that the next begins earlier: of the seams
+    that come in question those are taken that cut least, by dynamic programming over places 1 mm apart.
+    """
+
+    def __init__(
+        self,
+        low: float,
+        high: float,
+        window: float,
+        least: float,
+        texts: NDArray[np.float64],
+        long: NDArray[np.float64],
+    ) -> None:
+        self._window, step = window, window - OVERLAP
+        self.count = max(1, int(np.ceil((high - low - OVERLAP) / step)))
+        self._play = self.count * step + OVERLAP - (high - low)
+        self._first = low - self._play + step * np.arange(self.count)  # the earliest that each sheet may begin
+        self._later = np.append(np.arange(0.0, self._play), self._play)
+        self._narrower = int(step - least + OVERLAP)  # mm by which a sheet may be
+        places = self._first[1:, None] + self._later
+        self._cuts = _weight(texts[:, 0], long, places, "left") - _weight(texts[:, 1], long, places, "right")
+
+    def shifts(self, fine: bool) -> tuple[float, ...]:
+        """Shares of the play that are worth trying; without a seam none, so that all free room is on one side."""
+        return (0.0,) if self.count == 1 else _FINE if fine else _SHIFTS
+
+    def windows(self, shift: float) -> list[tuple[float, float]]:
+        """Both ends of what each sheet shows, the first beginning that share of the play before `low`, or nearly so."""
+        wanted = (1.0 - shift) * self._play
+        stray = 1e-6 * (self._later - wanted) ** 2  # of what cuts as little, the most even
+        best = [stray]
+        for cuts in self._cuts:
+            best.append(cuts + stray + self._least_from(best[-1]))
+        at = [int(best[-1].argmin())]
+        for before in best[-2::-1]:  # a seam lies no more than one step after the one before it
+            reach = before[at[-1] : at[-1] + self._narrower + 1]
+            at.append(at[-1] + int(reach.argmin()))
+        later = wanted if self.count == 1 else self._later[at[::-1]]
+        starts = np.round(self._first + later, DIGITS)
+        ends = np.append(starts[1:] + OVERLAP, starts[-1] + self._window)
+        return list(zip(starts.tolist(), ends.tolist(), strict=True))
+
+    def _least_from(self, values: NDArray[np.float64]) -> NDArray[np.float64]:
+        """Least of the values from each place to as far on as a sheet may be narrower."""
+        wide = min(self._narrower, len(values) - 1) + 1
+        padded = np.append(values, np.full(wide - 1, np.inf))
+        return np.asarray(np.lib.stride_tricks.sliding_window_view(padded, wide).min(axis=1))
+
+
+def _weight(
+    ends: NDArray[np.float64], long: NDArray[np.float64], places: NDArray[np.float64], side: Literal["left", "right"]
+) -> NDArray[np.float64]:
+    """Length of all texts with an end before each place."""
+    order = ends.argsort(kind="stable")
+    sums = np.append(0.0, long[order].cumsum())
+    return np.asarray(sums[np.searchsorted(ends[order], places, side=side)])
 
 
 def _needed(tree: shapely.STRtree, grid: Sequence[Tile]) -> tuple[Tile, ...]:

@@ -1,7 +1,8 @@
-"""Dividing a core's span into bays, so that the largest straight-cut error of any of them is least.
+"""Dividing a core's span into bays, so that the largest straight-cut error of any of them is small.
 
-Bounds are first chosen among even places by dynamic programming, which needs no luck with the error's shape, and then
-moved until the bays' errors are equal. Lengths in mm.
+Bounds are first chosen among about a hundred places by dynamic programming: whatever the error's shape, no other choice
+among these is better. They are then moved until no small move lowers the largest error. Bounds between the places may
+still be better: by a per cent or two where the washout goes to and fro. Lengths in mm.
 """
 
 from __future__ import annotations
@@ -20,7 +21,7 @@ Parts = Callable[[float, float], Array]
 
 _NONE = 1e-9  # mm, no error at all
 _MOVES = 60
-_PLACES = 49
+_PLACES = 97
 _NEAR = 0.02  # mm, how near a bound is brought
 
 
@@ -43,8 +44,8 @@ class Divider:
     parts
         Straight-cut errors (k,) of a bay from a to b, the largest of which counts: one for each part of a bay, so that
         it is seen which of them a move of a bound makes worse.
-    rough
-        The same from fewer samples, for the first choice.
+    table
+        The largest of them (k, k), roughly, for bays from each of k places to each beyond it; infinite elsewhere.
     longest
         No bay is longer.
     spread
@@ -54,12 +55,12 @@ class Divider:
 
     ends: tuple[float, float]
     parts: Parts
-    rough: Parts
+    table: Callable[[Array], Array]
     spread: Callable[[int], Array]
     longest: float = float("inf")
 
     def into(self, count: int) -> tuple[float, ...]:
-        """Bounds (count + 1) of `count` bays whose largest error is least.
+        """Bounds (count + 1) of `count` bays whose largest error is small, as told above.
 
         Raises
         ------
@@ -122,11 +123,7 @@ class Divider:
             size *= 2
         if size not in self._tables:
             y = self.spread(size)
-            out = np.full((len(y), len(y)), np.inf)
-            for i in range(len(y)):
-                for j in range(i + 1, len(y)):
-                    if y[j] - y[i] <= self.longest * (1.0 + 1e-9):
-                        out[i, j] = self.rough(float(y[i]), float(y[j])).max()
+            out = np.where(y - y[:, None] <= self.longest * (1.0 + 1e-9), self.table(y), np.inf)
             self._tables[size] = y, out
         return self._tables[size]
 

@@ -9,7 +9,7 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from .seat import Along, Cut
+from .seat import Along, Cut, quadratic
 from .web import Plane
 
 Array = NDArray[np.float64]
@@ -18,8 +18,9 @@ FACES: tuple[FaceName, FaceName] = ("front", "rear")
 
 REGISTER_SIZES = (3.0, 2.0, 1.5, 1.0, 0.6, 0.3, 0.1)  # mm, diameters of register holes; the last are pricked
 
-_FINE = np.linspace(0.0, 1.0, 9)[:-1]  # places in a cell at which its quadratic is drawn
+_FINE = quadratic(np.linspace(0.0, 1.0, 9)[:-1])  # places in a cell at which its quadratic is drawn
 _SPARE = 10.0  # mm by which an edge is carried on before the rib planes cut it
+_CLOSE = 1e-6  # mm
 
 
 @dataclass(frozen=True)
@@ -147,7 +148,7 @@ def _clear_of(s: float, keep_off: tuple[float, float] | None, start: float, stop
 
 def _edge_line(web: Plane, cut: Cut, n: Array) -> Array:
     """(k, 2) one edge at the layer `n` (C, 3), cut off by the rib planes at both ends."""
-    line = np.column_stack([_fine(v).ravel() for v in (cut.survey.s, cut.at(n))])
+    line = np.column_stack([(v @ _FINE).ravel() for v in (cut.survey.s, cut.at(n))])
     last = [cut.survey.s[-1, 2], cut.at(n)[-1, 2]]
     line = np.concatenate([line, [last]])
     line = np.concatenate([[_carried(line[1], line[0])], line, [_carried(line[-2], line[-1])]])
@@ -157,13 +158,6 @@ def _edge_line(web: Plane, cut: Cut, n: Array) -> Array:
     return line
 
 
-def _fine(cells: Array) -> Array:
-    """(C, 8) values along each cell of the quadratic through its three places."""
-    a, b, c = (v[:, None] for v in cells.T)
-    x = _FINE
-    return np.asarray(a * (2 * x - 1) * (x - 1) + 4 * b * x * (1 - x) + c * x * (2 * x - 1))
-
-
 def _carried(before: Array, end: Array) -> Array:
     """A point `_SPARE` mm beyond `end`, straight on from `before`."""
     step = end - before
@@ -171,11 +165,10 @@ def _carried(before: Array, end: Array) -> Array:
 
 
 def _cut_off(line: Array, past: Array) -> Array:
-    """The part of a line where `past` is positive, with the crossing put in."""
+    """The part of a line where `past` is positive, with the crossing put in for points that lie `_CLOSE` to it."""
     inside = past > 0.0
     crossing = int(np.flatnonzero(inside[1:] != inside[:-1])[0])
     share = past[crossing] / (past[crossing] - past[crossing + 1])
     point = line[crossing] + share * (line[crossing + 1] - line[crossing])
-    if inside[crossing + 1]:
-        return np.concatenate([[point], line[crossing + 1 :]])
-    return np.concatenate([line[: crossing + 1], [point]])
+    kept = line[past > _CLOSE]
+    return np.concatenate([[point], kept] if inside[crossing + 1] else [kept, [point]])

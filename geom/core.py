@@ -13,13 +13,14 @@ from numpy.typing import NDArray
 from .loft import Loft
 from .profile import Profile, face_line, profile, symmetric
 from .seat import Along
-from .web import Plane
+from .web import SIDES, Plane, edge
 
 Array = NDArray[np.float64]
 Kind = Literal["nose", "aft", "whole"]
 
 _JUMP = 1e-5  # of a slope, no kink below it
 _RING = 81  # points along each side of a section of the core
+_APART = 2  # digits, mm: ribs nearer to each other are one
 
 
 class NoFoam(ValueError):
@@ -41,7 +42,8 @@ class Region:
     ends
         Rib planes (y1, y2).
     web, face
-        The web's plane, and n of the core's own face beside it along s (bond line taken off); neither for ``whole``.
+        The web's plane, and n of the core's own face beside it along s (facing and bond line taken off); neither for
+        ``whole``.
     to
         Chord fraction at which it stops short of the trailing edge; 1 where it does not.
     least
@@ -60,8 +62,13 @@ class Region:
         """Parameter t of the chord fraction it stops at."""
         return float(np.sqrt(self.to))
 
+    @property
+    def thickened(self) -> bool:
+        """Whether the web is thicker at one place beside it than at another, so that its face is not flat."""
+        return self.face is not None and bool(np.ptp(self.face.value) > 0.0)
+
     def face_at(self, y: float) -> Array:
-        """(2, 2) two places (x, z), the lower one first, of the core's face beside the web in the rib plane `y`."""
+        """(k, 2) the line (x, z), lower end first, of the core's face beside the web in the rib plane `y`."""
         if self.web is None or self.face is None:
             raise ValueError("a whole core has no face beside the web")
         return face_line(self.web, self.face, y)
@@ -105,8 +112,7 @@ def _corner(of: Profile, line: Array, side: float) -> float:
     """Where (t, 0 and up) the upper (1) or lower (-1) side crosses the line of a face."""
     t = of.t[len(of.t) // 2 :]
     points = of.at(side * t)
-    along = line[1] - line[0]
-    off = (points - line[0]) @ np.array([along[1], -along[0]])  # positive aft of the line
+    off = points[:, 0] - np.interp(points[:, 1], line[:, 1], line[:, 0])  # positive aft of the line
     turns = np.flatnonzero((off[:-1] < 0.0) & (off[1:] >= 0.0))
     if not turns.size:
         raise NoFoam(of.y, f"the web's face misses the {'upper' if side > 0 else 'lower'} side of the section")
@@ -143,7 +149,10 @@ class Mesh:
 
 
 def solid(loft: Loft, region: Region, *, longest: float = 25.0) -> Mesh:
-    """The core as wanted, in sections no further apart than `longest` mm, and one wherever the loft may have a kink."""
+    """The core as wanted, in sections no further apart than `longest` mm, and one at each of its `kinks`.
+
+    From skin to skin its face beside the web is straight in every section.
+    """
     marks = np.concatenate([region.ends[:1], kinks(loft, region), region.ends[1:]])
     pieces = [np.linspace(a, b, max(1, int(np.ceil((b - a) / longest))), endpoint=False) for a, b in pairwise(marks)]
     places = np.append(np.concatenate(pieces), region.ends[1])
@@ -167,10 +176,27 @@ def _walls(rows: int, around: int) -> NDArray[np.intp]:
 
 
 def kinks(loft: Loft, region: Region) -> Array:
-    """Rib planes inside a core's ends where the slope of outer surface or skin along the span jumps."""
-    y = loft.knots[(loft.knots > region.ends[0] + 1e-6) & (loft.knots < region.ends[1] - 1e-6)]
+    """Rib planes inside a core's ends where it has a kink along the span.
+
+    There the slope of the outer surface or of the skin's thickness jumps, or a corner of the face beside the web meets
+    the skin.
+    """
+    y = loft.knots[_inside(region, loft.knots)]
     t = np.linspace(-1.0, 1.0, 9)[:, None]
     before = np.nextafter(y, -np.inf)
     jump = loft.outer(t, y, y)[2] - loft.outer(t, y, before)[2]
     skin = loft.skin(y, y)[1] - loft.skin(y, before)[1]
-    return np.asarray(y[(np.abs(jump).max(axis=(0, 2)) > _JUMP) | (np.abs(skin) > _JUMP)])
+    return np.union1d(y[(np.abs(jump).max(axis=(0, 2)) > _JUMP) | (np.abs(skin) > _JUMP)], turns(loft, region))
+
+
+def _inside(region: Region, y: Array) -> NDArray[np.bool_]:
+    return np.asarray((y > region.ends[0] + 1e-6) & (y < region.ends[1] - 1e-6))
+
+
+def turns(loft: Loft, region: Region) -> Array:
+    """Rib planes inside a core's ends in which a corner of its face beside the web meets a skin."""
+    if region.web is None or region.face is None or not region.thickened:
+        return np.empty(0)
+    s, n = region.face.s, region.face.value
+    y = np.stack([region.web.point(s, edge(loft, region.web, s, n, side).h, n)[:, 1] for side in SIDES])
+    return np.round(y[_inside(region, y)], _APART)

@@ -60,7 +60,11 @@ class Hole:
 
 @dataclass(frozen=True)
 class Label:
-    """A line of text: baseline from (x, y) at `angle` degrees, capitals `height` mm tall."""
+    """A line of text: baseline from (x, y) at `angle` degrees, capitals `height` mm tall.
+
+    Lines of the drawing's title and notes are numbered by `paragraph`, from 1: they belong to no place of the shape,
+    so that a printed page may set them elsewhere. All other lines have 0.
+    """
 
     text: str
     x: float
@@ -69,6 +73,7 @@ class Label:
     angle: float = 0.0
     anchor: Anchor = "start"
     role: Role = Role.NOTE
+    paragraph: int = 0
 
     def place(self, points: ArrayLike) -> NDArray[np.float64]:
         """Points (k, 2) of a line of text that starts at (0, 0) along +x, to where the label stands."""

@@ -15,13 +15,14 @@ from numpy.typing import ArrayLike, NDArray
 
 from .blank import FaceName
 from .loft import Loft
+from .places import crossings, spread
 from .seat import Along
-from .web import Edge, Plane, Side, edge
+from .web import Plane, Side, edge
 
 Array = NDArray[np.float64]
 
 _FINE = 400  # places along a leg where the room for it is in doubt
-_NEAR = 1e-6  # mm either side of a place, to tell the slopes of a face before and after a corner
+_TURN = 1e-9  # 1 - cos of the least turn of a line that is a kink
 
 
 def bend_allowance(bend: float, inner_radius: float, thickness: float, k: float = 0.5) -> float:
@@ -87,10 +88,11 @@ class Flange:
     ----------
     side, face, shape
         Which edge and face, and how it is laid up.
-    s, angle
-        (2 k,) places, each twice, and the angle that web and skin ask for just before and just after.
-    places, fold, towards
-        (k,) places s, (k, 2) the fold line there in the pattern, and (k, 2) the direction across it to the skin leg.
+    places, fold
+        (k,) places s, one wherever skin or face has a kink, and (k, 2) the fold line there in the pattern.
+    s, angle, towards
+        (2 k,) the same places, each twice; the angle that web and skin ask for just before and just after; and (2 k, 2)
+        the direction across the fold to the skin leg.
     outline
         (m, 2) the trimmed pattern, first point not repeated.
     """
@@ -98,10 +100,10 @@ class Flange:
     side: Side
     face: FaceName
     shape: Shape
-    s: Array
-    angle: Array
     places: Array
     fold: Array
+    s: Array
+    angle: Array
     towards: Array
     outline: Array
 
@@ -139,7 +141,8 @@ class Flange:
     def mark(self, s: float, reach: tuple[float, float]) -> Array:
         """(2, 2) a line across the fold at s, from and to a distance on the skin leg's side (negative: the web's)."""
         point, across = (
-            np.array([np.interp(s, self.places, v[:, i]) for i in range(2)]) for v in (self.fold, self.towards)
+            np.array([np.interp(s, at, v[:, i]) for i in range(2)])
+            for at, v in ((self.places, self.fold), (self.s, self.towards))
         )
         return np.asarray(point + np.array(reach)[:, None] * across)
 
@@ -152,7 +155,7 @@ class TooWide(ValueError):
         self.s, self.leg, self.room = s, leg, room
 
 
-def flange(
+def lay(
     loft: Loft,
     web: Plane,
     side: Side,
@@ -174,13 +177,22 @@ def flange(
     longest
         Greatest distance between places, mm.
     """
-    s = _places(n, ends, longest)
-    corner = edge(loft, web, s, n(s), side)
-    slopes = np.stack([(n(s + d) - n(s + d - _NEAR)) / _NEAR for d in (0.0, _NEAR)])
-    outward = _inside_normal(loft, corner)
-    angle = np.arccos([np.einsum("ki,ki->k", outward, _face_normal(web, slope, face)) for slope in slopes])
-    lay = _Lay(web, side, shape, s, corner.h, n(s), outward, slopes.mean(axis=0), face)
-    return lay.flange(angle.T.ravel())
+    kinks = crossings(loft, web, side, n=lambda s: n(s)[:, None], depth=np.zeros_like)
+    s = spread(*ends, np.concatenate([n.s, kinks[:, 0]]), longest=longest)
+    found = edge(loft, web, s, n(s), side)
+    rib = web.point(s, found.h, n(s))[:, 1]
+    bay = _either_side((rib[1:] + rib[:-1]) / 2.0)
+    corner = _Corner(
+        web,
+        side,
+        face,
+        s=s,
+        h=found.h,
+        n=n(s),
+        slope=_either_side(np.diff(n(s)) / np.diff(s)),
+        outward=_inside_normal(loft, found.t, found.y, bay),
+    )
+    return _Pattern(corner, shape).flange()
 
 
 def require_room(
@@ -196,7 +208,7 @@ def require_room(
     TooWide
         At the place where most is missing.
     """
-    s = _places(n, ends, 40.0)
+    s = spread(*ends, np.concatenate([n.s, web.s_at_rib(loft.breaks, 0.0, 0.0)]), longest=40.0)
     leg = shape.skin_leg(s)
     out = -1.0 if face == "front" else 1.0
 
@@ -220,113 +232,174 @@ def require_room(
         raise TooWide(float(s[tight[i]]), float(leg[tight[i]]), float(room[i]))
 
 
-def _places(n: Along, ends: tuple[float, float], longest: float) -> Array:
-    start, stop = ends
-    inner = n.s[(n.s > start + 1e-3) & (n.s < stop - 1e-3)]
-    return np.unique(np.concatenate([np.linspace(start, stop, int(np.ceil((stop - start) / longest)) + 1), inner]))
+def _either_side(between: Array) -> Array:
+    """(2, k) what holds just before and just after k places, of what holds between them (k - 1,)."""
+    return np.stack([np.append(between[:1], between), np.append(between, between[-1:])])
 
 
-def _face_normal(web: Plane, slope: Array, face: FaceName) -> Array:
-    """(k, 3) unit normals out of a face that leans by `slope` (dn/ds)."""
-    out = _unit(web.n - slope[:, None] * web.s)
-    return out if face == "rear" else -out
-
-
-def _inside_normal(loft: Loft, at: Edge) -> Array:
-    """(k, 3) unit normals of the skin's inside, towards the skin.
+def _inside_normal(loft: Loft, t: Array, y: Array, at: Array) -> Array:
+    """(..., 3) unit normals of the skin's inside, towards the skin, in the bays that hold `at`.
 
     The outer surface's own, tilted where the skin's thickness changes along the span: by the gradient of the thickness
     over the surface.
     """
-    _, by_t, by_y = loft.outer(at.t, at.y)
-    normal = _unit(np.cross(by_t, by_y))
+    _, by_t, by_y = loft.outer(t, y, at)
     aside = _unit(by_t)
-    out = by_y - np.einsum("ki,ki->k", by_y, aside)[:, None] * aside
-    gradient = out * (loft.skin(at.y, at.y)[1] / np.einsum("ki,ki->k", out, out))[:, None]
-    return _unit(normal + gradient)
+    out = by_y - _dot(by_y, aside) * aside
+    gradient = out * loft.skin(np.broadcast_to(y, at.shape), at)[1][..., None] / _dot(out, out)
+    return _unit(loft.normal(t, y, at) + gradient)
 
 
 def _unit(v: Array) -> Array:
     return np.asarray(v / np.linalg.norm(v, axis=-1, keepdims=True))
 
 
-class _Lay:
-    """A flange's corner line, unrolled with the face it runs on, and what lies across it.
+def _dot(a: Array, b: Array) -> Array:
+    """Products (..., 1) of vectors (..., m)."""
+    return np.asarray(np.sum(a * b, axis=-1, keepdims=True))
+
+
+def _mitre(v: Array) -> Array:
+    """(k, m) what lies as far off as unit vectors `v` (2, k, m), one each side of a kink, from both of its sides."""
+    return np.asarray((v[0] + v[1]) / (1.0 + _dot(v[0], v[1])))
+
+
+@dataclass(frozen=True)
+class _Corner:
+    """The corner between web and skin. What is (2, k) holds just before and just after each of the k places.
+
+    Attributes
+    ----------
+    s, h, n
+        (k,) where it runs.
+    slope
+        (2, k) how the face leans, dn/ds.
+    outward
+        (2, k, 3) normals of the skin's inside, towards the skin.
+    """
+
+    web: Plane
+    side: Side
+    face: FaceName
+    s: Array
+    h: Array
+    n: Array
+    slope: Array
+    outward: Array
+
+    @cached_property
+    def along_face(self) -> Array:
+        """(2, k, 3) directions along the face, square to h."""
+        return _unit(self.web.s + self.slope[..., None] * self.web.n)
+
+    @cached_property
+    def face_normal(self) -> Array:
+        """(2, k, 3) normals out of the face."""
+        out = _unit(self.web.n - self.slope[..., None] * self.web.s)
+        return out if self.face == "rear" else -out
+
+    @property
+    def angle(self) -> Array:
+        """(2, k) between face and skin."""
+        return np.arccos(_dot(self.outward, self.face_normal)[..., 0])
+
+    @cached_property
+    def unrolled(self) -> Array:
+        """(k, 2) the corner in the unrolled face: along it, and h."""
+        along = np.cumsum(np.hypot(np.diff(self.s), np.diff(self.n)))
+        return np.column_stack([np.append(0.0, along), self.h])
+
+    @cached_property
+    def tangent(self) -> Array:
+        """(2, k, 2) directions of that line: in the face and square to the skin's normal."""
+        up, along = self.outward @ self.web.h, _dot(self.outward, self.along_face)[..., 0]
+        return _unit(np.stack([up, -along], axis=-1) * np.sign(up)[..., None])
+
+    @cached_property
+    def down(self) -> Array:
+        """(2, k, 2) directions across it, into the web leg."""
+        return self.tangent[..., ::-1] * ([1.0, -1.0] if self.side == "top" else [-1.0, 1.0])
+
+    def folded(self, v: Array) -> Array:
+        """(2, k, 3) directions `v` (2, k, 2) in the unrolled face, in wing axes."""
+        return v[..., :1] * self.along_face + v[..., 1:] * self.web.h
+
+    @cached_property
+    def skin(self) -> Array:
+        """(2, k, 3) directions across it along the skin, away from the web."""
+        across = np.cross(self.outward, self.folded(self.tangent))
+        return across * np.sign(_dot(across, self.face_normal))
+
+
+class _Pattern:
+    """A corner's flange unrolled with the face it runs on.
 
     The unrolled face is the web leg itself; the skin leg is turned into its plane about the corner. Everything is
     carried straight on beyond both ends, as on a swept web the rib planes trim the two legs at different places.
     """
 
-    def __init__(
-        self,
-        web: Plane,
-        side: Side,
-        shape: Shape,
-        s: Array,
-        h: Array,
-        n: Array,
-        outward: Array,
-        slope: Array,
-        face: FaceName,
-    ) -> None:
-        self.web, self.side, self.shape, self.s, self.face = web, side, shape, s, face
-        x = np.concatenate([[0.0], np.cumsum(np.hypot(np.diff(s), np.diff(n)))])
-        self.corner = np.column_stack([x, h])
-        tangent = _unit(np.gradient(self.corner, x, axis=0))
-        self.down = tangent[:, ::-1] * ([1.0, -1.0] if side == "top" else [-1.0, 1.0])  # into the web leg
-        along_face = _unit(web.s + slope[:, None] * web.n)
-        point = web.point(s, h, n)
-        along = tangent[:, :1] * along_face + tangent[:, 1:] * web.h
-        skin = np.cross(outward, along)
-        away = np.sign(np.einsum("ki,ki->k", skin, _face_normal(web, slope, face)))[:, None]
-        leg = self.down[:, :1] * along_face + self.down[:, 1:] * web.h
-        # only how far out along the span each place lies is wanted from here on
-        self.y, self.y_along, self.y_leg, self.y_skin = (v[:, 1] for v in (point, along, leg, _unit(skin * away)))
-        self.tangent = tangent
+    def __init__(self, corner: _Corner, shape: Shape) -> None:
+        self.corner, self.shape = corner, shape
+        self.half = shape.allowance / 2.0
+        self.down = _mitre(corner.down)
+        # of the folded flange only how far out along the span each place lies is wanted
+        self.y = corner.web.point(corner.s, corner.h, corner.n)[:, 1]
+        self.y_along = corner.folded(corner.tangent)[..., 1]
+        self.y_leg, self.y_skin = _mitre(corner.folded(corner.down))[:, 1], _mitre(corner.skin)[:, 1]
 
-    def flange(self, angle: Array) -> Flange:
+    def flange(self) -> Flange:
         """The flange, its pattern turned so that the fold line's ends stand level."""
-        half = self.shape.allowance / 2.0
-        web_trim = np.full_like(self.s, self.shape.setback - half - self.shape.web_leg)
-        skin_trim = self.shape.skin_leg(self.s) - self.shape.setback + half
-        skin = [half + share * (skin_trim - half) for share in (0.0, 0.5, 1.0)]
-        lines = [self._line(v) for v in (web_trim, np.full_like(self.s, -half), *skin)]
-        fold = self._line(np.zeros_like(self.s))
+        corner, shape = self.corner, self.shape
+        web_trim = np.full_like(corner.s, shape.setback - self.half - shape.web_leg)
+        skin_trim = shape.skin_leg(corner.s) - shape.setback + self.half
+        skin = [self.half + share * (skin_trim - self.half) for share in (0.0, 0.5, 1.0)]
+        lines = [self._line(v) for v in (web_trim, np.full_like(corner.s, -self.half), *skin)]
+        fold = self._line(np.zeros_like(corner.s))
         ends = [np.array([line[i] for line in lines]) for i in (0, -1)]
         outline = np.concatenate([lines[0], ends[1][1:-1], lines[-1][::-1], ends[0][-2:0:-1]])
         start, chord = fold[0], fold[-1] - fold[0]
         turn = np.array([[chord[0], -chord[1]], [chord[1], chord[0]]]) / np.hypot(*chord)
         return Flange(
-            self.side,
-            self.face,
-            self.shape,
-            np.repeat(self.s, 2),
-            angle,
-            self.s,
-            (self._flat(np.zeros_like(self.s)) - start) @ turn,
-            -self.down @ turn,
-            (outline - start) @ turn,
+            corner.side,
+            corner.face,
+            shape,
+            places=corner.s,
+            fold=(self._flat(np.zeros_like(corner.s)) - start) @ turn,
+            s=np.repeat(corner.s, 2),
+            angle=corner.angle.T.ravel(),
+            towards=-corner.down.swapaxes(0, 1).reshape(-1, 2) @ turn,
+            outline=(outline - start) @ turn,
         )
 
     def _flat(self, v: Array) -> Array:
         """(k, 2) places `v` (k,) from the fold line towards the skin leg, on the unrolled face."""
-        return np.asarray(self.corner + (self.shape.setback - self.shape.allowance / 2.0 - v)[:, None] * self.down)
+        return self.corner.unrolled + (self.shape.setback - self.half - v)[:, None] * self.down
 
     def _span(self, v: Array) -> Array:
         """(k,) how far out along the span they lie once the flange is folded and in its place."""
-        half = self.shape.allowance / 2.0
-        on_web = self.y + self.y_leg * (self.shape.setback - half - v)
-        on_skin = self.y + self.y_skin * (self.shape.setback - half + v)
-        return np.asarray(on_web + np.clip(v / (2.0 * half) + 0.5, 0.0, 1.0) * (on_skin - on_web))
+        on_web = self.y + self.y_leg * (self.shape.setback - self.half - v)
+        on_skin = self.y + self.y_skin * (self.shape.setback - self.half + v)
+        return np.asarray(on_web + np.clip(v / (2.0 * self.half) + 0.5, 0.0, 1.0) * (on_skin - on_web))
 
     def _line(self, v: Array) -> Array:
-        """(k + ends, 2) the line at `v` (k,) across the fold, from rib plane to rib plane."""
+        """(places + ends, 2) the line at `v` (k,) across the fold, from rib plane to rib plane."""
         flat, span = self._flat(v), self._span(v)
+        kept = self._kept(flat)
         spare = 10.0 + 2.0 * float(np.abs(v).max()) / self.y_along.min()
-        flat = np.concatenate(
-            [flat[:1] - spare * self.tangent[:1], flat, flat[-1:] + spare * self.tangent[-1:]], axis=0
-        )
-        span = np.concatenate([span[:1] - spare * self.y_along[:1], span, span[-1:] + spare * self.y_along[-1:]])
-        inside = flat[(span > self.web.ends[0] + 1e-6) & (span < self.web.ends[1] - 1e-6)]
-        first, last = (np.array([np.interp(y, span, flat[:, i]) for i in range(2)]) for y in self.web.ends)
-        return np.concatenate([[first], inside, [last]])
+        first, last = self.corner.tangent[0, 0], self.corner.tangent[1, -1]
+        flat = np.concatenate([flat[:1] - spare * first, flat[kept], flat[-1:] + spare * last])
+        beyond = spare * self.y_along[[0, 1], [0, -1]]
+        span = np.concatenate([span[:1] - beyond[0], span[kept], span[-1:] + beyond[1]])
+        inside = flat[(span > self.corner.web.ends[0] + 1e-6) & (span < self.corner.web.ends[1] - 1e-6)]
+        ends = (np.array([np.interp(y, span, flat[:, i]) for i in range(2)]) for y in self.corner.web.ends)
+        return np.stack([next(ends), *inside, next(ends)])
+
+    def _kept(self, flat: Array) -> NDArray[np.bool_]:
+        """Which points of a line are not cut off on the hollow side of a sharper kink near by."""
+        before, after = self.corner.tangent
+        turn = 1.0 - np.sum(before * after, axis=1)
+        kinks, places = np.flatnonzero(turn > _TURN)[:, None], np.arange(len(flat))
+        step = flat - flat[kinks]
+        ahead, behind = (np.sum(step * v[kinks], axis=-1) for v in (after, -before))
+        back = np.where(places > kinks, ahead, behind) <= 0.0
+        return np.asarray(~(back & (turn[kinks] > turn)).any(axis=0))

@@ -10,7 +10,7 @@ import shapely
 from numpy.typing import NDArray
 
 from .blank import FaceName
-from .seat import Cut
+from .seat import Cut, locate, quadratic
 
 Array = NDArray[np.float64]
 
@@ -35,14 +35,11 @@ def corner_angle(cut: Cut, face: FaceName, s: float) -> float:
 def _read(cut: Cut, node: int, s: float) -> tuple[Array, Array]:
     """The corner line at one face: its place (s, h, n) and how that changes along s."""
     survey = cut.survey
-    cell = int(np.clip(np.searchsorted(survey.s[:, 2], s), 0, len(survey.s) - 1))
+    cell, x = locate(survey.s, s)
     n = survey.n[cell, :, node]
     line = np.stack([survey.s[cell], cut.height[cell] + cut.slope[cell] * n, n], axis=-1)
-    step = survey.s[cell, 2] - survey.s[cell, 0]
-    x = (s - survey.s[cell, 0]) / step
-    weights = np.array([(2 * x - 1) * (x - 1), 4 * x * (1 - x), x * (2 * x - 1)])
-    slopes = np.array([4 * x - 3, 4 - 8 * x, 4 * x - 1]) / step
-    return weights @ line, slopes @ line
+    along = quadratic(x + 0.5) - quadratic(x - 0.5)  # of a quadratic the chord has the slope of its middle
+    return quadratic(x) @ line, along @ line / (survey.s[cell, 2] - survey.s[cell, 0])
 
 
 def card(

@@ -15,15 +15,18 @@ from numpy.typing import NDArray
 
 from .blank import Face, FaceName, layer
 from .loft import Loft
-from .seat import Along, Cut, sheet_volume
-from .web import SIDES, Plane, Side, edge
+from .places import crossings, spread
+from .seat import Along, Cut, lobatto, sheet_volume
+from .web import SIDES, OffSection, Plane, Side, edge
 
 Array = NDArray[np.float64]
 End = Literal["inner", "outer"]
 Faces = Literal["both", "front", "rear"]
 
-_ROUND = np.radians(np.arange(0.0, 360.0, 15.0))
-_TURNS = 13  # places along a tube at which its room is looked at
+_OVER = np.radians(np.arange(-90.0, 91.0, 10.0))  # angles over a tube along the web, from one side to the other
+_ABOUT = np.radians(np.arange(-10.0, 361.0, 10.0))  # and all the way round an upright one, overlapping
+_APART = 8.0  # mm between the rings over a tube along the web at which its room is looked at
+_SHARES = np.linspace(0.0, 1.0, 5)[:, None]  # of its radius: the rings on the ends of an upright one
 
 
 def across(pin: float, *, wall: float, overwrap: float) -> float:
@@ -140,7 +143,8 @@ def _plan(sides: list[Face], i: int) -> Array:
     """Outline of what lies between two layers; both end at the joint with their i-th points, where they are askew."""
     corners = np.array([line[i] for of in sides for line in (of.top, of.bottom)])
     slant = shapely.MultiPoint(corners).convex_hull
-    pieces = [*(shapely.Polygon(of.outline()) for of in sides), slant.buffer(1e-6)]
+    whole = (shapely.Polygon(of.outline()).buffer(0.0) for of in sides)  # no hair that a rounding left
+    pieces = [*whole, slant.buffer(1e-6)]
     return np.asarray(shapely.get_coordinates(shapely.get_exterior_ring(shapely.union_all(pieces)))[:-1])
 
 
@@ -155,20 +159,21 @@ def _up_to(face: Face, s: float, end: End) -> Face:
     return replace(face, top=part(face.top), bottom=part(face.bottom))
 
 
-def pads_volume(top: Cut, bottom: Cut, sheet: float) -> float:
+def pads_volume(web: Plane, top: Cut, bottom: Cut, sheet: float) -> float:
     """Volume that a web has beyond its plain sheet, mm^3."""
-    plain = top.survey.within(sheet)
-    return sheet_volume(top, bottom) - sheet_volume(replace(top, survey=plain), replace(bottom, survey=plain))
+    n = top.survey.n
+    plain = np.broadcast_to(sheet / 2.0 * lobatto(n.shape[-1])[0], n.shape)
+    return sheet_volume(web, top, bottom, n) - sheet_volume(web, top, bottom, plain)
 
 
 @dataclass(frozen=True)
 class Tube:
-    """A tube with its pin and overwrap: a straight cylinder in the middle of the thickened web.
+    """A tube with its pin and overwrap: a straight cylinder in the middle of the thickened web, along it or upright.
 
     Attributes
     ----------
     start, stop
-        The two ends (s, h) of its axis.
+        The two ends (s, h) of its axis: at one height, or at one s.
     n
         Where its axis stands across the web.
     across
@@ -180,22 +185,17 @@ class Tube:
     n: float
     across: float
 
+    @property
+    def upright(self) -> bool:
+        """Whether it stands upright."""
+        return self.start[0] == self.stop[0]
+
     def outline(self) -> Array:
         """(4, 2) the tube with its overwrap as one looks at a face, in (s, h)."""
         a, b = np.array(self.start), np.array(self.stop)
         along = (b - a) / np.linalg.norm(b - a)
         aside = self.across / 2.0 * np.array([-along[1], along[0]])
         return np.array([a - aside, b - aside, b + aside, a + aside])
-
-    def surface(self) -> Array:
-        """(k, 3) places (s, h, n) all over its outside, both rims included."""
-        a, b = np.array(self.start), np.array(self.stop)
-        along = (b - a) / np.linalg.norm(b - a)
-        axis = a + np.linspace(0.0, 1.0, _TURNS)[:, None] * (b - a)
-        radius = self.across / 2.0
-        around = radius * np.cos(_ROUND)[:, None] * np.array([-along[1], along[0]])
-        flat = (axis[:, None] + around).reshape(-1, 2)
-        return np.column_stack([flat, np.tile(self.n + radius * np.sin(_ROUND), _TURNS)])
 
 
 @dataclass(frozen=True)
@@ -207,24 +207,62 @@ class Fit:
 
     @property
     def worst(self) -> Side:
-        """The edge it comes nearest to."""
-        return min(SIDES, key=lambda side: self.room[side])
+        """The edge it comes nearest to; the top where it lies midway."""
+        return min(SIDES, key=lambda side: round(self.room[side], 6))
 
 
 def fit(loft: Loft, web: Plane, tube: Tube, depth: dict[Side, Along]) -> Fit:
-    """Distances from a tube's outside to both seats, `depth` under the skin."""
-    s, h, n = tube.surface().T
+    """Room in h from a tube's outside to both seats, `depth` under the skin.
+
+    Raises
+    ------
+    OffSection
+        Where a seat is not over all of the tube.
+
+    Notes
+    -----
+    Room is looked at on rings: over a tube that lies along the web, one wherever the seat kinks and every few mm
+    between; on an end of an upright one, from the axis to the rim. The least on a ring is that of the parabola through
+    its least place and the two beside it, which is where seat and tube are parallel.
+    """
     room, at = {}, {}
     for side in SIDES:
+        s, h, n = (_on_end if tube.upright else _over)(loft, web, tube, side, depth[side])
         seat = edge(loft, web, s, n, side, depth[side](s)).h
         free = seat - h if side == "top" else h - seat
-        free = np.where(np.isnan(free), -np.inf, free)
-        room[side], at[side] = float(free.min()), float(s[free.argmin()])
+        if np.isnan(free).any():
+            raise OffSection(side, float(s[np.isnan(free)][0]))
+        least = _least(free)
+        ring = least.argmin()
+        room[side], at[side] = float(least[ring]), float(s[ring, free[ring].argmin()])
     return Fit(room, at)
 
 
-def between(loft: Loft, web: Plane, depth: dict[Side, Along], s: Array, n: Array) -> tuple[float, float]:
-    """Highest bottom seat and lowest top seat over the places (s, n), arrays that broadcast."""
-    s, n = np.broadcast_arrays(s, n)
-    bottom, top = (edge(loft, web, s, n, side, depth[side](s)).h for side in ("bottom", "top"))
-    return float(np.nanmax(bottom)), float(np.nanmin(top))
+def _over(loft: Loft, web: Plane, tube: Tube, side: Side, depth: Along) -> tuple[Array, Array, Array]:
+    """Places (s, h, n), each (rings, angles), on that half of a tube along the web which is nearer to a side."""
+    radius = tube.across / 2.0
+    n = tube.n + radius * np.sin(_OVER)
+    h = tube.start[1] + radius * np.cos(_OVER) * (1.0 if side == "top" else -1.0)
+    first, last = (np.full(len(n), of(tube.start[0], tube.stop[0])) for of in (min, max))
+    near = first[0] - radius, last[0] + radius
+    kinks = crossings(loft, web, side, n=lambda s: np.tile(n, (len(s), 1)), depth=depth, within=near)
+    corners = np.concatenate([np.tile(depth.s[:, None], len(n)), kinks])
+    s = spread(first, last, corners, longest=_APART)
+    return s, np.broadcast_to(h, s.shape), np.broadcast_to(n, s.shape)
+
+
+def _on_end(loft: Loft, web: Plane, tube: Tube, side: Side, depth: Along) -> tuple[Array, Array, Array]:
+    """Places (s, h, n), each (rings, angles), on that end of an upright tube which is nearer to a side."""
+    radius = tube.across / 2.0 * _SHARES
+    height = (max if side == "top" else min)(tube.start[1], tube.stop[1])
+    s, n = tube.start[0] + radius * np.cos(_ABOUT), tube.n + radius * np.sin(_ABOUT)
+    return s, np.full_like(s, height), n
+
+
+def _least(free: Array) -> Array:
+    """(rings,) least of what is known at even angles on each ring (rings, angles)."""
+    ring, i = np.arange(len(free)), np.clip(free.argmin(axis=1), 1, free.shape[1] - 2)
+    before, here, after = (free[ring, i + k] for k in (-1, 0, 1))
+    bend = before - 2.0 * here + after
+    lower = (after - before) ** 2 / (8.0 * np.where(bend > 0.0, bend, np.inf))
+    return np.asarray(np.minimum(here - lower, free.min(axis=1)))

@@ -130,7 +130,12 @@ def plain(text: str) -> str:
 
 def width(text: str, height: float) -> float:
     """Length of a line of text with capitals `height` tall, in mm."""
-    return height * sum(advance for advance, _ in _letters(text))
+    return height * _advance(text)
+
+
+@cache
+def _advance(text: str) -> float:
+    return sum(advance for advance, _ in _letters(text))
 
 
 @cache

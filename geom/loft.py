@@ -54,10 +54,15 @@ class Loft:
 
     @cached_property
     def breaks(self) -> Array:
-        """The knots at which the surface has a kink, its slope along the span not being the same on both sides."""
-        t = np.array([-0.8, -0.5, -0.2, 0.2, 0.5, 0.8])[:, None]
-        before, after = (self.outer(t, self.knots, at)[2] for at in (np.nextafter(self.knots, -np.inf), self.knots))
-        return np.asarray(self.knots[np.abs(after - before).max(axis=(0, 2)) > 1e-9])
+        """The knots at which the outer surface or the skin's thickness has a kink: another slope on either side."""
+        t = np.array([-0.8, -0.5, -0.2, 0.2, 0.5, 0.8])
+
+        def slopes(at: Array) -> Array:
+            surface = self.outer(t, self.knots[:, None], at[:, None])[2].reshape(len(at), -1)
+            return np.column_stack([surface, self.skin(self.knots, at)[1]])
+
+        kinks = slopes(self.knots) - slopes(np.nextafter(self.knots, -np.inf))
+        return np.asarray(self.knots[np.abs(kinks).max(axis=1) > 1e-9])
 
     @cached_property
     def _coef(self) -> Array:

@@ -101,6 +101,7 @@ def path(bay: Bay, machine: Machine) -> Path:
     """All runs of a bay as one path.
 
     A straight run goes down through the block and back up its own slit. Between runs the wire is lifted over the block.
+    Where both ends would stand still, as where a fold of the wire's way is cut off, there is no move.
 
     Raises
     ------
@@ -117,7 +118,9 @@ def path(bay: Bay, machine: Machine) -> Path:
     moves: list[tuple[str, int, Array, bool]] = [("", 0, np.column_stack([np.zeros(2), over]), False)]
     for run in bay.runs:
         centre = np.moveaxis(run.centre, 1, 0) - corner  # (points, ends, 2)
-        marks = {index: number for number, index in run.marks}
+        moving = np.append(True, np.any(np.diff(centre, axis=0) != 0.0, axis=(1, 2)))
+        centre, stops = centre[moving], np.cumsum(moving) - 1
+        marks = {int(stops[index]): number for number, index in run.marks}
         above = np.column_stack([centre[0, :, 0], over])
         moves += [("", 0, above, False), ("", 0, centre[0], False)]
         moves += [(run.name, marks.get(i, 0), place, True) for i, place in enumerate(centre[1:], start=1)]

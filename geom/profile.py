@@ -25,8 +25,8 @@ _FLAT = [0, 2]  # x and z of a point
 _REACH = 80  # points to either side of a fold among which its two ends are looked for
 
 
-def inner(loft: Loft, t: ArrayLike, y: ArrayLike) -> tuple[Array, Array]:
-    """Points of the skin's inside in rib planes, and the surface's outward unit normals there; each (..., 3).
+def inner(loft: Loft, t: ArrayLike, y: ArrayLike, depth: float = 0.0) -> tuple[Array, Array]:
+    """Points `depth` mm under the skin's inside in rib planes, and the outward unit normals there; each (..., 3).
 
     Parameters
     ----------
@@ -43,14 +43,13 @@ def inner(loft: Loft, t: ArrayLike, y: ArrayLike) -> tuple[Array, Array]:
     t, y = np.broadcast_arrays(np.asarray(t, dtype=float), np.asarray(y, dtype=float))
     above = y
     for _ in range(_ROUNDS):
-        point, by_t, by_y = loft.under_skin(t, above, 0.0, y)
+        point, by_t, by_y = loft.under_skin(t, above, depth, y)
         miss = y - point[..., 1]
         if not np.any(np.abs(miss) > _CLOSE):
             break
         above = above + miss
     point = point + miss[..., None] * by_y  # what is left, along the surface
-    normal = np.cross(by_t, by_y)
-    return point, np.asarray(normal / np.linalg.norm(normal, axis=-1, keepdims=True))
+    return point, _unit(np.cross(by_t, by_y))
 
 
 @dataclass(frozen=True)
@@ -118,6 +117,10 @@ class Profile:
         share = (depth[i - 1] - least) / (depth[i - 1] - depth[i])
         return float(np.sqrt(t[i - 1] ** 2 + share * (t[i] ** 2 - t[i - 1] ** 2)))
 
+    def ahead_of(self, t: float) -> Array:
+        """(k, 2) closed outline of what lies ahead of a parameter t above 0, straight across there."""
+        return self.at(np.concatenate([[-t], self.t[np.abs(self.t) < t], [t]]))
+
     def padded(self, least: float) -> Profile:
         """The same with its two sides held `least` mm apart from `tail` on, about the line midway between them."""
         start = self.tail(least)
@@ -142,18 +145,30 @@ class Profile:
         return unfolded(self.points + by * self.normals, along)
 
 
-def profile(loft: Loft, y: float, t: Array) -> Profile:
-    """The skin's inside in the rib plane `y`, at parameters `t` (2k + 1,), ascending and symmetric about 0.
+def profile(loft: Loft, y: float, t: Array, depth: float = 0.0) -> Profile:
+    """What lies `depth` mm under the skin's inside in the rib plane `y`.
 
-    Where the skin is thicker than the nose's radius its inside folds over itself; the fold is cut off, and its points
-    stand where the two sides meet.
+    At parameters `t` (2k + 1,), ascending and symmetric about 0. Where skin and depth are more than the nose's radius
+    the line folds over itself; the fold is cut off, and its points stand where the two sides meet.
     """
-    point, normal = inner(loft, t, y)
-    flat = normal[:, _FLAT]
-    flat = flat / np.linalg.norm(flat, axis=-1, keepdims=True)
-    washout = float(loft.washout(np.array(y), np.array(y))[0])
+    point, normal = inner(loft, t, y, depth)
+    flat = _unit(normal[:, _FLAT])
     along = np.column_stack([flat[:, 1], -flat[:, 0]])
-    return Profile(y, t, unfolded(point[:, _FLAT], along), flat, np.array([np.cos(washout), np.sin(washout)]))
+    return Profile(y, t, unfolded(point[:, _FLAT], along), flat, _aft(loft, y))
+
+
+def outside(loft: Loft, y: float, t: Array) -> Profile:
+    """The outer surface in the rib plane `y`, at parameters `t` (2k + 1,), ascending and symmetric about 0."""
+    return Profile(y, t, loft.outer(t, y)[0][:, _FLAT], _unit(loft.normal(t, y)[:, _FLAT]), _aft(loft, y))
+
+
+def _aft(loft: Loft, y: float) -> Array:
+    washout = float(loft.washout(np.array(y), np.array(y))[0])
+    return np.array([np.cos(washout), np.sin(washout)])
+
+
+def _unit(v: Array) -> Array:
+    return np.asarray(v / np.linalg.norm(v, axis=-1, keepdims=True))
 
 
 def tail(loft: Loft, of: Profile, least: float) -> float:
@@ -221,8 +236,7 @@ def _crossing(points: Array, before: NDArray[np.intp], beyond: NDArray[np.intp])
 
 def _normals(points: Array) -> Array:
     """Unit normals (k, 2) to the left of a curve given by points, from the two steps at each."""
-    step = np.gradient(points, axis=0)
-    step /= np.linalg.norm(step, axis=1, keepdims=True)
+    step = _unit(np.gradient(points, axis=0))
     return np.column_stack([-step[:, 1], step[:, 0]])
 
 
@@ -236,19 +250,40 @@ def symmetric(t: ArrayLike) -> Array:
     return np.concatenate([-t[:0:-1], t])
 
 
-def face_line(web: Plane, face: Along, y: float, reach: float = 50.0) -> Array:
-    """(2, 2) two places (x, z), the lower one first, of the line in which a face of the web crosses the rib plane `y`.
+def face_line(web: Plane, face: Along, y: float, reach: float = 1e3) -> Array:
+    """(k, 2) the line (x, z), lower end first, in which a face of the web crosses the rib plane `y`.
+
+    It is straight but for a corner wherever it passes one of `face`. Where a face turns so steeply that the rib plane
+    crosses it three times at one height, the crossing where the web is thicker counts.
 
     Parameters
     ----------
     face
-        n of the face along s; it may change along the web where that is thickened.
+        n of the face along s, level beyond its ends; not so where the web is thickened.
     reach
-        How far below and above the web line the two places are taken, mm.
+        How far below and above the web line it goes, mm.
+
+    Notes
+    -----
+    On the rib plane ``s s_y + n(s) n_y - (y - o_y) = -h h_y``. The left side runs straight between the corners of n(s)
+    and rises with s, so it is read backwards.
     """
-    h = np.array([-reach, reach])
-    n = np.zeros(2)
-    for _ in range(4):
-        s = web.s_at_rib(y, h, n)
-        n = face(s)
-    return np.asarray(web.point(web.s_at_rib(y, h, n), h, n)[:, _FLAT])
+    out = float(np.sign(web.s[1]))
+    far = (abs(y - web.origin[1]) + reach) / abs(web.s[1]) + 1.0
+    s = np.concatenate([[face.s[0] - far], face.s, [face.s[-1] + far]])
+    left = out * (s * web.s[1] + face(s) * web.n[1] - (y - web.origin[1]))
+    if abs(face.value[0]) > abs(face.value[-1]):
+        rising = np.maximum.accumulate(left)
+    else:
+        rising = np.minimum.accumulate(left[::-1])[::-1]
+    turns = np.diff(np.diff(face(s)) / np.diff(s)) != 0.0
+    s = s + (rising - left) / abs(web.s[1])
+    by_h = -out * float(web.h[1])
+    corner = np.flatnonzero(turns & (np.abs(rising[1:-1]) < abs(by_h) * reach))[:: 1 if by_h > 0.0 else -1] + 1
+    ends = np.array([-reach, reach])
+    first, last = np.interp(by_h * ends, rising, s)
+    s = np.concatenate([[first], s[corner], [last]])
+    h = np.concatenate([ends[:1], rising[corner] / by_h, ends[1:]])
+    line = web.point(s, h, face(s))[:, _FLAT]
+    line[:, 1] = np.maximum.accumulate(line[:, 1])  # across such a step it may fall by a hair
+    return np.asarray(line)

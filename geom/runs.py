@@ -2,13 +2,18 @@
 
 from __future__ import annotations
 
+from bisect import bisect_left
+from itertools import pairwise
+
 import numpy as np
 from numpy.typing import NDArray
 
-from .seat import Aim, Run, Survey
+from .seat import Aim, Run, Survey, lowest
 from .web import Side
 
 Array = NDArray[np.float64]
+
+_SAME = 1e-9  # share of the filler by which sums of the same cells may differ
 
 
 def saw_angles(survey: Survey, side: Side, step: float) -> Array:
@@ -21,8 +26,10 @@ def saw_angles(survey: Survey, side: Side, step: float) -> Array:
 def best_runs(survey: Survey, side: Side, *, runs: int, angles: Array, aim: Aim = "filler") -> tuple[Run, ...]:
     """Divide an edge into at most `runs` runs, each cut at one of `angles`, for least filler or least largest gap.
 
+    Of divisions with the same largest gap the one with least filler, and of those the one with fewest runs.
+
     Dynamic programming over the cells: exact for breaks at cell bounds (R. Bellman, *On the approximation of curves by
-    line segments using dynamic programming*, Comm. ACM 4, 1961). Neighbours with the same angle come back as one run.
+    line segments using dynamic programming*, Comm. ACM 4, 1961).
 
     Raises
     ------
@@ -32,61 +39,87 @@ def best_runs(survey: Survey, side: Side, *, runs: int, angles: Array, aim: Aim 
     count = len(survey.s)
     if not 1 <= runs <= count:
         raise ValueError(f"from 1 to {count} runs (one for each place along the edge), got {runs}")
-    breaks, which = _divide(*_run_costs(_cell_costs(survey, side, angles, aim), aim), runs=runs, aim=aim)
-    keep = [0, *(i for i in range(1, len(which)) if which[i] != which[i - 1])]
-    bounds = [breaks[i] for i in keep] + [count]
+    # the few nodes across the thickness first, the many places last: numpy is several times quicker that way
+    out = 1.0 if side == "top" else -1.0
+    n, seat = (np.ascontiguousarray(out * v.T)[:, None] for v in survey.bearing(side))
+    free = seat - n * np.tan(angles)[:, None, None]
+    cut = lowest(free)
+    total = np.cumsum(_cell_filler(survey, side, np.tan(angles), cut), axis=1)
+    total = np.concatenate([np.zeros((len(angles), 1)), total], axis=1)
+    reach = None
+    if aim == "gap":
+        gap = _cell_gaps(survey, side, free - cut)
+        reach = _reach(gap <= _least_gap(gap, runs))
     edges = np.append(survey.s[:, 0], survey.s[-1, 2])
     return tuple(
-        Run(float(edges[a]), float(edges[b]), float(angles[which[i]]))
-        for a, b, i in zip(bounds[:-1], bounds[1:], keep, strict=True)
+        Run(float(edges[a]), float(edges[b]), float(angles[_costs(total, reach, a)[:, b - a - 1].argmin()]))
+        for a, b in pairwise(_divide(total, reach, runs))
     )
 
 
-def _cell_costs(survey: Survey, side: Side, angles: Array, aim: Aim) -> Array:
-    """(A, C) filler of every cell at every angle, or its largest gap."""
-    values = (survey.seat[side], survey.n, survey.weight[side])
-    # the few nodes across the thickness first, the many places last: numpy is several times quicker that way
-    seat, n, weight = (np.ascontiguousarray(v.reshape(-1, v.shape[-1]).T)[:, None] for v in values)
-    free = seat - n * np.tan(angles)[:, None]
-    room = free - free.min(axis=0) if side == "top" else free.max(axis=0) - free
-    places = np.einsum("map,mbp->ap", room, weight) if aim == "filler" else room.max(axis=0)
-    cells = places.reshape(len(angles), *survey.s.shape)
-    return np.asarray(cells.sum(axis=-1) if aim == "filler" else cells.max(axis=-1))
+def _cell_filler(survey: Survey, side: Side, slopes: Array, cut: Array) -> Array:
+    """(A, C) filler of every cell under cuts (A, 3, C) at every slope, heights and slopes taken outwards."""
+    weight, out = survey.weight[side], 1.0 if side == "top" else -1.0
+    under, aside = ((v * weight).sum(axis=(1, 2)) for v in (survey.seat[side], survey.n))
+    beneath = np.einsum("ajc,cj->ac", cut, weight.sum(axis=2))
+    return np.asarray(out * (under - slopes[:, None] * aside) - beneath)
 
 
-def _run_costs(costs: Array, aim: Aim) -> tuple[Array, NDArray[np.intp]]:
-    """Least cost (C + 1, C + 1) of one run from cell bound i to bound j, and which angle gives it."""
-    angles, count = costs.shape
-    best = np.full((count + 1, count + 1), np.inf)
-    which = np.zeros((count + 1, count + 1), dtype=np.intp)
-    by_cell = np.ascontiguousarray(costs.T)
-    total = np.concatenate([np.zeros((1, angles)), np.cumsum(by_cell, axis=0)])
-    for first in range(count):
-        ahead = by_cell[first:]
-        grown = total[first + 1 :] - total[first] if aim == "filler" else np.maximum.accumulate(ahead, axis=0)
-        chosen = grown.argmin(axis=1)
-        which[first, first + 1 :] = chosen
-        best[first, first + 1 :] = grown[np.arange(len(chosen)), chosen]
-    return best, which
+def _cell_gaps(survey: Survey, side: Side, room: Array) -> Array:
+    """(A, C) largest of the distances (M, A, 3, C) to the seat in each cell, as far as it is on the web."""
+    at_nodes = room[: survey.n.shape[-1]].transpose(1, 3, 2, 0)
+    return np.asarray(survey.on_web(side, at_nodes).max(axis=(2, 3)))
 
 
-def _divide(best: Array, which: NDArray[np.intp], *, runs: int, aim: Aim) -> tuple[list[int], list[int]]:
-    """First cells and angles of the runs that cost least together (or whose costliest costs least)."""
-    count = len(best) - 1
-    total, back = best[0], []
+def _least_gap(gap: Array, runs: int) -> float:
+    """The least largest gap of at most `runs` runs, of all gaps (A, C) that a cell can have."""
+    values = np.unique(gap)
+    return float(values[bisect_left(range(len(values)), True, key=lambda i: _enough(gap <= values[i], runs))])
+
+
+def _reach(fits: NDArray[np.bool_]) -> NDArray[np.intp]:
+    """(A, C) up to which cell bound a run from each cell may go at each angle, of those that fit (A, C) the cells."""
+    count = fits.shape[1]
+    failing = np.where(fits, count, np.arange(count))
+    return np.minimum.accumulate(failing[:, ::-1], axis=1)[:, ::-1]
+
+
+def _enough(fits: NDArray[np.bool_], runs: int) -> bool:
+    """Whether so many runs take in all cells; the longest run from each place on is as good as any."""
+    at, reach = 0, np.append(_reach(fits).max(axis=0), fits.shape[1])
+    for _ in range(runs):
+        at = int(reach[at])
+    return at == fits.shape[1]
+
+
+def _costs(total: Array, reach: NDArray[np.intp] | None, first: int) -> Array:
+    """(A, ...) filler of a run at each angle from cell bound `first` to each further one.
+
+    Parameters
+    ----------
+    total, reach
+        (A, C + 1) filler up to each bound; (A, C) up to which bound a run from each cell may go, if not to the end.
+    """
+    grown = total[:, first + 1 :] - total[:, first, None]
+    if reach is not None:
+        grown[np.arange(first + 1, total.shape[1]) > reach[:, first, None]] = np.inf
+    return grown
+
+
+def _divide(total: Array, reach: NDArray[np.intp] | None, runs: int) -> list[int]:
+    """Cell bounds of the fewest runs, `runs` at most, that need least filler together; see `_costs`."""
+    last = total.shape[1] - 1
+    totals, back = [np.append(np.inf, _costs(total, reach, 0).min(axis=0))], []
+    further = np.full((last + 1, last + 1), np.inf)
+    for first in range(1, last if runs > 1 else 0):
+        further[first, first + 1 :] = _costs(total, reach, first).min(axis=0)
     for _ in range(runs - 1):
-        joined = total[:, None] + best if aim == "filler" else np.maximum(total[:, None], best)
-        joined[0] = best[0]  # a run fewer is allowed: the rest of the edge in one
+        joined = totals[-1][:, None] + further
         back.append(joined.argmin(axis=0))
-        total = joined.min(axis=0)
-    stop = count
-    breaks: list[int] = []
-    angles: list[int] = []
-    for prior in [*reversed(back), np.zeros(count + 1, dtype=np.intp)]:
-        start = int(prior[stop])
-        breaks.insert(0, start)
-        angles.insert(0, int(which[start, stop]))
-        stop = start
-        if start == 0:
-            break
-    return breaks, angles
+        totals.append(joined.min(axis=0))
+    needs = np.array([filler[last] for filler in totals])
+    fewest = int(np.argmax(needs <= needs.min() + _SAME * (1.0 + needs.min())))
+    bounds = [last]
+    for prior in reversed(back[:fewest]):
+        bounds.insert(0, int(prior[bounds[0]]))
+    return [0, *bounds]

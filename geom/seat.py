@@ -2,26 +2,48 @@
 
 The web is surveyed in cells along s, three places to a cell (start, middle, end: Simpson's rule), and at Gauss-Lobatto
 nodes across its thickness. A cut is a straight line across the thickness at every place, so that all three edge
-treatments differ only in its slope: none, one for each run, or the seat's own.
+treatments differ only in its slope: none, one for each run, or the seat's own. Along a cell every figure is the
+quadratic through its three places.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from functools import cache, cached_property
-from itertools import pairwise
 from typing import Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from .loft import Loft
+from .places import crossings, spread
 from .web import SIDES, NothingInside, OffSection, Plane, Side, edge, end_places
 
 Array = NDArray[np.float64]
 Treatment = Literal["square", "set bevel", "full bevel"]
 Aim = Literal["filler", "gap"]
+
+_APART = 0.01  # mm between the corners that cells end at
+_CLOSE = 1e-7  # mm
+
+
+def quadratic(x: ArrayLike) -> Array:
+    """(3, ...) what the values at a cell's start, middle and end count at shares `x` of its length.
+
+    Examples
+    --------
+    >>> quadratic(0.25).tolist()
+    [0.375, 0.75, -0.125]
+    """
+    x = np.asarray(x, dtype=float)
+    return np.array([(2.0 * x - 1.0) * (x - 1.0), 4.0 * x * (1.0 - x), x * (2.0 * x - 1.0)])
+
+
+def locate(s: Array, at: ArrayLike) -> tuple[NDArray[np.intp], Array]:
+    """In which of the cells `s` (C, 3) places lie, the outer cells carried on, and at what share of its length."""
+    cell = np.searchsorted(s[:-1, 2], at)
+    return cell, (at - s[cell, 0]) / (s[cell, 2] - s[cell, 0])
 
 
 @cache
@@ -57,6 +79,29 @@ def constant(value: float) -> Along:
 CENTRED = constant(0.0)
 
 
+class Bounded:
+    """Reads figures over cells `s` (C, 3), beyond places `first` and `last` (M,) as they are there."""
+
+    def __init__(self, s: Array, first: Array, last: Array) -> None:
+        self.ends = _beyond(s, first, last)
+        cells = s[self.ends][..., None]
+        self.s = np.clip(s[..., None], first, last)
+        x = (self.s[self.ends] - cells[:, :1]) / (cells[:, 2:] - cells[:, :1])
+        self.weights, self.off = quadratic(x), np.abs(x - 0.5) > 0.5 + 1e-9
+
+    def __call__(self, values: Array, off: float) -> Array:
+        """`values` (..., C, 3, M) so read; `off` over cells that lie beyond as a whole."""
+        found = np.array(values)
+        read = np.einsum("icjm,...cim->...cjm", self.weights, values[..., self.ends, :, :])
+        found[..., self.ends, :, :] = np.where(self.off, off, read)
+        return found
+
+
+def _beyond(s: Array, first: Array, last: Array) -> NDArray[np.intp]:
+    """Cells `s` (C, 3) that reach beyond any of `first` or `last`."""
+    return np.flatnonzero((s[:, 0] < first.max()) | (s[:, 2] > last.min()))
+
+
 @dataclass(frozen=True)
 class Survey:
     """The skin's inside and the seat over a grid of the web; C cells, three places each, M nodes across.
@@ -71,6 +116,9 @@ class Survey:
         For each side (C, 3, M): heights of the skin's inside and of the seat.
     starts, stops
         For each side (M,): where its edge meets the rib planes at the web's two ends.
+    creases
+        For each side (C, 3, B): places across the thickness where creases of the seat cross it, and the seat there; the
+        face that is nearer along s where they do not.
     """
 
     s: Array
@@ -80,6 +128,7 @@ class Survey:
     seat: Mapping[Side, Array]
     starts: Mapping[Side, Array]
     stops: Mapping[Side, Array]
+    creases: Mapping[Side, tuple[Array, Array]] = field(default_factory=dict)
 
     @cached_property
     def weight(self) -> Mapping[Side, Array]:
@@ -93,51 +142,58 @@ class Survey:
     def thinner(self, ratio: float) -> Survey:
         """The survey of a sheet `ratio` (at most 1) times as thick, read from this one.
 
-        Heights across the thickness are the polynomial through the nodes (degree M - 1).
+        Heights across the thickness are the polynomial through the nodes (degree M - 1); where a crease of the seat
+        crosses it, straight lines between the nodes and the crease.
         """
         tau = lobatto(self.n.shape[-1])[0]
         read = _lagrange(tau, ratio * tau)
-
-        def across(found: Mapping[Side, Array]) -> Mapping[Side, Array]:
-            return {side: v @ read for side, v in found.items()}
-
+        n, seat, creases = self.n * ratio, {}, {}
+        for side in SIDES:
+            seat[side] = self.seat[side] @ read
+            if side in self.creases:
+                at, deep = self.creases[side]
+                for place in zip(*np.nonzero((np.abs(at) < self.n[..., -1:]).any(axis=-1)), strict=True):
+                    knots, heights = np.append(self.n[place], at[place]), np.append(self.seat[side][place], deep[place])
+                    seat[side][place] = np.interp(n[place], np.sort(knots), heights[knots.argsort()])
+                faces = np.where(at < 0.0, seat[side][..., :1], seat[side][..., -1:])
+                on = np.abs(at) <= n[..., -1:]
+                creases[side] = np.where(on, at, np.sign(at) * n[..., -1:]), np.where(on, deep, faces)
         return Survey(
-            self.s,
-            self.thickness * ratio,
-            self.n * ratio,
-            across(self.skin),
-            across(self.seat),
-            across(self.starts),
-            across(self.stops),
-        )
-
-    def within(self, sheet: float) -> Survey:
-        """The survey of the plain sheet, `sheet` mm thick about n = 0, inside a thickened one; read as by `thinner`."""
-        tau = lobatto(self.n.shape[-1])[0]
-        n = np.broadcast_to(sheet / 2.0 * tau, self.n.shape)
-        middle = self.n.mean(axis=-1, keepdims=True)
-        read = _lagrange(tau, (n - middle) / (self.thickness[..., None] / 2.0))
-
-        def across(found: Mapping[Side, Array]) -> Mapping[Side, Array]:
-            return {side: np.einsum("...m,m...k->...k", v, read) for side, v in found.items()}
-
-        def at_end(found: Mapping[Side, Array], place: tuple[int, int]) -> Mapping[Side, Array]:
-            return {side: v @ read[:, *place] for side, v in found.items()}
-
-        return Survey(
-            self.s,
-            np.full_like(self.thickness, sheet),
-            n,
-            across(self.skin),
-            across(self.seat),
-            at_end(self.starts, (0, 0)),
-            at_end(self.stops, (-1, 2)),
+            s=self.s,
+            thickness=self.thickness * ratio,
+            n=n,
+            skin={side: seat[side] + (self.skin[side] - self.seat[side]) @ read for side in SIDES},
+            seat=seat,
+            starts={side: v @ read for side, v in self.starts.items()},
+            stops={side: v @ read for side, v in self.stops.items()},
+            creases=creases,
         )
 
     def bevel_slope(self, side: Side) -> Array:
         """(C, 3) slope of the seat from the front to the rear face."""
         seat = self.seat[side]
         return np.asarray((seat[..., -1] - seat[..., 0]) / self.thickness)
+
+    def bearing(self, side: Side) -> tuple[Array, Array]:
+        """Places (C, 3, M + B) across the thickness and the seat there, that a cut has to clear: nodes and creases."""
+        if side not in self.creases:
+            return self.n, self.seat[side]
+        n, seat = (np.concatenate(v, axis=-1) for v in zip((self.n, self.seat[side]), self.creases[side], strict=True))
+        return n, seat
+
+    def on_web(self, side: Side, values: Array) -> Array:
+        """`values` (..., C, 3, M), those beyond the rib planes read at the ends of the edge; 0 if a cell has none."""
+        return self._bounded[side](values, 0.0)
+
+    @cached_property
+    def _bounded(self) -> Mapping[Side, Bounded]:
+        return {side: Bounded(self.s, self.starts[side], self.stops[side]) for side in SIDES}
+
+    @cached_property
+    def within_ends(self) -> Bounded:
+        """Where both edges are on the web over the front and the rear face."""
+        starts, stops = (np.stack([v[side][[0, -1]] for side in SIDES]) for v in (self.starts, self.stops))
+        return Bounded(self.s, starts.max(axis=0), stops.min(axis=0))
 
     def length(self) -> Array:
         """(C,) length of each cell, mm."""
@@ -185,6 +241,16 @@ class Cut:
         """Height (C, 3) of the cut at places `n` (C, 3) across the thickness."""
         return np.asarray(self.height + self.slope * n)
 
+    def line(self, s: Array) -> tuple[Array, Array]:
+        """Height and slope (k,) of the line that is cut at any places `s` (k,)."""
+        cell, x = locate(self.survey.s, s)
+        height, slope = (np.einsum("ik,ki->k", quadratic(x), v[cell]) for v in (self.height, self.slope))
+        return height, slope
+
+    def layers(self, n: Array) -> Array:
+        """Height (C, 3, K) of the cut in the layers `n` (C, 3, K)."""
+        return np.asarray(self.height[..., None] + self.slope[..., None] * n)
+
     @cached_property
     def clearance(self) -> Array:
         """(C, 3, M) from the cut to the seat, never negative."""
@@ -192,8 +258,8 @@ class Cut:
 
     @cached_property
     def gap(self) -> Array:
-        """(C, 3) largest distance in h between seat and cut."""
-        return np.asarray(self.clearance.max(axis=-1))
+        """(C, 3) largest distance in h between seat and cut; beyond the rib planes that at the end of the edge."""
+        return np.asarray(self.survey.on_web(self.side, self.clearance).max(axis=-1))
 
     @cached_property
     def filler(self) -> float:
@@ -213,18 +279,38 @@ class Cut:
         return float(np.sum(area @ (1.0, 4.0, 1.0) / 6.0 * self.survey.length()))
 
 
-def rest(seat: Array, n: Array, slope: Array, side: Side) -> Array:
-    """Height at n = 0 of the line of given slope that lies as close to the skin as the seat allows.
+def cut_height(seat: Array, n: Array, slope: Array, side: Side) -> Array:
+    """Height (C, 3) at n = 0 of the line of given slope that lies as close to the skin as the seat allows.
 
     Parameters
     ----------
     seat, n
-        (..., M) heights of the seat at places across the thickness.
+        (C, 3, M) heights of the seat at places across the thickness.
     slope
-        (...) of the line.
+        (C, 3) of the line.
     """
-    free = seat - n * slope[..., None]
-    return np.asarray(free.min(axis=-1) if side == "top" else free.max(axis=-1))
+    free = (seat - n * slope[..., None]).T
+    return np.asarray(lowest(free).T if side == "top" else -lowest(-free).T)
+
+
+def lowest(free: Array) -> Array:
+    """The highest quadratic (..., 3, C) along each cell that stays under all of M quadratics and touches at both ends.
+
+    Parameters
+    ----------
+    free
+        (M, ..., 3, C) the values of those at start, middle and end of the cells.
+
+    Notes
+    -----
+    Over one of the M that stands a above its start and b above its end, m above its middle, the distance at a share x
+    of the cell is ``4 x (1 - x) (m + (a / x + b / (1 - x) - 2 a - 2 b) / 4)``, least against ``4 x (1 - x)`` where
+    ``x = sqrt(a) / (sqrt(a) + sqrt(b))``; so m has to be ``(sqrt(a) - sqrt(b))^2 / 4`` or more.
+    """
+    found = free.min(axis=0)
+    start, stop = (free[..., i, :] - found[..., i, :] for i in (0, 2))
+    found[..., 1, :] = (free[..., 1, :] - (start + stop) / 4.0 + np.sqrt(start * stop) / 2.0).min(axis=0)
+    return np.asarray(found)
 
 
 def clearance(seat: Array, n: Array, height: Array, slope: Array, side: Side) -> Array:
@@ -260,46 +346,37 @@ def survey(
     ------
     OffSection
         Where a face of the web misses the inside of the section.
-    NothingInside
-        Where no height is left between the two seats.
     """
     tau = lobatto(nodes)[0]
-    starts, stops = {}, {}
-    at_ends = [middle(s) + tau * thickness(s) / 2.0 for s in (0.0, web.length)]
+
+    def across(s: Array) -> Array:
+        return np.asarray(middle(s)[..., None] + thickness(s)[..., None] / 2.0 * tau)
+
+    starts, stops = _ends(loft, web, across)
+    ridges = {side: crossings(loft, web, side, n=across, depth=depth[side]) for side in SIDES}
+    kinks = web.s_at_rib(loft.knots, 0.0, 0.0), thickness.s
+    corners = np.concatenate([*kinks, *(v for side in SIDES for v in (depth[side].s, ridges[side].ravel()))])
+    places = _places(starts, stops, corners, longest)
+    n = across(places)
+    skin, seat, creased = {}, {}, {}
     for side in SIDES:
-        starts[side] = end_places(loft, web, at_ends[0], side)[0]
-        stops[side] = end_places(loft, web, at_ends[1], side)[1]
-        _refuse_gaps(side, starts[side], 0.0)
-        _refuse_gaps(side, stops[side], web.length)
-    low, high = np.concatenate(list(starts.values())), np.concatenate(list(stops.values()))
-    kinks = [web.s_at_rib(loft.knots, 0.0, 0.0), _kinks(loft, web, thickness, middle)]
-    corners = np.concatenate([*kinks, thickness.s, *(depth[side].s for side in SIDES)])
-    bounds = _bounds(float(low.min()), float(low.max()), float(high.min()), float(high.max()), corners, longest)
-    places = np.empty(2 * len(bounds) - 1)
-    places[::2], places[1::2] = bounds, (bounds[1:] + bounds[:-1]) / 2.0
-    cell = 2 * np.arange(len(bounds) - 1)[:, None] + np.arange(3)
-    t = thickness(places)
-    n = middle(places)[:, None] + t[:, None] / 2.0 * tau
-    skin = {side: edge(loft, web, places[:, None], n, side).h for side in SIDES}
-    seat = {
-        side: edge(loft, web, places[:, None], n, side, depth[side](places)[:, None]).h
-        if depth[side].value.any()
-        else h
-        for side, h in skin.items()
-    }
-    for side in SIDES:
+        skin[side] = seat[side] = edge(loft, web, places[:, None], n, side).h
+        bears = _bearing(places, n, ridges[side])
+        if depth[side].value.any() or bears.shape != n.shape:
+            found = edge(loft, web, places[:, None], bears, side, depth[side](places)[:, None]).h
+            seat[side] = found[:, :nodes]
+            creased[side] = bears[:, nodes:], found[:, nodes:]
         _refuse_gaps(side, seat[side] + skin[side], places[:, None])
-    height = (seat["top"] - seat["bottom"]).min(axis=1)
-    if height.min() <= 0.0:
-        raise NothingInside(float(places[height.argmin()]), float(height.min()))
+    cell = 2 * np.arange(len(places) // 2)[:, None] + np.arange(3)
     return Survey(
         s=places[cell],
-        thickness=t[cell],
+        thickness=thickness(places)[cell],
         n=n[cell],
         skin={side: h[cell] for side, h in skin.items()},
         seat={side: h[cell] for side, h in seat.items()},
         starts=starts,
         stops=stops,
+        creases={side: (at[cell], h[cell]) for side, (at, h) in creased.items() if at.size},
     )
 
 
@@ -315,27 +392,39 @@ def _refuse_gaps(side: Side, found: Array, s: ArrayLike) -> None:
         raise OffSection(side, float(np.broadcast_to(s, found.shape)[lost][0]))
 
 
-def _kinks(loft: Loft, web: Plane, thickness: Along, middle: Along) -> Array:
-    """Where the web's two faces and two edges first and last cross each break of the loft.
+def _ends(
+    loft: Loft, web: Plane, across: Callable[[Array], Array]
+) -> tuple[Mapping[Side, Array], Mapping[Side, Array]]:
+    """For each side (M,) where its edge starts and stops over the nodes at both ends."""
+    at = [across(np.array(s)) for s in (0.0, web.length)]
+    starts = {side: end_places(loft, web, at[0], side)[0] for side in SIDES}
+    stops = {side: end_places(loft, web, at[1], side)[1] for side in SIDES}
+    for side in SIDES:
+        _refuse_gaps(side, starts[side], 0.0)
+        _refuse_gaps(side, stops[side], web.length)
+    return starts, stops
 
-    On a swept or canted web they cross a rib plane at different s: the kink there gets a short cell of its own.
-    """
-    s = web.s_at_rib(loft.breaks, 0.0, 0.0)
-    n = middle(s)[:, None] + thickness(s)[:, None] * np.array([-0.5, 0.5])
-    heights = np.stack([edge(loft, web, s[:, None], n, side).h for side in SIDES], axis=-1)
-    crossings = web.s_at_rib(loft.breaks[:, None, None], np.nan_to_num(heights), n[..., None])
-    return np.concatenate([crossings.min(axis=(1, 2)), crossings.max(axis=(1, 2))])
+
+def _bearing(places: Array, n: Array, ridges: Array) -> Array:
+    """(P, M + B) the nodes `n` (P, M) at all places, and where creases cross the thickness there."""
+    tau = lobatto(n.shape[1])[0]
+    found = [n]
+    for s in ridges:
+        if ((places > s.min()) & (places < s.max())).any():
+            order = s.argsort()
+            share = (1.0 + np.interp(places, s[order], tau[order])[:, None]) / 2.0
+            found.append((1.0 - share) * n[:, :1] + share * n[:, -1:])
+    return np.concatenate(found, axis=1)
 
 
-def _bounds(low0: float, low1: float, high0: float, high1: float, corners: Array, longest: float) -> Array:
-    """Cell bounds: a cell of its own for each skewed end, corners respected, none longer than `longest`."""
-    inside = corners[(corners > low1 + 1e-3) & (corners < high0 - 1e-3)]
-    marks = np.unique(np.concatenate([[low0, low1], inside, [high0, high1]]))
-    marks = marks[np.concatenate([[True], np.diff(marks) > 1e-6])]
-    pieces = [
-        np.linspace(a, b, max(1, int(np.ceil((b - a) / longest - 1e-9))), endpoint=False) for a, b in pairwise(marks)
-    ]
-    return np.concatenate([*pieces, marks[-1:]])
+def _places(starts: Mapping[Side, Array], stops: Mapping[Side, Array], corners: Array, longest: float) -> Array:
+    """(2 C + 1,) bounds and middles of cells that end at every corner and are not longer than `longest`."""
+    low, high = (np.concatenate(list(v.values())) for v in (starts, stops))
+    corners = np.append(corners, [low.max(), high.min()])
+    bounds = spread(low.min(), high.max(), corners, longest=longest, least=_APART)
+    places = np.empty(2 * len(bounds) - 1)
+    places[::2], places[1::2] = bounds, (bounds[1:] + bounds[:-1]) / 2.0
+    return places
 
 
 def _clipped(s: Array, start: Array, stop: Array) -> Array:
@@ -344,12 +433,15 @@ def _clipped(s: Array, start: Array, stop: Array) -> Array:
     The quadratic through a cell's three places is integrated over the part that counts.
     """
     half = (s[:, 2] - s[:, 0])[:, None] / 2.0
-    u, v = (np.clip((end - s[:, 1:2]) / half, -1.0, 1.0) for end in (start, stop))
+    weights = np.repeat((half * [1.0, 4.0, 1.0] / 3.0)[..., None], len(start), axis=-1)
+    ends = _beyond(s, start, stop)
+    u, v = (np.clip((end - s[ends, 1:2]) / half[ends], -1.0, 1.0) for end in (start, stop))
 
     def primitive(x: Array) -> Array:
         return np.stack([x**3 / 6.0 - x**2 / 4.0, x - x**3 / 3.0, x**3 / 6.0 + x**2 / 4.0], axis=1)
 
-    return np.asarray((primitive(v) - primitive(u)) * half[:, None])
+    weights[ends] = (primitive(v) - primitive(u)) * half[ends, None]
+    return weights
 
 
 def crown(heights: Array, n: Array, side: Side) -> Array:
@@ -366,23 +458,54 @@ def crown(heights: Array, n: Array, side: Side) -> Array:
     return np.asarray(np.take_along_axis(out, np.abs(out).argmax(axis=-1)[..., None], axis=-1)[..., 0])
 
 
-def sheet_volume(top: Cut, bottom: Cut) -> float:
-    """Volume of the sheet between its two cuts and the two rib planes, mm^3.
+def rib_crossing(web: Plane, rib: ArrayLike, s: Array, h: Array, n: Array) -> tuple[Array, Array]:
+    """Where lines of heights `h` (C, 3, K) in layers `n` (..., K) cross rib planes: places s and heights, (..., K)."""
+    columns = np.broadcast_to(np.arange(n.shape[-1]), n.shape)
+    at = web.s_at_rib(rib, 0.0, n)
+    for _ in range(20):  # an edge hardly rises along s: each round leaves a thousandth of the miss or less
+        cell, x = locate(s, at)
+        here = np.einsum("i...,...i->...", quadratic(x), h[cell, :, columns])
+        last, at = at, web.s_at_rib(rib, here, n)
+        if np.abs(at - last).max() < _CLOSE:
+            break
+    return at, here
 
-    For each layer n the area inside the outline by Green's theorem: the two edges, and the ends that lean with the rib
+
+def sheet_volume(web: Plane, top: Cut, bottom: Cut, n: Array) -> float:
+    """Volume of what lies between two cuts and the two rib planes, mm^3.
+
+    For each layer the area inside its outline by Green's theorem: the two edges, and the ends that lean with the rib
     planes.
+
+    Parameters
+    ----------
+    n
+        (C, 3, M) Gauss-Lobatto nodes across what is measured: the survey's own, or those of a part of its thickness.
     """
-    survey = top.survey
-    n = survey.n
-    high = top.height[..., None] + top.slope[..., None] * n
-    low = bottom.height[..., None] + bottom.slope[..., None] * n
-    between = float(np.sum(high * survey.weight["top"]) - np.sum(low * survey.weight["bottom"]))
-    across = lobatto(n.shape[-1])[1] / 2.0
-    ends = 0.0
-    for place, at, sign in (((0, 0), survey.starts, 1.0), ((-1, 2), survey.stops, -1.0)):
-        middle = (high[place] + low[place]) / 2.0
-        ends += sign * survey.thickness[place] * float(across @ (middle * (at["top"] - at["bottom"])))
-    return between + ends
+    s, nodes = top.survey.s, n.shape[-1]
+    lines = np.concatenate([cut.layers(n) for cut in (top, bottom)], axis=-1)
+    layers = np.tile(n[[0, -1], [0, 2]], 2)
+    at, heights = rib_crossing(web, np.array(web.ends)[:, None], s, lines, layers)
+    under = lines * _clipped(s, *at)
+    slants = heights.reshape(2, 2, nodes).mean(axis=1) * (at[:, :nodes] - at[:, nodes:])
+    area = under[..., :nodes] - under[..., nodes:]
+    area[0, 0] += slants[0]
+    area[-1, 2] -= slants[1]
+    return float(np.sum(area * (n[..., -1:] - n[..., :1]) / 2.0 * lobatto(nodes)[1]))
+
+
+def refuse_crossing(top: Cut, bottom: Cut) -> None:
+    """Refuse two edges that leave no sheet between them.
+
+    Raises
+    ------
+    NothingInside
+        Where they meet or cross, with the least height.
+    """
+    n, within = top.survey.n, top.survey.within_ends
+    height = within(np.stack([top.at(v) - bottom.at(v) for v in (n[..., 0], n[..., -1])], axis=-1), np.inf)
+    if height.min() <= 0.0:
+        raise NothingInside(float(within.s.flat[height.argmin()]), float(height.min()))
 
 
 def cut(survey: Survey, side: Side, treatment: Treatment, runs: tuple[Run, ...] = ()) -> Cut:
@@ -395,14 +518,8 @@ def cut(survey: Survey, side: Side, treatment: Treatment, runs: tuple[Run, ...] 
         slope = survey.bevel_slope(side)
     elif treatment == "set bevel":
         slope = slope + _saw_slope(runs, survey.s[:, 1])[:, None]
-    return Cut(side, treatment, rest(survey.seat[side], survey.n, slope, side), slope, survey, runs)
-
-
-def slope_at(of: Cut, s: Array, seat: Array, thickness: Array) -> Array:
-    """Slope (k,) of a cut at any places `s` (k,), given the seat (k, M) there and the local thickness (k,)."""
-    if of.treatment == "full bevel":
-        return np.asarray((seat[:, -1] - seat[:, 0]) / thickness)
-    return _saw_slope(of.runs, s) if of.runs else np.zeros_like(s)
+    n, seat = survey.bearing(side)
+    return Cut(side, treatment, cut_height(seat, n, slope, side), slope, survey, runs)
 
 
 def _saw_slope(runs: tuple[Run, ...], s: Array) -> Array:

@@ -7,7 +7,6 @@ sheet is a graph over those places, so a mesh built this way is closed and canno
 from __future__ import annotations
 
 from collections.abc import Sequence
-from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,7 +14,8 @@ from scipy.interpolate import BarycentricInterpolator
 
 from .core import Mesh
 from .loft import Loft
-from .seat import Along, Cut, Survey, lobatto
+from .places import crossings, spread
+from .seat import Along, Cut, Survey, lobatto, rib_crossing
 from .web import Plane, Side, edge, end_places
 
 Array = NDArray[np.float64]
@@ -23,11 +23,11 @@ Array = NDArray[np.float64]
 GRID = 1e-4  # mm
 FILM = 0.001  # mm, least thickness of a mesh: a few steps of single precision at 4 m, so it stays closed in STL
 LEAST = 0.01  # mm, mean gap under which there is nothing to fill
-_STEP = 0.02  # mm of s over which an edge steps where the saw is set anew
+_STEP, _STEEP = 0.02, 4.0  # mm of s over which an edge steps, at least, where the saw is set anew; its slope, at most
 _CLEAR = 0.5  # mm between the rib planes' skewed ends and the nearest row
 _ACROSS = np.linspace(-1.0, 1.0, 17)  # columns of a filler, of the half thickness
 _ON_STRIP = np.linspace(-0.5, 0.5, 5)  # columns of a strip, of its width
-_APART = 10.0  # mm between the rows of a strip
+_APART, _LEAST_ROW = 10.0, 0.1  # mm between the rows of a strip, at most and at least
 
 
 def between(low: Array, high: Array) -> Mesh:
@@ -79,12 +79,11 @@ def mirrored(mesh: Mesh) -> Mesh:
 def web_blank(web: Plane, top: Cut, bottom: Cut) -> Mesh:
     """The web as it is cut, with what thickens it at a joint: its bevels, its taper, its ends at the rib planes.
 
-    Where the saw is set anew the edge steps over a fiftieth of a millimetre.
+    Where the saw is set anew the edge steps over a fiftieth of a millimetre, or over a quarter of what it steps by.
     """
     survey = top.survey
     n = survey.n[..., [0, -1]]
-    low, high = (cut.height[..., None] + cut.slope[..., None] * n for cut in (bottom, top))
-    return _solid(web, survey, n, low, high)
+    return _solid(web, survey, n, bottom.layers(n), top.layers(n))
 
 
 def filler(web: Plane, cut: Cut) -> Mesh | None:
@@ -100,7 +99,7 @@ def filler(web: Plane, cut: Cut) -> Mesh | None:
     tau = lobatto(survey.n.shape[-1])[0]
     read = BarycentricInterpolator(tau, np.eye(len(tau)))(_ACROSS).T
     n, seat = survey.n @ read, survey.seat[cut.side] @ read
-    edge_line = cut.height[..., None] + cut.slope[..., None] * n
+    edge_line = cut.layers(n)
     gap = np.maximum(up * (seat - edge_line), 0.0)
 
     def filled(gap: Array) -> Mesh:
@@ -114,45 +113,36 @@ def filler(web: Plane, cut: Cut) -> Mesh | None:
 def _solid(web: Plane, survey: Survey, n: Array, low: Array, high: Array) -> Mesh:
     """Solid between two sheets of heights (C, 3, K) over the survey's places and `n` (C, 3, K), cut by the ribs."""
     s, keep = _rows(survey, [low, high])
-    return between(*(web.point(*_carried(web, survey, s, keep, n, h)) for h in (low, high)))
+    return between(*(web.point(*_to_ribs(web, survey, s, keep, n, h)) for h in (low, high)))
 
 
 def _rows(survey: Survey, sheets: Sequence[Array]) -> tuple[Array, NDArray[np.bool_]]:
     """Places s (C, 3) of the rows, and which of them are wanted.
 
-    A cell's end is the next one's start, unless a sheet steps there: then it comes just before it.
+    A cell's end is the next one's start, unless a sheet steps there: then it comes just before it. The short cells at a
+    crease of the skin, which may be a hundredth of a millimetre long, have none of their own.
     """
     s = survey.s.copy()
-    keep = np.ones(s.shape, dtype=bool)
-    steps = np.any([np.abs(h[:-1, 2] - h[1:, 0]).max(axis=-1) > FILM for h in sheets], axis=0)
+    keep = np.repeat(survey.length()[:, None] > _LEAST_ROW, 3, axis=1)
+    rise = np.max([np.abs(h[:-1, 2] - h[1:, 0]).max(axis=-1) for h in sheets], axis=0)
+    steps = rise > FILM
     keep[:-1, 2] = steps
-    s[:-1, 2] -= np.where(steps, _STEP, 0.0)
+    wide = np.minimum(np.maximum(_STEP, rise / _STEEP), survey.length()[:-1] / 4.0)
+    s[:-1, 2] -= np.where(steps, wide, 0.0)
     first = max(float(v.max()) for v in survey.starts.values()) + _CLEAR
     last = min(float(v.min()) for v in survey.stops.values()) - _CLEAR
     return s, keep & (s > first) & (s < last)
 
 
-def _carried(
+def _to_ribs(
     web: Plane, survey: Survey, s: Array, keep: NDArray[np.bool_], n: Array, h: Array
 ) -> tuple[Array, Array, Array]:
     """Places (s, h, n), each (R, K), of a sheet's rows, the first and the last of them in the rib planes."""
     inner = np.broadcast_to(s[..., None], h.shape)[keep], h[keep], n[keep]
-    first, last = (
-        _at_rib(web, rib, survey.s[cell], h[cell], n[cell, end])
-        for rib, cell, end in zip(web.ends, (0, -1), (0, 2), strict=True)
-    )
+    layers = n[[0, -1], [0, 2]]
+    first, last = zip(*rib_crossing(web, np.array(web.ends)[:, None], survey.s, h, layers), layers, strict=True)
     s_, h_, n_ = (np.concatenate([a[None], v, b[None]]) for a, v, b in zip(first, inner, last, strict=True))
     return s_, h_, n_
-
-
-def _at_rib(web: Plane, rib: float, s: Array, h: Array, n: Array) -> tuple[Array, Array, Array]:
-    """Where lines of heights `h` (3, K), parabolas over a cell's places `s` (3,), cross a rib plane."""
-    at = web.s_at_rib(rib, h[1], n)
-    for _ in range(20):  # an edge hardly rises along s: each round leaves a thousandth of the miss or less
-        x = (at - s[0]) / (s[2] - s[0])
-        here = h[0] * (2 * x - 1) * (x - 1) + 4 * h[1] * x * (1 - x) + h[2] * x * (2 * x - 1)
-        at = web.s_at_rib(rib, here, n)
-    return at, here, n
 
 
 def strip(
@@ -182,11 +172,10 @@ def strip(
     starts, stops = ends[:2, 0], ends[2:, 1]
     if stop is not None:
         stops = np.full_like(stops, stop)
-    corners = np.concatenate([web.s_at_rib(loft.knots, 0.0, 0.0), outer.s, inner.s])
-    s = _spread(float(starts.max()), float(stops.min()), corners)
+    s = _strip_rows(loft, web, side, (starts.max() + _CLEAR, stops.min() - _CLEAR), across, (outer, inner))
     sheets = []
     for depth, first, last in zip((outer, inner), starts, stops, strict=True):
-        places = np.concatenate([first[None], np.repeat(s[:, None], len(_ON_STRIP), axis=1), last[None]])
+        places = np.concatenate([first[None], s, last[None]])
         n = across(places) * _ON_STRIP
         sheets.append((places, edge(loft, web, places, n, side, depth(places)).h, n))
     low, high = sheets[::-1] if side == "top" else sheets
@@ -194,10 +183,18 @@ def strip(
     return between(web.point(*low), web.point(*high))
 
 
-def _spread(first: float, last: float, corners: Array) -> Array:
-    """Places from just after `first` to just before `last`, at most `_APART` from one another, corners among them."""
-    first, last = first + _CLEAR, last - _CLEAR
-    marks = np.unique(np.concatenate([[first, last], corners[(corners > first + 0.1) & (corners < last - 0.1)]]))
-    marks = marks[np.concatenate([[True], np.diff(marks) > 1e-3])]
-    pieces = [np.linspace(a, b, max(1, int(np.ceil((b - a) / _APART))), endpoint=False) for a, b in pairwise(marks)]
-    return np.append(np.concatenate(pieces), last)
+def _strip_rows(
+    loft: Loft, web: Plane, side: Side, ends: tuple[float, float], across: Along, faces: tuple[Along, Along]
+) -> Array:
+    """Places s (R, K) of a strip's rows, one along each crease of the skin and at each corner of its two faces."""
+    kinks = crossings(
+        loft,
+        web,
+        side,
+        n=lambda s: across(s)[:, None] * _ON_STRIP,
+        depth=lambda s: np.mean([face(s) for face in faces], axis=0),
+    )
+    straight = np.concatenate([ends, *(face.s for face in faces)])
+    first, last, *level = np.tile(straight[:, None], len(_ON_STRIP))
+    corners = np.array([*level, *kinks])
+    return spread(first, last, corners, longest=_APART, least=_LEAST_ROW)

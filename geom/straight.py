@@ -1,18 +1,21 @@
-"""The straight cut: how far what a hot wire sweeps between two ribs stands off the skin's inside.
+"""The straight cut: how far what a hot wire sweeps between two ribs stands off the skin's inside and the web.
 
 A hot wire is straight. Between two rib templates it joins points at equal chord fraction, so what it cuts is a ruled
-surface, and the skin's inside is none where the washout is not linear. mm and radians.
+surface, and the skin's inside is none where the washout is not linear; nor is the face beside the web where that is
+thickened. mm and radians.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import cached_property
+from typing import Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from .core import Region, kinks, limits
+from .beside import Beside, beside
+from .core import Region, kinks, limits, turns
 from .loft import Loft
 from .profile import Profile, inner, symmetric
 
@@ -23,23 +26,37 @@ _CLOSE = 1e-9  # mm^2: what is left of a step along t, squared
 _STEP = 1e-5  # of t, for a difference
 _ZOOMS = 4
 _FEW = 12  # rows: a bay with fewer samples is sampled anew
+_PROBES = 9  # places along each side at which a table of errors looks
 
 
 @dataclass(frozen=True)
 class Miss:
-    """How far the straight cut stands off the skin's inside, and where; `off` in mm, positive where foam stands proud.
+    """How far the straight cut is off, and where; mm.
 
-    `t` is negative on the lower side; the chord fraction is its square.
+    Attributes
+    ----------
+    off
+        Positive where foam stands proud of the skin's inside, or of the web.
+    t, y
+        The place: t is negative on the lower side, the chord fraction is its square.
+    web
+        Whether it is on the face beside the web.
     """
 
     off: float
     t: float
     y: float
+    web: bool = False
+
+    @property
+    def side(self) -> Literal["upper", "lower", "web"]:
+        """Which face of the core it is on."""
+        return "web" if self.web else "upper" if self.t > 0.0 else "lower"
 
 
 @dataclass(frozen=True)
 class Grid:
-    """The skin's inside over a core's span, sampled, from which a bay's straight-cut error is read.
+    """The skin's inside and the face beside the web over a core's span, sampled: where straight-cut errors are read.
 
     Attributes
     ----------
@@ -54,7 +71,10 @@ class Grid:
     inside
         (M, T) which of them belong to the core.
     bounds
-        (M, B) parameters t at which the core's own limits stand.
+        (M, B) parameters t at which the core's own limits stand: where it stops on the lower and the upper side, and
+        for an aft core where it starts as well.
+    face
+        The face beside the web, where that is not flat.
     """
 
     region: Region
@@ -65,6 +85,7 @@ class Grid:
     normals: Array
     inside: NDArray[np.bool_]
     bounds: Array
+    face: Beside | None = None
 
     @cached_property
     def _cells(self) -> tuple[NDArray[np.intp], Array]:
@@ -93,21 +114,22 @@ class Grid:
         rows = np.arange(len(y))[:, None]
         return y, off, off[rows, cell] + share * (off[rows, cell + 1] - off[rows, cell])
 
+    def extremes(self, a: float, b: float) -> tuple[Array, Array]:
+        """Ribs (m,) sampled in a bay from rib a to rib b, and how far foam stands proud and is short there, (2, m)."""
+        y, off, at_bounds = self.off(a, b)
+        off = np.where(self.inside[self.rows(a, b)], off, 0.0)
+        beside_web = [] if self.face is None else [self.face.off(a, b, y)]
+        off = np.concatenate([off, at_bounds, *beside_web], axis=1)
+        return y, np.stack([off.max(axis=1, initial=0.0), -off.min(axis=1, initial=0.0)])
+
     def parts(self, a: float, b: float) -> Array:
         """(8,) largest straight-cut errors of a bay from rib a to rib b, mm, to first order.
 
-        For each quarter of its length the largest in which foam stands proud, then the largest in which it is wanting.
+        For each quarter of its length the largest in which foam stands proud, then the largest in which it is short.
         """
-        y, off, at_bounds = self.off(a, b)
+        y, most = self.extremes(a, b)
         out = np.zeros((4, 2))
-        if len(y):
-            off = np.where(self.inside[self.rows(a, b)], off, 0.0)
-            most = (
-                np.maximum(off.max(axis=1), at_bounds.max(axis=1)),
-                np.maximum(-off.min(axis=1), -at_bounds.min(axis=1)),
-            )
-            quarter = np.minimum((4.0 * (y - a) / (b - a)).astype(int), 3)
-            np.maximum.at(out, quarter, np.stack(most, axis=1))
+        np.maximum.at(out, np.minimum((4.0 * (y - a) / (b - a)).astype(int), 3), most.T)
         return out.ravel()
 
     def error(self, a: float, b: float) -> float:
@@ -133,19 +155,33 @@ class Grid:
         places = np.interp(np.linspace(0.0, passed[-1], count), passed, self.y)
         return np.union1d(places, self.kinks)
 
-    def thinned(self, rows: int, columns: int) -> Grid:
-        """The same with only every so many rows and columns."""
-        y, t = slice(None, None, rows), slice(None, None, columns)
-        return Grid(
-            self.region,
-            self.kinks,
-            self.t[t],
-            self.y[y],
-            self.points[y, t],
-            self.normals[y, t],
-            self.inside[y, t],
-            self.bounds[y],
-        )
+    @cached_property
+    def _probes(self) -> tuple[NDArray[np.intp], Array, Array, Array]:
+        """Where `table` looks in every other row: left neighbours (m, C) among `t`, how far on, points and normals."""
+        share = np.linspace(0.0, 1.0, _PROBES)
+        first = self.bounds[::2, 2:] if self.bounds.shape[1] == 4 else np.zeros_like(self.bounds[::2])
+        t = (first[..., None] + share * (self.bounds[::2, :2] - first)[..., None]).reshape(len(first), -1)
+        i = np.clip(np.searchsorted(self.t, t, side="right") - 1, 0, len(self.t) - 2)
+        share = ((t - self.t[i]) / (self.t[i + 1] - self.t[i]))[..., None]
+        rows = np.arange(0, len(self.y), 2)[:, None]
+        points, normals = (v[rows, i] + share * (v[rows, i + 1] - v[rows, i]) for v in (self.points, self.normals))
+        return i, share, points, normals
+
+    def table(self, places: Array) -> Array:
+        """(k, k) `error` of bays from each of k places to each beyond it, seen in fewer samples; infinite elsewhere."""
+        i, share, points, normals = self._probes
+        y = self.y[::2]
+        ends = np.stack([self.row(float(place)) for place in places])
+        reach = np.einsum("kmci,mci->ckm", ends[:, i] + share * (ends[:, i + 1] - ends[:, i]) - points, normals)
+        out = np.full((len(places), len(places)), np.inf)
+        for k, a in enumerate(places[:-1]):
+            here = slice(int(np.searchsorted(y, a)), None)
+            first, on = reach[:, k : k + 1, here], (y[here] - a) / (places[k + 1 :, None] - a)
+            off = first + on * (reach[:, k + 1 :, here] - first)
+            out[k, k + 1 :] = np.abs(off, out=off).max(axis=0).max(axis=1, where=on < 1.0, initial=0.0)
+        if self.face is not None:
+            out = np.maximum(out, self.face.table(places))
+        return out
 
 
 def grid(loft: Loft, region: Region, *, rows: int = 241, columns: int = 64) -> Grid:
@@ -173,7 +209,8 @@ def _sampled(loft: Loft, region: Region, y: Array, columns: int) -> Grid:
     points, normals = (v[..., [0, 2]] for v in inner(loft, t, y[:, None]))
     turn = loft.washout(y, y)[0]
     aft = np.column_stack([np.cos(turn), np.sin(turn)])
-    found = [limits(region, Profile(float(y[i]), t, points[i], normals[i], aft[i])) for i in range(len(y))]
+    profiles = [Profile(float(y[i]), t, points[i], normals[i], aft[i]) for i in range(len(y))]
+    found = [limits(region, of) for of in profiles]
     start, stop = (np.array([getattr(f, name) for f in found]) for name in ("start", "stop"))
     bounds = np.column_stack([-stop[:, 0], stop[:, 1]])
     if region.kind == "aft":
@@ -184,7 +221,9 @@ def _sampled(loft: Loft, region: Region, y: Array, columns: int) -> Grid:
     side = (t > 0.0).astype(int)
     inside = (np.abs(t) >= start[:, side]) & (np.abs(t) <= stop[:, side])
     kinked = np.intersect1d(y, kinks(loft, region))
-    return Grid(region, kinked, t[keep], y, points[:, keep], normals[:, keep], inside[:, keep], bounds)
+    face = beside(region, turns(loft, region), profiles, found)
+    points, normals, inside = points[:, keep], normals[:, keep], inside[:, keep]
+    return Grid(region, kinked, t[keep], y, points, normals, inside, bounds, face)
 
 
 def proud(loft: Loft, bay: tuple[float, float], t: ArrayLike, y: ArrayLike) -> Array:
@@ -232,7 +271,19 @@ def worst(loft: Loft, sampled: Grid, bay: tuple[float, float]) -> Miss:
     if abs(starts[0][1] - starts[1][1]) < 0.03:  # the same place, once inside and once on the core's limit
         starts = [max(starts)]
     near = 0.9 * max(starts)[0]
-    return max((_close_in(loft, sampled, bay, t, at) for off, t, at in starts if off >= near), key=lambda m: abs(m.off))
+    found = [_close_in(loft, sampled, bay, t, at) for off, t, at in starts if off >= near]
+    if sampled.face is not None:
+        found.append(_beside_web(sampled, sampled.face, bay))
+    return max(found, key=lambda miss: abs(miss.off))
+
+
+def _beside_web(sampled: Grid, face: Beside, bay: tuple[float, float]) -> Miss:
+    """The largest error of a bay on the face beside the web."""
+    y = np.union1d(np.linspace(*bay, _FEW), np.clip(face.turns, *bay))
+    off = face.off(*bay, y)
+    row, up = np.unravel_index(int(np.abs(off).argmax()), off.shape)
+    corner = sampled.bounds[:, -2:][:, int(2 * up > off.shape[1])]
+    return Miss(float(off[row, up]), float(np.interp(y[row], sampled.y, corner)), float(y[row]), web=True)
 
 
 def _close_in(loft: Loft, sampled: Grid, bay: tuple[float, float], t: float, y: float) -> Miss:

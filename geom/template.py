@@ -1,8 +1,9 @@
 """The templates that guide a hot wire by hand: boards whose edge lies one radius of the wire inside its middle's way.
 
 A wire rides on the edge, so the foam ends up smaller than the board by half the kerf less the wire's radius; the ways
-of the wire's middle (`wire.Run`) already lie half the kerf outside the foam. x and z in mm, as one looks outwards
-along the span.
+of the wire's middle (`wire.Run`) already lie half the kerf outside the foam. Both are square to what the wire cuts:
+as it crosses the boards aslant, it touches their edge with an ellipse (`wire.aslant`). x and z in mm, as one looks
+outwards along the span.
 """
 
 from __future__ import annotations
@@ -71,9 +72,9 @@ def boards(bay: Bay, end: int) -> list[Board]:
     made = [_straight(bay, end, run) for run in bay.runs if run.straight]
     skins = [run for run in bay.runs if not run.straight]
     if len(skins) == 2 and bay.region.kind == "aft" and bay.how.passes == "one":
-        return [*made, _board(bay, end, "skins", skins, np.concatenate([r.centre[end] for r in skins]))]
+        return [*made, _board(bay, end, "skins", skins, np.concatenate([_way(bay, end, run) for run in skins]))]
     for run in skins:
-        way = run.centre[end]
+        way = _way(bay, end, run)
         if run.name != "skins":
             block = bay.ends[end].block
             z = (
@@ -86,8 +87,13 @@ def boards(bay: Bay, end: int) -> list[Board]:
     return made
 
 
+def _way(bay: Bay, end: int, run: Run) -> Array:
+    """(k, 2) the way of the middle of a wire square to the board that rides on the same edge as the one aslant."""
+    return np.asarray(run.centre[end] - bay.how.wire / 2.0 * (bay.aside(run, end) - run.normals[end]))
+
+
 def _board(bay: Bay, end: int, name: str, runs: list[Run], ring: Array) -> Board:
-    """The board inside a closed way of the wire's middle."""
+    """The board inside a closed way of the middle of a wire square to it."""
     shape, radius = shapely.Polygon(ring), bay.how.wire / 2.0
     if not shape.is_valid:
         raise FoldedWay(bay.ends[end].y)
@@ -95,8 +101,9 @@ def _board(bay: Bay, end: int, name: str, runs: list[Run], ring: Array) -> Board
     if not isinstance(inside, shapely.Polygon) or inside.is_empty:
         raise FoldedWay(bay.ends[end].y)
     marks = [
-        Mark(number, run.centre[end][i] - radius * run.normals[end][i], -run.normals[end][i])
+        Mark(number, edge[i], -run.normals[end][i])
         for run in runs
+        for edge in [run.centre[end] - radius * bay.aside(run, end)]
         for number, i in run.marks
     ]
     return Board(name, np.asarray(inside.exterior.coords)[:-1], tuple(runs), tuple(marks))
@@ -104,7 +111,7 @@ def _board(bay: Bay, end: int, name: str, runs: list[Run], ring: Array) -> Board
 
 def _straight(bay: Bay, end: int, run: Run) -> Board:
     """A board with one straight edge, large enough for both pins."""
-    edge = run.centre[end] - bay.how.wire / 2.0 * run.normals[end]
+    edge = run.centre[end] - bay.how.wire / 2.0 * bay.aside(run, end)
     pins = shapely.MultiPoint(bay.ends[end].pins).buffer(_BOARD + PIN / 2.0)
     inwards = edge[[0, -1]] - 2.0 * _BOARD * run.normals[end][[0, -1]]
     shape = shapely.union(pins, shapely.Polygon([edge[0], edge[-1], inwards[1], inwards[0]])).convex_hull

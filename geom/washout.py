@@ -102,6 +102,19 @@ def steepest(law: Law) -> tuple[float, float]:
     return float(y[i]), float(slope[i])
 
 
+def extremes(law: Law) -> tuple[tuple[float, float], tuple[float, float]]:
+    """Place y in mm and value of the law's least and of its greatest; no law exceeds its knots between them.
+
+    Examples
+    --------
+    >>> extremes(smooth([0.0, 50.0, 100.0], [1.0, -1.0, 5.0]))
+    ((50.0, -1.0), (100.0, 5.0))
+    """
+    values = law(law.knots, law.knots)[0]
+    least, most = int(values.argmin()), int(values.argmax())
+    return (float(law.knots[least]), float(values[least])), (float(law.knots[most]), float(values[most]))
+
+
 def reverses(law: Law) -> float | None:
     """First place y where the law turns back (its slope changes sign), or None."""
     y = np.unique(np.concatenate([np.linspace(a, b, 41) for a, b in zip(law.knots, law.knots[1:], strict=False)]))

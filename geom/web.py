@@ -20,6 +20,7 @@ SIDES: tuple[Side, Side] = ("top", "bottom")
 _ROUNDS = 40
 _CLOSE = 1e-9  # mm
 _REACH = 1.5  # depths under the skin from which a break of it is felt
+_KINK = 1e-4  # least change of slope that makes a crease
 
 
 @dataclass(frozen=True)
@@ -180,10 +181,41 @@ def _over_breaks(
 
 
 def _slope(loft: Loft, web: Plane, t: Array, y: Array, bay: Array) -> Array:
-    """dh/ds (k,) along the sheet of the outer surface of a bay, at its own coordinates (t, y)."""
+    """dh/ds (k,) along the sheet of the inside of a bay's skin, at its own coordinates (t, y)."""
     _, by_t, by_y = loft.outer(t, y, bay)
+    by_y = by_y - loft.skin(y, bay)[1][..., None] * loft.normal(t, y, bay)
     s_t, s_y, n_t, n_y = by_t @ web.s, by_y @ web.s, by_t @ web.n, by_y @ web.n
     return np.asarray(((by_t @ web.h) * n_y - (by_y @ web.h) * n_t) / (s_t * n_y - s_y * n_t))
+
+
+def creases(loft: Loft, web: Plane, y: Array, n: Array, side: Side, depth: Array) -> Array:
+    """Where a surface under the skin has a crease along the loft's knots `y`.
+
+    Parameters
+    ----------
+    y, n, depth
+        (K,) knots, (K, M) places across the web, (K,) depths.
+
+    Returns
+    -------
+    (K, M) array
+        Places s; NaN where the surface has no crease or does not stand over the web.
+
+    Notes
+    -----
+    It is where the surfaces of both bays, carried on past the knot, cross. They part at an even rate there, so that two
+    places tell where.
+    """
+    if not y.size:
+        return n
+    at = np.broadcast_to(y[:, None], n.shape)
+    s = web.s_at_rib(at, 0.0, n) + np.array([0.0, 1.0])[:, None, None]
+    bays = (np.nextafter(at, -np.inf), at)
+    before, after = (_meet(loft, web, web.s, s, s, n, side, depth[:, None], bay).h for bay in bays)
+    first, second = after - before
+    rate = second - first
+    with np.errstate(divide="ignore", invalid="ignore"):
+        return np.where(np.abs(rate) > _KINK, s[0] - first / rate, np.nan)
 
 
 def end_places(loft: Loft, web: Plane, n: ArrayLike, side: Side, depth: ArrayLike = 0.0) -> tuple[Array, Array]:

@@ -1,8 +1,11 @@
 """Cutting one bay of a core with a straight hot wire: where the wire's middle runs in the rib planes at both ends.
 
 Both ends are in step: point i of a run at one end belongs to point i at the other, which on the skins is equal chord
-fraction. The skins are cut past the web's face and the tail, so that no ruling starts at a corner; those faces, being
-flat, are straight runs of their own.
+fraction. The skins are cut past the web's face and the tail, as far as the section goes on there, so that no ruling
+starts at a corner of the core; those faces are straight runs of their own.
+
+Half the kerf is laid off square to the ruled surface that the wire makes. Where that leans against the rib plane, as a
+swept nose does, it is more in the plane: what a wire aslant leaves of itself there is an ellipse.
 
 A bay is laid out in its block's axes: x aft and z up in mm, as one looks outwards along the span, turned nose down by
 the mean washout of the two ends, so that the block need not hold the wing's tilt as well.
@@ -10,7 +13,7 @@ the mean washout of the two ends, so that the block need not hold the wing's til
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal
 
 import numpy as np
@@ -105,7 +108,7 @@ class Run:
     centre
         (2, k, 2) the wire's middle at the inner and the outer end, from outside the block to outside.
     normals
-        (2, k, 2) unit vectors from the foam that stays towards the wire.
+        (2, k, 2) unit vectors in the rib planes, square to its way, from the foam that stays towards the wire.
     marks
         (number, index) of the sync marks.
     """
@@ -144,6 +147,10 @@ class Bay:
         """Of the block, along the span."""
         return self.ends[1].y - self.ends[0].y
 
+    def aside(self, run: Run, end: int) -> Array:
+        """(k, 2) ways in an end's rib plane on which the wire's middle is 1 mm off what it passes; see `aslant`."""
+        return aslant(run.normals[end], (run.centre[1] - run.centre[0]) / self.length)
+
     @property
     def section(self) -> tuple[float, float]:
         """Width and height of the block's ends."""
@@ -159,6 +166,33 @@ class Bay:
     def upright(self) -> tuple[float, float]:
         """Width and height of a block that is not sheared."""
         return self.section[0] + float(abs(self.shift[0])), self.section[1] + float(abs(self.shift[1]))
+
+
+def aslant(normals: Array, slope: Array) -> Array:
+    """Ways (..., 2) in a rib plane from a line there to the middle of a straight wire, 1 mm in radius, that touches it.
+
+    Parameters
+    ----------
+    normals
+        (..., 2) of the line, unit vectors.
+    slope
+        (..., 2) how far the wire runs aft and up for each mm along the span.
+
+    Notes
+    -----
+    The plane cuts the wire in an ellipse, stretched by ``sqrt(1 + u . u)`` along the slope u. A line of normal n
+    touches it at ``(n + (n . u) u) / sqrt(1 + (n . u)^2)`` from its middle, which stands off that line by the root: one
+    over the length that the rib plane shows of the surface's own unit normal.
+
+    Examples
+    --------
+    A nose swept back by 60 degrees:
+
+    >>> aslant(np.array([-1.0, 0.0]), np.array([np.sqrt(3.0), 0.0])).round(6).tolist()
+    [-2.0, 0.0]
+    """
+    lean = np.sum(normals * slope, axis=-1, keepdims=True)
+    return np.asarray((normals + lean * slope) / np.sqrt(1.0 + lean**2))
 
 
 def bay(loft: Loft, region: Region, places: tuple[float, float], how: How) -> Bay:
@@ -249,7 +283,7 @@ def _faces(region: Region, ends: tuple[End, ...], how: How, turn: float) -> list
     """Straight runs from above the block to below it: the face beside the web, and a tail that is cut off."""
     runs = []
     if region.kind != "whole":
-        lines = [turned(region.face_at(end.y), turn) for end in ends]
+        lines = [_web_line(region, end, turn) for end in ends]
         runs.append(_face("web", lines, ends, how, 1.0 if region.kind == "nose" else -1.0))
     if region.kind != "nose" and region.to < 1.0 and max(max(end.limits.stop) for end in ends) == region.limit:
         lines = [end.profile.at(np.array([-1.0, 1.0]) * region.limit) for end in ends]
@@ -257,16 +291,29 @@ def _faces(region: Region, ends: tuple[End, ...], how: How, turn: float) -> list
     return runs
 
 
+def _web_line(region: Region, end: End, turn: float) -> Array:
+    """(2, 2) where the core's face beside the web meets the lower and the upper skin."""
+    t = end.limits.stop if region.kind == "nose" else end.limits.start
+    z = end.profile.at(np.array([-1.0, 1.0]) * t)[:, 1]
+    face = turned(region.face_at(end.y), turn)
+    return np.column_stack([np.interp(z, face[:, 1], face[:, 0]), z])
+
+
 def _face(name: str, lines: list[Array], ends: tuple[End, ...], how: How, side: float) -> Run:
-    centre, normals = [], []
+    places, normals = [], []
     for line, end in zip(lines, ends, strict=True):
         up = (line[1] - line[0]) / np.linalg.norm(line[1] - line[0])
-        out = side * np.array([up[1], -up[0]])
         heights = np.array([end.block[3] + how.runway, end.block[3], end.block[1], end.block[1] - how.runway])
-        places = line[0] + ((heights - line[0, 1]) / up[1])[:, None] * up
-        centre.append(places + end.kerf / 2.0 * out)
-        normals.append(np.tile(out, (len(places), 1)))
-    return Run(name, np.array(centre), np.array(normals))
+        places.append(line[0] + ((heights - line[0, 1]) / up[1])[:, None] * up)
+        normals.append(np.tile(side * np.array([up[1], -up[0]]), (len(heights), 1)))
+    slope = _slope(places, ends)
+    off = [end.kerf / 2.0 * aslant(out, slope) for end, out in zip(ends, normals, strict=True)]
+    return Run(name, np.array(places) + off, np.array(normals))
+
+
+def _slope(places: list[Array], ends: tuple[End, ...]) -> Array:
+    """(k, 2) how far lines from places at the inner end to those at the outer one run aft and up for each mm."""
+    return np.asarray((places[1] - places[0]) / (ends[1].y - ends[0].y))
 
 
 def _skins(
@@ -287,11 +334,14 @@ def _skin(
 ) -> Run:
     """A run along the skins from parameter `first` down to `last`, a runway before and one after it."""
     t = ends[0].profile.t
+    slope = _slope([end.profile.points for end in ends], ends)
     inside = np.flatnonzero((t <= first + 1e-12) & (t >= last - 1e-12))[::-1]
     ahead = (name == "lower", name == "upper")  # which runway leads forward
     centre, normals = [], []
     for end in ends:
-        line, out = end.profile.offset(end.kerf / 2.0)[inside], end.profile.normals[inside]
+        out = end.profile.normals
+        line = replace(end.profile, normals=aslant(out, slope)).offset(end.kerf / 2.0)[inside]
+        out = out[inside]
         before, after = (
             _runway(end, how, line[i], t[inside[i]], forward) for i, forward in ((0, ahead[0]), (-1, ahead[1]))
         )

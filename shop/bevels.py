@@ -70,8 +70,7 @@ def rows(job: Job, places: ArrayLike) -> list[Row]:
 def _edge_rows(job: Job, side: Side, s: Array, n: Array, thickness: Array) -> list[EdgeRow]:
     skin = web.edge(job.loft, job.web.plane, s[:, None], n, side).h
     bedded = web.edge(job.loft, job.web.plane, s[:, None], n, side, job.depth[side](s)[:, None]).h
-    slope = seat.slope_at(job.web.cut(side), s, bedded, thickness)
-    height = seat.rest(bedded, n, slope, side)
+    height, slope = job.web.cut(side).line(s)
     gap = seat.clearance(bedded, n, height, slope, side).max(axis=1)
     columns = (
         skin[:, 0],

@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import ArrayLike
 
 from ..geom import blank, web
-from ..geom.web import SIDES, NothingInside, OffSection, Plane
+from ..geom.web import SIDES, NothingInside, OffSection, Plane, Side
 from . import strips
 from .wingfile import WingError
 
@@ -36,19 +37,26 @@ def outside(job: Job, fault: OffSection) -> WingError:
 
 
 def nothing_inside(job: Job, fault: NothingInside) -> WingError:
-    """The error of the first layer that leaves no height for the web: the skin, the bond line, the caps."""
+    """The error of the first thing that leaves no height for the web: skin, bond line, caps, how its edges are cut."""
     s = np.array([fault.s])
     faces = np.column_stack([job.face(name)(s) for name in blank.FACES])
+    stated = job.record.web
 
-    def left(depth: float) -> float:
-        top, bottom = (web.edge(job.loft, job.plane_at(job.cant), s[:, None], faces, side, depth).h for side in SIDES)
-        return float((top - bottom).min())
+    def left(depth: Callable[[Side], ArrayLike]) -> bool:
+        top, bottom = (
+            web.edge(job.loft, job.plane_at(job.cant), s[:, None], faces, side, depth(side)).h for side in SIDES
+        )
+        return bool((top - bottom).min() > 0.0)
 
-    if not left(0.0) > 0.0:
+    if not left(lambda side: 0.0):
         return job.error("skin.thickness", f"wanted a skin that leaves room for the web, got {fault}")
-    if not left(job.record.web.bond) > 0.0:
+    if not left(lambda side: stated.bond):
         return job.error("web.bond", f"wanted a bond line that leaves room for the web, got {fault}")
-    return job.error("caps", f"wanted stacks that leave room for the web, got {fault}")
+    if not left(lambda side: job.depth[side](s)):
+        return job.error("caps", f"wanted stacks that leave room for the web, got {fault}")
+    if stated.edge == "full bevel":
+        return job.error("web.thickness", f"wanted a sheet with room for both edges, got {fault}")
+    return job.error("web.edge", f"wanted an edge cut that leaves room for the web, got {stated.edge}: {fault}")
 
 
 def _fits(job: Job, plane: Plane, s: ArrayLike, n: ArrayLike, depth: ArrayLike) -> bool:

@@ -14,12 +14,21 @@ from ..geom.web import Plane, Side
 
 @dataclass(frozen=True)
 class BuiltWeb:
-    """A web as it would be cut: its plane, the survey of skin and seat over it, and its two edges."""
+    """A web as it would be cut: its plane, the survey of skin and seat over it, and its two edges.
+
+    Raises
+    ------
+    NothingInside
+        If the edges leave no sheet between them.
+    """
 
     plane: Plane
     survey: Survey
     top: Cut
     bottom: Cut
+
+    def __post_init__(self) -> None:
+        seat.refuse_crossing(self.top, self.bottom)
 
     def cut(self, side: Side) -> Cut:
         """The cut of one edge."""
@@ -33,7 +42,9 @@ class BuiltWeb:
     @cached_property
     def pads(self) -> float:
         """Volume of what thickens the sheet at the joint, mm^3."""
-        return joint.pads_volume(self.top, self.bottom, self.plain) if np.ptp(self.survey.thickness) else 0.0
+        if not np.ptp(self.survey.thickness):
+            return 0.0
+        return joint.pads_volume(self.plane, self.top, self.bottom, self.plain)
 
     @cached_property
     def filler(self) -> float:
@@ -48,7 +59,7 @@ class BuiltWeb:
     @cached_property
     def sheet(self) -> float:
         """Volume of the sheet with the pads on it, mm^3."""
-        return seat.sheet_volume(self.top, self.bottom)
+        return seat.sheet_volume(self.plane, self.top, self.bottom, self.survey.n)
 
     @cached_property
     def faces(self) -> tuple[blank.Face, blank.Face]:

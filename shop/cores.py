@@ -11,15 +11,16 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from ..geom import bays, core, path, straight, template, wire
+from ..geom.blank import FaceName
 from ..geom.block import NoPins
 from ..geom.core import Mesh, NoFoam, Region
 from ..geom.loft import Loft
 from ..geom.path import BetweenPlanes, Machine, OffTravel, Path
-from ..geom.seat import Along
 from ..geom.straight import Grid, Miss
 from ..geom.template import Board, FoldedWay
 from ..geom.wire import Bay, How, WideKerf
 from .records_core import Core
+from .ribs import faces, facing
 from .stock import Foam
 from .units import MM_PER_INCH
 from .wingfile import WingError
@@ -31,6 +32,7 @@ HOT_WIRE = (
     "Hot wire: hot foam gives off harmful fumes and can burn. Moving air, a mask, an isolated low-voltage supply, an "
     "extinguisher at hand; never leave it hot."
 )
+FACE: dict[str, FaceName] = {"nose": "front", "aft": "rear"}  # of the web, that a core lies beside
 Off = Callable[[tuple[float, float]], Miss]
 
 _GRAM = 1e-6  # g per mm^3 at 1 kg/m^3
@@ -139,20 +141,14 @@ def _core(job: Job, index: int, stated: Core) -> BuiltCore:
 
 
 def _region(job: Job, stated: Core) -> Region:
-    """What the core fills: its face beside the web stands off by the bond line."""
+    """What the core fills: its face beside the web stands off the sheet's by facing and bond line."""
     if stated.region == "whole":
         ends = stated.ends or (job.record.wing.stations[0].y, job.record.wing.stations[-1].y)
         return Region("whole", ends, to=stated.to, least=stated.least)
     bond = job.record.web.bond if stated.bond is None else stated.bond
-    face, away = (job.face("front"), -bond) if stated.region == "nose" else (job.face("rear"), bond)
-    return Region(
-        stated.region,
-        stated.ends or job.record.web.ends,
-        job.plane_at(job.cant),
-        Along(face.s, face.value + away),
-        stated.to,
-        stated.least,
-    )
+    web = faces(job, bond + (facing(job) or 0.0))
+    face = web.front if stated.region == "nose" else web.rear
+    return Region(stated.region, stated.ends or job.record.web.ends, web.web, face, stated.to, stated.least)
 
 
 def _how(job: Job, stated: Core) -> How:
@@ -170,7 +166,7 @@ def _how(job: Job, stated: Core) -> How:
 def _bounds(job: Job, key: str, stated: Core, region: Region, sampled: Grid, off: Off) -> tuple[float, ...]:
     """Ribs between the bays: as many as stated, or the fewest that hold the tolerance."""
     longest = stated.longest or float("inf")
-    divider = bays.Divider(region.ends, sampled.parts, sampled.thinned(2, 2).parts, sampled.spread, longest)
+    divider = bays.Divider(region.ends, sampled.parts, sampled.table, sampled.spread, longest)
     span, words = region.ends[1] - region.ends[0], job.wording
     need = int(np.ceil(span / longest - 1e-9))
     if need > (stated.bays or stated.most):
@@ -196,6 +192,25 @@ def _bounds(job: Job, key: str, stated: Core, region: Region, sampled: Grid, off
 
 def _pairs(bounds: tuple[float, ...]) -> list[tuple[float, float]]:
     return list(pairwise(bounds))
+
+
+def flange_steps(job: Job, made: BuiltCore, ends: tuple[float, float]) -> str:
+    """What is said of flange legs that lie between a core and web or skin, from rib to rib; "" where none do."""
+    beside = [m.flange for m in job.flanges if made.region.kind == "whole" or m.flange.face == FACE[made.region.kind]]
+    words, legs = job.wording, dict[str, list[str]]()
+    for flange in beside:
+        s = job.web.plane.s_at_rib(np.array(ends), 0.0, 0.0)
+        skin = list(dict.fromkeys(words.plain(leg) for leg in flange.shape.skin_leg(s).tolist()))
+        width = f"{words.length(flange.shape.web_leg)} wide on the web, {' to '.join(skin)} {words.units} on the skin"
+        legs.setdefault(width, []).append(flange.name)
+    if not legs:
+        return ""
+    thick = words.length(beside[0].shape.thickness)
+    wide = "; ".join(f"{' and '.join(names)} {width}" for width, names in legs.items())
+    return (
+        f"no room is left for the legs of the flanges, {thick} thick: {wide}. A straight wire cannot cut such a step: "
+        "relieve the foam by hand"
+    )
 
 
 def wire_paths(job: Job) -> tuple[WirePath, ...]:

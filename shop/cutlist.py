@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..geom import core
-from .describe_strength import cut_length
+from .describe_strips import cut_length
 from .job import Job
 from .masses import Masses, masses
 from .nesting import Nesting, nestings

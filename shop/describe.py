@@ -134,7 +134,7 @@ def panel(job: Job) -> list[tuple[str, str]]:
         ("span", f"{words.length(f.span)}, area {words.area(f.area)}, {f.stations} stations, {wing.planform} planform"),
         ("chords", f"{words.length(f.chords[0])} at the root, {words.length(f.chords[1])} at the tip"),
         ("sections", ", ".join(airfoils)),
-        ("washout", f"{degrees(f.washout[0])} to {degrees(f.washout[1])}, law {f.law}"),
+        ("washout", _washout(job)),
         (
             "steepest",
             f"{degrees(f.steepest * per)} per {unit} at y {words.plain(f.steepest_y)}",
@@ -161,6 +161,16 @@ def panel(job: Job) -> list[tuple[str, str]]:
         ),
         ("masses", f"filler {words.mass(f.filler)}, the web with all that bonds it {words.mass(f.mass)}"),
     ]
+
+
+def _washout(job: Job) -> str:
+    """Washout at both ends, and its least and greatest where they lie in between."""
+    said = [degrees(value) for value in job.facts.washout]
+    text = f"{said[0]} at the root, {said[1]} at the tip"
+    for word, (y, value) in zip(("least", "greatest"), washout.extremes(job.loft.washout), strict=True):
+        if (extreme := degrees(float(np.degrees(value)))) not in said:
+            text += f", {word} {extreme} at y {job.wording.length(y)}"
+    return f"{text}, law {job.facts.law}"
 
 
 def _skin(job: Job) -> str:

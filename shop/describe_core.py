@@ -3,11 +3,14 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from typing import Any
 
+from ..geom.rib import Cradle, Rib
 from ..geom.straight import Miss
-from .cores import HOT_WIRE, BuiltCore
+from .cores import HOT_WIRE, BuiltCore, flange_steps
 from .job import Job
+from .ribs import cradle_sheet, facing, left_out, rib_sheet
 
 FAR_OFF = 1.0  # mm of straight-cut error from which a core is doubtful
 _FLIMSY = 3.0  # mm, a template's tail thinner than this bends under the wire
@@ -45,9 +48,8 @@ def miss_words(job: Job, miss: Miss) -> str:
     if abs(miss.off) < 5e-4:
         return "true"
     how = "proud by" if miss.off > 0.0 else "short by"
-    side = "upper" if miss.t > 0.0 else "lower"
-    fraction = f"{miss.t**2:.2f} chord"
-    return f"{how} {job.wording.length(abs(miss.off))} at y {job.wording.column(miss.y, 1)}, {fraction}, {side} side"
+    where = "beside the web" if miss.web else f"{miss.t**2:.2f} chord, {miss.side} side"
+    return f"{how} {job.wording.length(abs(miss.off))} at y {job.wording.column(miss.y, 1)}, {where}"
 
 
 def _bay(job: Job, made: BuiltCore, index: int) -> str:
@@ -66,18 +68,28 @@ def _ribs(job: Job) -> str:
     widths = [rib.slot.width for rib in job.ribs if rib.slot is not None]
     ends = list(dict.fromkeys(words.plain(width) for width in (min(widths, default=0.0), max(widths, default=0.0))))
     slots = f", slots {' to '.join(ends)} {words.units} wide" if widths else ""
-    return f"{len(job.ribs)} at y {', '.join(words.plain(rib.y) for rib in job.ribs)}{slots}"
+    sheet, inner = rib_sheet(job), job.record.ribs is not None and job.record.ribs.outline == "inner"
+    what = "the skin's inside" if inner else "the outer surface"
+    square = f"; cut square from {words.length(sheet)}, {_short(job, job.ribs)} {what}" if sheet else ""
+    return f"{len(job.ribs)} at y {', '.join(words.plain(rib.y) for rib in job.ribs)}{slots}{square}"
 
 
 def _cradles(job: Job) -> str:
     words = job.wording
     high = ", ".join(words.plain(float(cradle.outline[:, 1].max())) for cradle in job.cradles)
-    return f"{len(job.cradles)} at y {', '.join(words.plain(c.y) for c in job.cradles)}, {high} {words.units} high"
+    places = ", ".join(words.plain(c.y) for c in job.cradles)
+    square = f"; cut square from {words.length(cradle_sheet(job))}, {_short(job, job.cradles)} the panel"
+    return f"{len(job.cradles)} at y {places}, {high} {words.units} high{square}"
+
+
+def _short(job: Job, made: Sequence[Rib | Cradle]) -> str:
+    """How far pieces that are cut square stand off what they touch, in words."""
+    return f"one face up to {job.wording.length(max(piece.short for piece in made))} short of"
 
 
 def doubts(job: Job) -> list[str]:
-    """What may go wrong in cutting the cores."""
-    out = []
+    """What may go wrong in cutting the cores and the ribs."""
+    out = _rib_doubts(job)
     for made in job.cores:
         where = f"core {made.number}"
         tail = made.region.least + min(made.stated.kerf) - made.bays[0].how.wire
@@ -87,34 +99,46 @@ def doubts(job: Job) -> list[str]:
         if abs(made.worst.off) > FAR_OFF:
             miss = miss_words(job, made.worst)
             out.append(f"{where}: the straight cut is {miss}: think of more bays, or state a tolerance in their place")
-        step = _step(job, made)
-        if step > 0.05:
+        legs = flange_steps(job, made, made.region.ends)
+        if legs:
+            out.append(f"{where}: {legs}")
+        if made.region.web is not None and facing(job) is None:
             out.append(
-                f"{where}: the web's thickness changes inside a bay, so its straight face is off by up to "
-                f"{job.wording.length(step)}"
+                f"{where}: its face leaves no room for the web's facing: no cloth in stock tells its thickness; add it "
+                f"to cores[{made.number}].bond"
             )
     return out
 
 
-def _step(job: Job, made: BuiltCore) -> float:
-    """How far a core's straight face beside the web is off, where the web is thickened inside a bay; mm."""
-    web, face = made.region.web, made.region.face
-    if web is None or face is None or len(face.s) < 2:
-        return 0.0
-    worst = 0.0
-    for a, b in zip(made.bounds[:-1], made.bounds[1:], strict=True):
-        s0, s1 = (float(web.s_at_rib(y, 0.0, 0.0)) for y in (a, b))
-        ends = float(face(s0)), float(face(s1))
-        inside = [s for s in face.s if s0 < s < s1]
-        straight = [ends[0] + (s - s0) / (s1 - s0) * (ends[1] - ends[0]) for s in inside]
-        worst = max([worst, *(abs(float(face(s)) - n) for s, n in zip(inside, straight, strict=True))])
-    return worst
+def _rib_doubts(job: Job) -> list[str]:
+    """Ribs of which something is left out, or that are drawn for another web or sheet than will be there."""
+    words, cutting, out = job.wording, job.record.cutting, []
+    for i, rib in enumerate(job.ribs, start=1):
+        if rib.slivers:
+            where = f"rib {i}, y {words.length(rib.y)}"
+            out.append(f"{where}: {left_out(job, rib)}")
+    if job.ribs and facing(job) is None:
+        out.append(
+            "the ribs' slots leave no room for the web's facings: no cloth in stock tells their thickness; add it to "
+            "ribs.clearance"
+        )
+    for key, stated, cut in (
+        ("ribs", rib_sheet(job) if job.ribs else 0.0, cutting.ribs if cutting else None),
+        ("cradles", cradle_sheet(job) if job.cradles else 0.0, cutting.cradles if cutting else None),
+    ):
+        if stated and cut is not None and abs(stated - cut.thickness) > 1e-6:
+            sheets = f"{words.length(stated)}, but cut from {words.length(cut.thickness)}"
+            out.append(
+                f"{key} are laid out for a sheet of {sheets}: {key}.thickness and cutting.{key}.thickness differ"
+            )
+    return out
 
 
 def core_records(job: Job) -> list[dict[str, Any]]:
     """The cores as records: mm, degrees, grams.
 
-    `off` is positive where foam stands proud, `turn` how far the block's axes are nose down from the wing's.
+    `off` is positive where foam stands proud, on the upper or lower side or beside the web; `turn` is how far the
+    block's axes are nose down from the wing's.
     """
     return [
         {
@@ -129,7 +153,7 @@ def core_records(job: Job) -> list[dict[str, Any]]:
                     "off": miss.off,
                     "off_y": miss.y,
                     "off_fraction": miss.t**2,
-                    "off_side": "upper" if miss.t > 0.0 else "lower",
+                    "off_side": miss.side,
                     "block": [bay.length, *bay.section],
                     "shift": bay.shift.tolist(),
                     "turn": math.degrees(bay.turn),
@@ -157,13 +181,33 @@ def path_records(job: Job) -> list[dict[str, Any]]:
 
 
 def rib_records(job: Job) -> list[dict[str, Any]]:
-    """The ribs as records: mm."""
+    """The ribs as records: mm; `short` is how far one face of the sheet stands off the section, cut square."""
     return [
-        {"y": rib.y, "parts": len(rib.pieces), "holes": len(rib.holes), "slot": rib.slot.width if rib.slot else None}
+        {
+            "y": rib.y,
+            "sheet": rib_sheet(job),
+            "short": rib.short,
+            "parts": len(rib.pieces),
+            "left_out": len(rib.slivers),
+            "holes": len(rib.holes),
+            "slot": rib.slot.width if rib.slot else None,
+        }
         for rib in job.ribs
     ]
 
 
 def cradle_records(job: Job) -> list[dict[str, Any]]:
-    """The cradles as records: mm; `line` is where the mark for the strip stands, aft as the panel lies."""
-    return [{"y": cradle.y, "height": float(cradle.outline[:, 1].max()), "line": cradle.line} for cradle in job.cradles]
+    """The cradles as records: mm; `line` is where the mark for the strip stands, aft as the panel lies.
+
+    `short` is how far one face of the sheet stands off the panel, cut square.
+    """
+    return [
+        {
+            "y": cradle.y,
+            "sheet": cradle_sheet(job),
+            "short": cradle.short,
+            "height": float(cradle.outline[:, 1].max()),
+            "line": cradle.line,
+        }
+        for cradle in job.cradles
+    ]

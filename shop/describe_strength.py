@@ -1,22 +1,29 @@
-"""What is said of load, cap strips and reserves: lines for the screen, a record, doubts, notes for a drawing."""
+"""What is said of load and reserves: lines for the screen, a record, doubts."""
 
 from __future__ import annotations
 
+import math
+from collections.abc import Iterator
 from dataclasses import asdict
 from typing import Any
 
 import numpy as np
 
-from ..geom.web import SIDES, Side
+from ..geom.web import SIDES
+from . import describe_strips
 from .job import Job
-from .records_caps import Caps, Load
+from .laminate import laminate
+from .records_caps import Load
 from .strength import STRAINED, UNLOOKED, Bent, Check, Strength
-from .strips import Layer, Schedule, bond_shear, cover_thickness, ramp
-from .units import MM_PER_INCH
+from .strips import Schedule
 from .wording import CAUTION
 
 GRAMS_PER_POUND = 453.59237
 PLACES = 9
+MOST = 99.0  # a larger reserve factor says no more
+LIGHT = 5.0  # times the mass of both webs: an aircraft that is lighter is a slip of the unit
+LOADING = 0.3, 300.0  # kg/m^2 of wing loading beyond which the aircraft's mass is doubtful
+PACKED = 0.65  # share of the volume that the fibre of a cloth can take up, common practice
 
 
 def lines(job: Job) -> list[tuple[str, str]]:
@@ -26,7 +33,9 @@ def lines(job: Job) -> list[tuple[str, str]]:
         return []
     out = [("load", _load(job, load)), ("", _inner(job, found.schedule))]
     if caps is not None:
-        out += [("strips", _strips(job, caps, found.schedule)), *(("bent", _bent(job, bent)) for bent in found.bent)]
+        out.append(("strips", describe_strips.line(job, caps, found.schedule)))
+        out += [("bent", _bent(job, bent)) for bent in found.bent]
+    out.append(("reckoned", f"shear flow: {found.schedule.carried.flow_formula}"))
     out += [("reckoned", f"{check.name}: {check.formula}") for check in found.checks]
     out += [("allowed", "; ".join(allowables(job)))]
     return [*out, ("caution", f"{CAUTION}; {UNLOOKED}")]
@@ -37,11 +46,13 @@ def _load(job: Job, load: Load) -> str:
         what = "bending moments" if load.moments is not None else "cap forces"
         return f"{what} as tabled at limit load; ultimate is {load.ultimate_factor:g} x limit"
     shape = load.span_load if isinstance(load.span_load, str) else "tabled"
-    mass = load.mass or 0.0
-    heavy = f"{mass / GRAMS_PER_POUND:.5g} lb" if job.record.units == "in" else f"{mass / 1e3:.5g} kg"
     span = job.wording.length(load.semi_span or 0.0)
     factor = f"{load.load_factor:g} g at limit, {load.ultimate_factor:g} times that at ultimate load"
-    return f"{shape} span load over a semi-span of {span}, {heavy} at {factor}"
+    return f"{shape} span load over a semi-span of {span}, {_heavy(job, load.mass or 0.0)} at {factor}"
+
+
+def _heavy(job: Job, grams: float) -> str:
+    return f"{grams / GRAMS_PER_POUND:.5g} lb" if job.record.units == "in" else f"{grams / 1e3:.5g} kg"
 
 
 def _inner(job: Job, found: Schedule) -> str:
@@ -51,22 +62,6 @@ def _inner(job: Job, found: Schedule) -> str:
         f"bending moment {words.moment(found.moment[0])}, "
         f"cap force {words.force(found.force[0])} with the cap centroids {words.length(found.apart[0])} apart"
     )
-
-
-def size(job: Job, caps: Caps) -> str:
-    """Width and thickness of a strip."""
-    return f"{job.wording.plain(caps.width)} x {job.wording.length(caps.thickness)}"
-
-
-def _strips(job: Job, caps: Caps, found: Schedule) -> str:
-    beside = f", {caps.beside} side by side" if caps.beside > 1 else ""
-    counts = ", ".join(f"{len(found.stacks[side].stops)} layers at the {side}" for side in SIDES)
-    bonds = " and ".join(job.wording.length(found.bond[side]) for side in SIDES)
-    text = f"{caps.strip} {size(job, caps)}{beside}: {counts}, the longest nearest the skin; bond lengths {bonds}, "
-    text += f"ends feathered over {job.wording.length(ramp(caps))}"
-    if cover := cover_thickness(job, caps):
-        text += f"; cover {job.wording.length(cover)}"
-    return text
 
 
 def _bent(job: Job, bent: Bent) -> str:
@@ -80,40 +75,97 @@ def _percent(strain: float) -> str:
     return f"{100.0 * strain:.3f} %"
 
 
+def factor(reserve: float) -> str:
+    """A reserve factor in words.
+
+    >>> factor(1.416), factor(250.0), factor(float("inf"))
+    ('1.42', '>99', '>99')
+    """
+    return f">{MOST:g}" if reserve > MOST else f"{reserve:.2f}"
+
+
 def allowables(job: Job) -> list[str]:
     """Every allowable with where it comes from."""
-    found, caps, words = job.strength, job.record.caps, job.wording
-    if found is None:
-        return []
-    out = []
-    if caps is not None:
-        how: dict[Side, str] = {"top": "compression", "bottom": "tension"}
-        one = found.schedule.one
-        out = [f"one strip {words.force(one[side].value)} in {how[side]} ({one[side].origin})" for side in SIDES]
-        bond = bond_shear(job, caps)
-        out.append(f"strip bond {words.stress(bond.value)} ({bond.origin})")
-    for check in found.checks:
-        if check.unit == "MPa" and check.name != "strip bond":
-            out.append(f"{check.name} {words.stress(float(np.max(check.allowable)))} ({check.origin})")
-    return out
-
-
-def doubts(job: Job) -> list[str]:
-    """Reserves below 1, what could not be checked, strips bent too far."""
     found, words = job.strength, job.wording
     if found is None:
         return []
-    said = []
-    for check in found.checks:
-        i = check.least
-        if check.reserve[i] < 1.0:
-            s, y = (words.length(v[i]) for v in (found.schedule.s, found.schedule.y))
-            said.append(f"{check.name}: reserve factor {check.reserve[i]:.2f}, below 1, at s {s} (rib y {y})")
-    said += [f"not checked, {what}" for what in found.unchecked]
+    return [
+        *describe_strips.allowables(job),
+        *(
+            f"{check.name} {words.stress(float(check.allowed.max()))} ({check.origin})"
+            for check in found.checks
+            if check.unit == "MPa" and check.name != "strip bond"
+        ),
+    ]
+
+
+def doubts(job: Job) -> list[str]:
+    """Reserves below 1, what could not be checked, slips in what is stated, strips bent too far."""
+    found = job.strength
+    if found is None:
+        return []
+    said = [*_reserve_doubts(job, found), *(f"not checked, {what}" for what in found.unchecked)]
+    said += [*_mass_doubts(job), *_lighter_doubts(job), *_dry_doubts(job)]
     for bent in found.bent:
         if max(bent.bend, bent.twist) > STRAINED:
             said.append(f"{_bent(job, bent)}: more than {_percent(STRAINED)}, think of thinner strips")
     return said
+
+
+def _reserve_doubts(job: Job, found: Strength) -> Iterator[str]:
+    words = job.wording
+    for check in found.checks:
+        i = check.least
+        if check.reserve[i] < 1.0:
+            s, y = (words.length(v[i]) for v in (found.schedule.s, found.schedule.y))
+            yield f"{check.name}: reserve factor {check.reserve[i]:.2f}, below 1, at s {s} (rib y {y})"
+    if idle := [check.name for check in found.checks if math.isinf(check.reserve.min())]:
+        yield f"the load as stated asks nothing of: {', '.join(idle)}"
+
+
+def _mass_doubts(job: Job) -> Iterator[str]:
+    """An aircraft lighter than its webs make likely, or too light or too heavy for its wing: grams for kilograms."""
+    mass = job.record.load.mass if job.record.load else None
+    if mass is None:
+        return
+    text, ask = f"load.mass, {_heavy(job, mass)}, is", "is that the unit that is meant? A bare mass is in grams"
+    webs, loading = 2.0 * job.masses.total, _wing_loading(job, mass)
+    if mass < LIGHT * webs:
+        yield f"{text} less than {LIGHT:g} times the two webs', {_heavy(job, webs)}: {ask}"
+    elif not LOADING[0] <= loading <= LOADING[1]:
+        yield f"{text} {loading:.3g} kg/m² of the wing: {ask}"
+
+
+def _wing_loading(job: Job, grams: float) -> float:
+    """kg/m^2 of a wing as wide as the panel's root between the two panels."""
+    load, loft = job.record.load, job.loft
+    inner = 0.0 if load is None or load.semi_span is None else max(load.semi_span - float(np.ptp(loft.y)), 0.0)
+    area = loft.area() + inner * job.record.wing.stations[0].chord
+    return grams / 1e3 / (2.0 * area / 1e6)
+
+
+def _lighter_doubts(job: Job) -> Iterator[str]:
+    """Materials stated lighter than stock's strengths are for."""
+    web, caps = job.record.web, job.record.caps
+    cloth = web.facing.cloth if web.facing else None
+    for name in dict.fromkeys(filter(None, (web.foam, web.adhesive, cloth, caps.strip if caps else None))):
+        if (found := job.stock.lighter(name)) is not None:
+            left = "are left out" if name == web.foam else "are taken all the same"
+            yield (
+                f"{name} is stated at {found.own:g} kg/m³, but stock's strengths are for {found.usual:g} and {left}: "
+                f'state its {", ".join(found.strengths)} under [materials."{name}"]'
+            )
+
+
+def _dry_doubts(job: Job) -> Iterator[str]:
+    """A facing with less resin than its cloth can hold together."""
+    web = job.record.web
+    fibre = laminate(web.facing, job.stock, web.adhesive).fibre if web.facing else None
+    if fibre is not None and fibre > PACKED:
+        yield (
+            f"web.facing would be {100.0 * fibre:.0f} % fibre by volume, more than cloth can be packed to: too dry to "
+            "bear what is reckoned"
+        )
 
 
 def places(found: Strength) -> list[int]:
@@ -161,33 +213,6 @@ def _check(found: Strength, check: Check) -> dict[str, Any]:
         "reserve": float(check.reserve[i]),
         "s": float(found.schedule.s[i]),
         "demand": float(check.demand[i]),
-        "allowable": float(np.broadcast_to(check.allowable, check.demand.shape)[i]),
+        "allowable": float(check.allowed[i]),
         "from": check.origin,
     }
-
-
-def strip_notes(job: Job) -> list[str]:
-    """What a drawing of the web says of the strips that go on it."""
-    caps, found = job.record.caps, job.caps
-    if caps is None or found is None:
-        return []
-    return [
-        f"Cap strips: {caps.strip} {size(job, caps)}, shortest laid first, ends feathered over "
-        f"{job.wording.length(ramp(caps))}; from ROOT, cut to:",
-        *(f"{side} edge: {_lengths(job, side)}" for side in SIDES),
-        f"At ultimate load, allowed: {'; '.join(allowables(job)[:3])}",
-        f"Counts of strips are {CAUTION}",
-    ]
-
-
-def _lengths(job: Job, side: Side) -> str:
-    pieces = [layer for layer in reversed(job.layers) if layer.side == side]
-    return ", ".join(f"{layer.count} x {cut_length(job, layer)}" for layer in pieces)
-
-
-def cut_length(job: Job, layer: Layer) -> str:
-    """Length to cut a strip to, in whole mm or tenths of an inch, rounded up."""
-    tenth = MM_PER_INCH / 10.0
-    if job.record.units == "in":
-        return f"{np.ceil(layer.length / tenth - 1e-6) / 10.0:.1f} in"
-    return f"{np.ceil(layer.length - 1e-6):.0f} mm"

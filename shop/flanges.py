@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from ..geom.blank import FACES, FaceName
-from ..geom.flange import Flange, Shape, TooWide, flange, require_room
+from ..geom.flange import Flange, Shape, TooWide, lay, require_room
 from ..geom.seat import Along
 from ..geom.web import SIDES, Side
 from .laminate import laminate
@@ -65,7 +65,7 @@ def _laid(job: Job, web: BuiltWeb, key: str, side: Side, face: FaceName, shape: 
         require_room(job.loft, web.plane, side, face, n=n, ends=ends, shape=shape)
     except TooWide as fault:
         raise _too_wide(job, key, face, fault, web) from None
-    return flange(job.loft, web.plane, side, face, n=n, ends=ends, shape=shape)
+    return lay(job.loft, web.plane, side, face, n=n, ends=ends, shape=shape)
 
 
 def _laminate(job: Job, stated: Flanges) -> tuple[float, float]:

@@ -115,9 +115,9 @@ class Job(Results):
         def figure(angle: float) -> float:
             try:
                 survey = surveys(angle) if surveys else self.trial_survey(angle, thickness)
+                built = self.fit(angle, survey, treatment)
             except (OffSection, NothingInside):
                 return float("inf")
-            built = self.fit(angle, survey, treatment)
             return built.filler + self._trial_stack(survey) if aim == "filler" else built.gap
 
         angle, least = cant.least(figure, -limit, limit, step=float(SWEEP), close=float(CLOSE), near=TOLD_APART[aim])

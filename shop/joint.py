@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -171,23 +171,27 @@ def _require_cover(job: Job, end: JointEnd, survey: Survey) -> None:
 def _along(job: Job, end: JointEnd, web: Plane, n: float) -> Tube:
     reach = end.stated.pin_length or end.stated.length
     first, last = end.thickening.place(0.0), end.thickening.place(reach)
+    level = Tube((first, 0.0), (last, 0.0), n, end.across)
     height = end.stated.height
     if height is None:
-        across = n + end.across / 2.0 * np.linspace(-1.0, 1.0, 9)
-        low, high = geometry.between(job.loft, web, job.depth, np.linspace(first, last, 21)[:, None], across)
-        height = (low + high) / 2.0
-    return Tube((first, height), (last, height), n, end.across)
+        room = geometry.fit(job.loft, web, level, job.depth).room
+        height = (room["top"] - room["bottom"]) / 2.0
+    return replace(level, start=(first, height), stop=(last, height))
 
 
 def _upright(job: Job, end: JointEnd, web: Plane, n: float) -> Tube:
     at = end.stated.pin_at if end.stated.pin_at is not None else end.stated.length / 2.0
     s = end.thickening.place(at)
-    around = np.radians(np.arange(0.0, 360.0, 7.5))
-    radius = end.across / 2.0
-    low, high = geometry.between(job.loft, web, job.depth, s + radius * np.cos(around), n + radius * np.sin(around))
+    low, high = _seats(job, web, s, n, end.across)
     half = (high - low if end.stated.pin_length is None else end.stated.pin_length) / 2.0
     middle = (low + high) / 2.0
     return Tube((s, middle - half), (s, middle + half), n, end.across)
+
+
+def _seats(job: Job, web: Plane, s: float, n: float, across: float) -> tuple[float, float]:
+    """Highest bottom seat and lowest top seat over a disc about a place (s, n)."""
+    room = geometry.fit(job.loft, web, Tube((s, 0.0), (s, 0.0), n, across), job.depth).room
+    return -room["bottom"], room["top"]
 
 
 def _require_fit(job: Job, end: JointEnd, web: Plane, laid: Tube) -> None:
@@ -197,7 +201,7 @@ def _require_fit(job: Job, end: JointEnd, web: Plane, laid: Tube) -> None:
         return
     words, stated = job.wording, end.stated
     key = "pin_length" if stated.pin_axis == "upright" else "height" if stated.height is not None else "pin"
-    low, high = geometry.between(job.loft, web, job.depth, np.array([found.s[side]]), np.array([laid.n]))
+    low, high = _seats(job, web, found.s[side], laid.n, 0.0)
     tall = abs(laid.stop[1] - laid.start[1])
     size = f"{words.length(end.across)} across" + (f" and {words.length(tall)} long" if key == "pin_length" else "")
     raise KeyedError(

@@ -10,10 +10,25 @@ from .stock import Adhesive, Cloth, Stock
 
 @dataclass(frozen=True)
 class Laminate:
-    """All layers of one face: g/m^2 with the resin, and mm; None where no cloth tells the fibre's density."""
+    """All layers of one face; None where no cloth tells the fibre's density.
+
+    Attributes
+    ----------
+    areal
+        With the resin, g/m^2.
+    thickness
+        As laid, mm.
+    bearing
+        The thickness that the cloth's shear figures count for, mm: as thick as its fibre makes the laminate that they
+        are for. By the rule of mixtures strength and stiffness go with the fibre; more resin adds to neither.
+    fibre
+        The fibre's share of the volume as laid.
+    """
 
     areal: float
-    thickness: float | None
+    thickness: float | None = None
+    bearing: float | None = None
+    fibre: float | None = None
 
 
 def laminate(facing: Facing, stock: Stock, resin: str) -> Laminate:
@@ -26,5 +41,7 @@ def laminate(facing: Facing, stock: Stock, resin: str) -> Laminate:
     dry = facing.layers * (cloth.areal_weight if cloth else facing.areal_weight or 0.0)
     areal = dry / (1.0 - facing.resin_fraction)
     if cloth is None:
-        return Laminate(areal, None)
-    return Laminate(areal, dry / cloth.fibre_density + (areal - dry) / stock.find(resin, Adhesive).density)
+        return Laminate(areal)
+    fibre = dry / cloth.fibre_density
+    thickness = fibre + (areal - dry) / stock.find(resin, Adhesive).density
+    return Laminate(areal, thickness, fibre / cloth.bears_at, fibre / thickness)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -14,6 +14,8 @@ from ..geom import lettering
 from ..geom.drawing import Anchor, Label, Role, Stroke
 
 _AIR = 0.8  # mm kept free round every text
+_TITLE, _NOTE = 4.5, 3.0  # heights of lettering
+LEADING, BETWEEN = 1.6, 0.4  # of notes: from line to line, and more after a paragraph, in heights of lettering
 
 
 @dataclass(frozen=True)
@@ -51,20 +53,87 @@ class Layout:
 
         The heights of lettering are tried one after another; False, and nothing written, if none fits.
         """
-        shapely.prepare(within)
-        taken = shapely.STRtree(self._taken)
-        for height in heights:
-            half = lettering.width(text, height) / 2.0 + _AIR
-            low, high = (height * by for by in lettering.extent(text))
-            x, y = places.T
-            boxes = shapely.box(x - half, y + low - _AIR, x + half, y + high + _AIR)
+        return any(self._put_first(text, places, np.zeros(len(places)), within, height) for height in heights)
+
+    def put_along(
+        self,
+        texts: Sequence[str],
+        line: NDArray[np.float64],
+        within: BaseGeometry | None = None,
+        *,
+        every: float = np.inf,
+        heights: Iterable[float] = (2.5,),
+        off: Iterable[float] = (0.0,),
+    ) -> int:
+        """Write one of `texts` beside a line (k, 2), and again wherever it has run on for `every` mm.
+
+        At each place the texts are tried in turn, each in all heights of lettering and at all distances `off` the
+        nearest to the line that it can stand; returns at how many places there was room for one.
+        """
+        path = shapely.LineString(line)
+        count = int(np.ceil(path.length / every)) or 1
+        chunk = path.length / count
+        shift = np.linspace(-0.5, 0.5, 2 * int(np.ceil(chunk / 6.0)) + 1)
+        near = shift[np.abs(shift).argsort(kind="stable")] * chunk
+        tries = [(text, height, far) for text in texts for height in heights for far in off]
+        places = [(i + 0.5) * chunk + near for i in range(count)]
+        return sum(any(self._put_beside(path, at, within, *what) for what in tries) for at in places)
+
+    def _put_beside(
+        self,
+        path: shapely.LineString,
+        at: NDArray[np.float64],
+        within: BaseGeometry | None,
+        text: str,
+        height: float,
+        off: float,
+    ) -> bool:
+        """Write a text beside a path at the first of the places along it with room on either side."""
+        before, after = (shapely.get_coordinates(path.interpolate(np.clip(at + d, 0.0, path.length))) for d in (-1, 1))
+        ways = after - before
+        ways *= np.where(ways[:, :1] < 0.0, -1.0, 1.0)  # the text reads to the right, or upwards
+        ways[(np.abs(ways[:, 0]) < 1e-9) & (ways[:, 1] < 0.0)] *= -1.0
+        ways /= np.linalg.norm(ways, axis=1)[:, None]
+        low, high = (height * by for by in lettering.extent(text))
+        away = np.array([1.5 * _AIR + off - low, -1.5 * _AIR - off - high])  # baselines over and under the line
+        across = np.column_stack([-ways[:, 1], ways[:, 0]])
+        places = ((before + after) / 2.0)[:, None] + away[:, None] * across[:, None]
+        angles = np.degrees(np.arctan2(ways[:, 1], ways[:, 0]))
+        return self._put_first(text, places.reshape(-1, 2), np.repeat(angles, 2), within, height)
+
+    def _put_first(
+        self,
+        text: str,
+        places: NDArray[np.float64],
+        angles: NDArray[np.float64],
+        within: BaseGeometry | None,
+        height: float,
+    ) -> bool:
+        """Write a text about the first of many places (k, 2), turned by an angle (k,), with room for it."""
+        half = lettering.width(text, height) / 2.0 + _AIR
+        low, high = (height * by for by in lettering.extent(text))
+        corners = np.array([[-half, low - _AIR], [half, low - _AIR], [half, high + _AIR], [-half, high + _AIR]])
+        c, s = np.cos(np.radians(angles)), np.sin(np.radians(angles))
+        turned = np.stack(
+            [
+                corners[:, 0] * c[:, None] - corners[:, 1] * s[:, None],
+                corners[:, 0] * s[:, None] + corners[:, 1] * c[:, None],
+            ],
+            axis=-1,
+        )
+        boxes = shapely.polygons(places[:, None] + turned)
+        if within is None:
+            room = np.full(len(boxes), True)
+        else:
+            shapely.prepare(within)
             room = shapely.contains(within, boxes)
-            room[taken.query(boxes, predicate="intersects")[0]] = False
-            if room.any():
-                at = places[int(room.argmax())]
-                self.write(Label(text, float(at[0]), float(at[1]), height, anchor="middle"))
-                return True
-        return False
+        room[shapely.STRtree(self._taken).query(boxes, predicate="intersects")[0]] = False
+        if not room.any():
+            return False
+        first = int(room.argmax())
+        (x, y), angle = places[first].tolist(), float(angles[first])
+        self.write(Label(text, x, y, height, angle, "middle"))
+        return True
 
     def put(
         self,
@@ -113,6 +182,24 @@ class Layout:
             y -= 1.2 * height + 0.5 * above
             self.write(Label(text, x, y, height, anchor=anchor))
             above = height
+
+    def write_notes(
+        self,
+        heads: Sequence[str],
+        notes: Sequence[str],
+        x: float,
+        y: float,
+        *,
+        anchor: Anchor = "start",
+        wide: float = 150.0,
+    ) -> None:
+        """Write a drawing's title and, wrapped, its notes one below the other, beginning just under y."""
+        texts = [*((text, _TITLE) for text in heads), *((text, _NOTE) for text in notes)]
+        for number, (text, height) in enumerate(texts, start=1):
+            for line in wrapped(text, height, wide):
+                y -= LEADING * height
+                self.write(Label(line, x, y, height, anchor=anchor, paragraph=number))
+            y -= BETWEEN * height
 
 
 def wrapped(text: str, height: float, wide: float) -> list[str]:

@@ -7,7 +7,7 @@ import numpy as np
 from ..geom.block import PIN
 from ..geom.drawing import Hand
 from ..geom.wire import Bay, Run
-from .cores import HOT_WIRE, BuiltCore
+from .cores import HOT_WIRE, BuiltCore, flange_steps
 from .job import Job
 from .wording import Wording, degrees
 
@@ -26,6 +26,9 @@ def notes(job: Job, made: BuiltCore, index: int, hand: Hand) -> list[str]:
         "boards' edges.",
         _straight(made, index, words),
     ]
+    legs = flange_steps(job, made, (bay.ends[0].y, bay.ends[1].y))
+    if legs:
+        said.append(f"{legs[0].upper()}{legs[1:]}.")
     if made.region.kind != "nose" and min(min(end.limits.stop) for end in bay.ends) < made.region.limit - 1e-9:
         thin = words.length(made.region.least)
         said.append(f"Foam aft of END OF CORE, where it would be thinner, is cut {thin} thick: cut it off there.")
@@ -94,8 +97,8 @@ def _straight(made: BuiltCore, index: int, words: Wording) -> str:
     if abs(miss.off) < 5e-4:
         return "A straight wire cuts this bay exactly."
     how = "stands proud by" if miss.off > 0 else "is short by"
-    side = "upper" if miss.t > 0 else "lower"
+    where = "beside the web" if miss.web else f"{miss.t**2:.2f} chord, {miss.side} side"
     return (
         f"As the wire is straight, foam {how} up to {words.length(abs(miss.off))}, most at rib y "
-        f"{_rough(miss.y, words)}, {miss.t**2:.2f} chord, {side} side."
+        f"{_rough(miss.y, words)}, {where}."
     )

@@ -158,7 +158,8 @@ class Web(Record):
     thickness: Positive = Field(description="the web sheet's thickness, a length above 0")
     cant: Annotated[Cant, BeforeValidator(read_cant)] = Field(
         default=Cant("angle", 0.0),
-        description='degrees, top leaning aft positive; or "square at Y", "least filler", "least gap"',
+        description='degrees, top leaning aft positive; or "square at Y" (to the chord line in rib Y), "least filler", '
+        '"least gap"',
     )
     cant_limit: Tilt = Field(
         default=15.0,
@@ -180,7 +181,7 @@ class Web(Record):
         default="filler", description='what a set bevel\'s runs make least: "filler" or the largest "gap"'
     )
     bond: NotNegative = Field(default=0.0, description="the bond line between web and skin, a length of 0 or more")
-    foam: Text = Field(description="the web sheet's material, a foam in stock")
+    foam: Text = Field(description="the web sheet's material, a foam or wood in stock")
     filler: Text = Field(description="what fills the gaps, a filler in stock")
     adhesive: Text = Field(default="laminating epoxy", description="what bonds the web, an adhesive in stock")
     facing: Facing | None = Field(default=None, description="the cloth on both faces of the web, a table [web.facing]")
@@ -243,8 +244,9 @@ class Paper(Record):
 class Material(Record):
     """A material of the workshop's own, or figures that override those in stock."""
 
-    kind: Literal["foam", "filler", "adhesive", "cloth", "strip", "pin"] | None = Field(
-        default=None, description='for a new material: "foam", "filler", "adhesive", "cloth", "strip" or "pin"'
+    kind: Literal["foam", "wood", "filler", "adhesive", "cloth", "strip", "pin"] | None = Field(
+        default=None,
+        description='for a new material: "foam", "wood" (plywood too), "filler", "adhesive", "cloth", "strip" or "pin"',
     )
     density: Density | None = Field(default=None, description="the density, in kg/m^3 where bare")
     areal_weight: Areal | None = Field(default=None, description="a cloth's dry areal weight, in g/m^2 where bare")
@@ -252,10 +254,11 @@ class Material(Record):
         default=None, description="the density of a cloth's fibre, in kg/m^3 where bare"
     )
     family: Annotated[str | None, BeforeValidator(read_family)] = Field(
-        default=None, description="a new foam's family, which says whether a hot wire may touch it"
+        default=None,
+        description="a new foam's family, which says whether a hot wire may touch it: see `wrywing stock foam`",
     )
     sheets: Annotated[tuple[Positive, ...], Field(min_length=1)] | None = Field(
-        default=None, description="the sheet thicknesses a foam comes in, one or more lengths in a list"
+        default=None, description="the sheet thicknesses a foam or wood comes in, one or more lengths in a list"
     )
     diameters: Annotated[tuple[Positive, ...], Field(min_length=1)] | None = Field(
         default=None, description="the diameters a pin comes in, one or more lengths in a list"
@@ -267,6 +270,13 @@ class Material(Record):
     )
     shear_modulus: Stress | None = Field(
         default=None, description="the shear modulus of a foam or a cloth's laminate on the bias, in MPa where bare"
+    )
+    fibre_volume: Annotated[
+        float | None, BeforeValidator(fit(read_fraction, "a fraction between 0 and 1", lambda v: 0 < v < 1))
+    ] = Field(
+        default=None,
+        description="the fibre's share of the volume of the laminate that a cloth's shear figures are for; that of as "
+        "much resin as cloth by mass unless stated",
     )
     compression: Stress | None = Field(
         default=None, description="the compressive strength of a foam or a strip, in MPa where bare"
@@ -290,7 +300,9 @@ class WingFile(Record):
     flanges: Flanges | None = Field(default=None, description="what ties web and skin, a table [flanges]")
     joint: Joint | None = Field(default=None, description="the thickened end of the web, a table [joint]")
     cores: tuple[Core, ...] = Field(default=(), description="the foam cores, tables [[cores]]")
-    wire: Wire | None = Field(default=None, description="the hot wire that cuts the cores, a table [wire]")
+    wire: Wire | None = Field(
+        default=None, description="the hot wire that cuts the cores, a table [wire]; needed with [[cores]]"
+    )
     ribs: Ribs | None = Field(default=None, description="the ribs, a table [ribs]")
     cradles: Cradles | None = Field(
         default=None, description="the saddles that hold the panel while it is bonded, a table [cradles]"

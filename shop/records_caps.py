@@ -33,6 +33,8 @@ Share = Annotated[float, BeforeValidator(fit(read_fraction, "a number of 0 or mo
 ForceRows = Annotated[tuple[tuple[Length, Force], ...], Field(min_length=2)]
 MomentRows = Annotated[tuple[tuple[Length, Moment], ...], Field(min_length=2)]
 ShareRows = Annotated[tuple[tuple[Length, Share], ...], Field(min_length=2)]
+Layers = Annotated[int, Field(strict=True, ge=1, le=100)]
+Resin = Annotated[float, BeforeValidator(fit(read_fraction, "a fraction from 0 to 0.95", lambda v: 0 <= v <= 0.95))]
 SpanLoad = Annotated[
     Annotated[Literal["elliptic", "bell", "uniform"], Tag(TAGS[0])] | Annotated[ShareRows, Tag(TAGS[1])],
     Discriminator(lambda value: TAGS[isinstance(value, list)]),
@@ -46,10 +48,10 @@ class Facing(Record):
     areal_weight: Areal | None = Field(
         default=None, description="in place of a cloth: dry areal weight of one layer, in g/m^2 where bare"
     )
-    layers: int = Field(strict=True, ge=1, le=100, description="the layers on each face, a whole number of 1 or more")
-    resin_fraction: Annotated[
-        float, BeforeValidator(fit(read_fraction, "a fraction from 0 to 0.95", lambda v: 0 <= v <= 0.95))
-    ] = Field(default=0.5, description="the resin's share of the facing's mass, from 0 to 0.95")
+    layers: Layers = Field(description="the layers on each face, a whole number of 1 or more")
+    resin_fraction: Resin = Field(
+        default=0.5, description="the resin's share of the facing's mass, from 0 to 0.95; it adds mass, no strength"
+    )
 
     @model_validator(mode="after")
     def _one_weight(self) -> Self:
@@ -81,7 +83,9 @@ class Load(Record):
         "unless stated the last station is the wing tip",
     )
     moments: MomentRows | None = Field(
-        default=None, description="in place of a span load: two or more rows [y, bending moment], in N m where bare"
+        default=None,
+        description="in place of a span load: two or more rows [y, bending moment], in N m where bare; the moment in "
+        "the web's own plane, which on a swept web is larger than that about the rib plane",
     )
     cap_forces: ForceRows | None = Field(
         default=None, description="in place of a span load: two or more rows [y, cap force], in newtons where bare"
@@ -123,6 +127,8 @@ class Load(Record):
 class Cover(Facing):
     """Cloth laid over the cap strips, between them and the skin."""
 
+    layers: Layers = Field(description="the layers over the strips of each edge, a whole number of 1 or more")
+    resin_fraction: Resin = Field(default=0.5, description="the resin's share of the cover's mass, from 0 to 0.95")
     thickness: Positive | None = Field(
         default=None, description="the cover's thickness as laid, a length; from the cloth unless stated"
     )
@@ -138,7 +144,9 @@ class Caps(Record):
     """The cap strips on both edges of the web, all of one size."""
 
     strip: Text = Field(description="what the strips are made of, a strip in stock")
-    width: Positive = Field(description="the width of one strip, a length above 0")
+    width: Positive = Field(
+        description="the width of one strip, a length above 0; those beside one another no wider than the web's sheet"
+    )
     thickness: Positive = Field(description="the thickness of one strip, a length above 0")
     beside: int = Field(
         default=1, strict=True, ge=1, description="the strips side by side in a layer, a whole number of 1 or more"

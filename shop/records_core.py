@@ -25,6 +25,7 @@ from .values import (
     read_positive,
 )
 
+PLYWOOD = 6.0  # mm, what cradles are mostly cut from
 AXES = "ABCUVWXYZ"  # the letters RS-274 (ISO 6983) has for axes
 
 
@@ -179,14 +180,17 @@ class Ribs(Record):
         default="inner", description='their outline: the "inner" side of the skin or the "outer" one'
     )
     thickness: NotNegative = Field(
-        default=0.0, description="the ribs' own sheet, a length of 0 or more: a swept web's slot is wider for it"
+        default=0.0,
+        description="the ribs' own sheet, a length of 0 or more, half of it on each side of y: outline and slot clear "
+        "skin and web all through it; that of [cutting.ribs] unless stated",
     )
     clearance: NotNegative = Field(
-        default=0.2, description="the gap left on each face of the web in its slot, a length of 0 or more"
+        default=0.2,
+        description="the gap left on each face of the web in its slot, and about flanges, a length of 0 or more",
     )
     corner: NotNegative = Field(
         default=0.0,
-        description="the radius cut away where web and skin meet, for caps, flanges and glue, a length of 0 or more",
+        description="the radius cut away where web and skin meet, for caps and glue, a length of 0 or more",
     )
     margin: Positive | None = Field(
         default=None, description="what is left round lightening holes, a length above 0; no holes unless stated"
@@ -206,6 +210,11 @@ class Cradles(Record):
     height: Positive = Field(default=50.0, description="the lowest saddle's height above the bench, a length above 0")
     padding: NotNegative = Field(
         default=0.0, description="the felt or film laid into the saddles, a length of 0 or more"
+    )
+    thickness: Positive | None = Field(
+        default=None,
+        description="the cradles' own sheet, a length above 0, from y outwards: saddles stay clear of the panel "
+        "all through it; that of [cutting.cradles], or 6 mm, unless stated",
     )
 
     @model_validator(mode="after")

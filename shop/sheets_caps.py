@@ -8,7 +8,7 @@ import numpy as np
 import shapely
 
 from ..geom.drawing import Anchor, Role, Stroke
-from .describe_strength import cut_length
+from .describe_strips import cut_length
 from .job import Job
 from .layout import Layout, Spot
 from .strips import Layer

@@ -9,18 +9,18 @@ import shapely
 from numpy.typing import NDArray
 
 from ..geom.block import PIN
-from ..geom.drawing import Anchor, Drawing, Hand, Hole, Label, Role, Stroke, thin
+from ..geom.drawing import Anchor, Drawing, Hand, Hole, Role, Stroke, thin
 from ..geom.profile import turned
 from ..geom.template import Board, Mark
 from ..geom.wire import Bay, End
 from .cores import BuiltCore
 from .job import Job
-from .layout import Layout, Spot, wrapped
+from .layout import Layout, Spot
 from .notes_core import notes
 
 Array = NDArray[np.float64]
 
-SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+SMALL, PLAIN = 2.5, 3.0  # heights of lettering
 _LEAST = 2.2
 _TICK = 3.0
 _APART = 16.0  # mm between the boards of one sheet
@@ -85,7 +85,8 @@ class _Sheet:
         self.layout = Layout(labels)
         # once mirrored, a left hand's notes start at the left as well
         start: tuple[float, Anchor] = (sides.min(), "start") if self.hand == "right" else (sides.max(), "end")
-        self._write([self.job.record.name, *said], *start, foot + 6.0)
+        heads, x = (self.job.record.name, said[0]), float(start[0])
+        self.layout.write_notes(heads, said[1:], x, foot + 6.0, anchor=start[1], wide=_WIDE)
         drawing = Drawing(
             name=f"{self.made.name}-bay-{self.index + 1}",
             title=f"Core {self.made.number}, {self.made.stated.region}, bay {self.index + 1}",
@@ -96,15 +97,6 @@ class _Sheet:
             notes=tuple(said),
         )
         return drawing if self.hand == "right" else drawing.mirrored(self.hand)
-
-    def _write(self, notes: list[str], x: float, anchor: Anchor, y: float) -> None:
-        """Write the notes, two of them large, with some air between them."""
-        for i, note in enumerate(notes):
-            height = LARGE if i < 2 else PLAIN
-            for line in wrapped(note, height, _WIDE):
-                y -= 1.6 * height
-                self.layout.write(Label(line, float(x), y, height, anchor=anchor))
-            y -= 0.5 * height
 
     def _board(self, board: Board, end: int, top: float) -> float:
         """Draw one board of one end with its highest mark at `top`; return how far down it reaches."""
@@ -153,10 +145,10 @@ class _Sheet:
             lines.append(("web", view.on(turned(region.face_at(at.y), self.bay.turn))))
         if region.kind != "nose":
             low, high = (at.profile.at(side * t) for side, t in zip((-1.0, 1.0), at.limits.stop, strict=True))
-            lines.append(("end of core", view.on(np.array([low, high]))))
-        for text, (low, high) in lines:
             away = 60.0 * (high - low) / np.linalg.norm(high - low)
-            for line in view.cut(np.array([low - away, high + away])):
+            lines.append(("end of core", view.on(np.array([low - away, high + away]))))
+        for text, across in lines:
+            for line in view.cut(across):
                 self._engrave(line)
                 spots = [
                     Spot(float(x + aside), float(z - 1.2), anchor)

@@ -8,18 +8,18 @@ from numpy.typing import NDArray
 
 from ..geom.blank import Face
 from ..geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
-from .describe_strength import strip_notes
+from .describe_strips import strip_notes
+from .face_lines import name_beyond, name_line
 from .job import Job
 from .layout import Layout, Spot
 from .sheets_joint import joint_notes
-from .sheets_web import PLAIN, SMALL, pin_diameter, write_titles
+from .sheets_web import PLAIN, pin_diameter, write_titles
 from .wording import degrees
 
 Array = NDArray[np.float64]
 
 _CLEAR = 0.1  # a line nearer to the cut than this is lost in it, mm
 _LEAST = 5.0  # a shorter stretch of line is no help, mm
-_WHOSE = {"front": "front face ends here, on the far side", "rear": "rear face ends here"}
 
 
 def web_cut(job: Job, hand: Hand = "right") -> list[Drawing]:
@@ -39,8 +39,8 @@ def web_cut(job: Job, hand: Hand = "right") -> list[Drawing]:
         strokes.append(Stroke(line, Role.ENGRAVE))
         layout.keep_clear(shapely.LineString(line))
     for name, line in lines:
-        if len(line) > 2:
-            _name(layout, _WHOSE[name], line, whole)
+        if not name_line(layout, name, line, whole):
+            name_beyond(layout, name, line)
     strokes += _write_inside(job, layout, whole, hand)
     heads = [job.record.name, f"web blank, both faces, {hand.upper()} hand"]
     notes = _notes(job)
@@ -71,27 +71,16 @@ def _within(face: Face, whole: shapely.Polygon) -> list[Array]:
     return [shapely.get_coordinates(part) for part in parts if part.length > _LEAST]
 
 
-def _name(layout: Layout, text: str, line: Array, whole: shapely.Polygon) -> None:
-    """Say whose edge a line is, beside it on the side where there is room."""
-    path = shapely.LineString(line)
-    spots = []
-    for at in np.arange(0.5, path.length, 10.0):
-        (x, y), (far_x, far_y) = (p.coords[0] for p in (path.interpolate(at), path.interpolate(at + 1.0)))
-        angle = float(np.degrees(np.arctan2(far_y - y, far_x - x)))
-        if abs(angle) > 90.0:
-            angle -= np.copysign(180.0, angle)
-        c, s = np.cos(np.radians(angle)), np.sin(np.radians(angle))
-        spots += [Spot(x - s * off, y + c * off, "middle", angle) for off in (2.0, -2.0 - SMALL)]
-    layout.put(text, sorted(spots, key=lambda spot: abs(spot.x - line[:, 0].mean())), height=SMALL, within=whole)
-
-
 def _write_inside(job: Job, layout: Layout, whole: shapely.Polygon, hand: Hand) -> list[Stroke]:
     """What must stay on the piece, its two ends and which way is up."""
     x0, _, x1, _ = whole.bounds
     y1, y2 = (job.wording.plain(y) for y in job.record.web.ends)
     middle = {x: _middle(whole, x) for x in (x0 + 1.0, x1 - 1.0)}
-    layout.put(f"ROOT y {y1}", [Spot(x0 - 3.0, middle[x0 + 1.0], "middle", 90.0)], height=PLAIN)
-    layout.put(f"TIP y {y2}", [Spot(x1 + 3.0 + PLAIN, middle[x1 - 1.0], "middle", 90.0)], height=PLAIN)
+    for text, x, h, way in (
+        (f"ROOT y {y1}", x0 - 3.0, middle[x0 + 1.0], -1.0),
+        (f"TIP y {y2}", x1 + 3.0 + PLAIN, middle[x1 - 1.0], 1.0),
+    ):
+        layout.put(text, [Spot(x + way * d, h, "middle", 90.0) for d in np.arange(0.0, 20.0, 2.0)], height=PLAIN)
     places = np.arange(x0 + 20.0, x1 - 20.0, 5.0)
     spots = [Spot(float(x), _middle(whole, x) + off, "middle") for off in (-1.5, 4.0, -7.0) for x in places]
     layout.put(f"REAR FACE UP, {hand} hand, {job.stamp}", spots, height=PLAIN, within=whole)
@@ -116,7 +105,7 @@ def _notes(job: Job) -> list[str]:
         f"{words.length(stated.thickness)} {stated.foam}, cant {degrees(np.degrees(job.cant))}, "
         f"bond line {words.length(stated.bond)}",
         "As seen from the rear; the outline is that of both faces together, to be cut through square to the sheet",
-        "A face ends at the line that says so, elsewhere at the outline as cut: work each edge from face to face",
+        "Each face ends at the lines named after it, elsewhere at the outline as cut: work each edge from face to face",
         *strip_notes(job),
         *joint_notes(job, job.web.faces[1]),
         f"Wing file revision {job.stamp}",

@@ -6,7 +6,7 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom.drawing import Drawing, Hand, Role, Stroke, thin
+from ..geom.drawing import Anchor, Drawing, Hand, Role, Stroke, thin
 from ..geom.flange import Flange
 from .flanges import BuiltFlange, sprung
 from .job import Job
@@ -16,7 +16,7 @@ from .units import MM_PER_INCH
 Array = NDArray[np.float64]
 
 TICK = 2.0
-SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+SMALL, PLAIN = 2.5, 3.0  # heights of lettering
 
 
 def flange_patterns(job: Job, hand: Hand = "right") -> list[Drawing]:
@@ -41,13 +41,9 @@ def _pattern(job: Job, made: BuiltFlange, hand: Hand) -> Drawing:
     _write_inside(job, flange, flip, layout, inside, hand)
     _write_ends(flange, flip, layout)
     x0, y0, x1, _ = inside.bounds
-    seen_from_front = flip[0] < 0
-    lines = [
-        (job.record.name, LARGE),
-        (f"flange, {flange.name.upper()}, {hand.upper()} hand", LARGE),
-        *((text, PLAIN) for text in _notes(job, made)),
-    ]
-    layout.write_block(lines, x1 if seen_from_front else x0, y0 - 3.0, "end" if seen_from_front else "start")
+    heads = (job.record.name, f"flange, {flange.name.upper()}, {hand.upper()} hand")
+    start: tuple[float, Anchor] = (x1, "end") if flip[0] < 0 else (x0, "start")
+    layout.write_notes(heads, _notes(job, made), start[0], y0 - 3.0, anchor=start[1])
     drawing = Drawing(
         name=f"flange-{flange.face}-{flange.side}",
         title=f"Flange, {flange.name}",

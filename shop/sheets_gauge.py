@@ -20,7 +20,7 @@ from .wording import degrees
 
 Array = NDArray[np.float64]
 
-SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+SMALL, PLAIN = 2.5, 3.0  # heights of lettering
 HANDFUL = 5  # cards along an edge whose bevel changes all along
 _LEG = 42.0  # mm that a card lies along the face, where the web is as high
 _WIDE, _TALL = 46.0, 14.0  # mm beside the face and, where the leg is long enough for the lettering, beyond the edge
@@ -32,7 +32,10 @@ _GAP = 5.0  # mm between cards
 
 @dataclass(frozen=True)
 class Card:
-    """One gauge: the edge and the places s it checks, from and to; they are one place unless it serves a whole run."""
+    """One gauge: the edge and the places s it checks, from and to; they are one place unless it serves a whole run.
+
+    One of an edge cut square serves both edges and every place.
+    """
 
     cut: Cut
     s: float
@@ -59,9 +62,9 @@ def bevel_gauges(job: Job, hand: Hand = "right") -> list[Drawing]:
         strokes.append(Stroke(moved, Role.CUT_OUTSIDE, closed=True))
         _letter(job, card, stated, layout, moved, hand)
         left, low = left + x1 - x0 + _GAP, min(low, top - (y1 - y0))
-    notes = _notes(stated, hand)
-    lines = [(job.record.name, LARGE), (f"bevel gauges, {hand.upper()} hand", LARGE), *((n, PLAIN) for n in notes)]
-    layout.write_block([*lines, (f"Wing file revision {job.stamp}", PLAIN)], 0.0, low - 4.0)
+    notes = _notes(job, stated, hand)
+    heads = (job.record.name, f"bevel gauges, {hand.upper()} hand")
+    layout.write_notes(heads, [*notes, f"Wing file revision {job.stamp}"], 0.0, low - 4.0)
     drawing = Drawing(
         name="gauges",
         title="Bevel gauges",
@@ -87,8 +90,8 @@ def cards(job: Job) -> list[Card]:
         if s > length:
             wanted = f"a place on the web, 0 to {job.wording.length(length)}"
             raise job.error(f"gauges.places[{i + 1}]", f"wanted {wanted}, got {job.wording.length(s)}")
-    if places is None and job.record.web.edge == "square" and stated is None:
-        return []
+    if job.record.web.edge == "square":
+        return [Card(job.web.top, (places or _handful(job))[0], None)] if stated else []
     found = []
     for side in SIDES:
         cut = job.web.cut(side)
@@ -129,10 +132,13 @@ def _letter(job: Job, card: Card, stated: Gauges, layout: Layout, outline: Array
     words, cut = job.wording, card.cut
     angle = np.degrees(gauge.corner_angle(cut, stated.face, card.s))
     bevel = (angle - 90.0) * (1.0 if (cut.side == "top") == (stated.face == "front") else -1.0)
-    where = " to ".join(words.plain(s) for s in card.run or (card.s,))
+    where = "s " + " to ".join(words.plain(s) for s in card.run or (card.s,))
+    edge = f"{cut.side.upper()} edge"
+    if cut.treatment == "square":
+        edge, where = "TOP and BOTTOM", "anywhere along both"
     lines = [
-        (f"{cut.side.upper()} edge", PLAIN),
-        (f"s {where}", SMALL),
+        (edge, PLAIN),
+        (where, SMALL),
         (f"bevel {degrees(float(bevel))}", PLAIN),
         (f"corner {angle:.1f}°", SMALL),
         (f"on the {stated.face.upper()} face", SMALL),
@@ -143,10 +149,14 @@ def _letter(job: Job, card: Card, stated: Gauges, layout: Layout, outline: Array
     layout.write_block(lines, (x1 - _WIDE if stated.face == "rear" else x0) + 3.0, y1 - 2.0)
 
 
-def _notes(stated: Gauges, hand: Hand) -> list[str]:
+def _notes(job: Job, stated: Gauges, hand: Hand) -> list[str]:
     aft = "right" if hand == "right" else "left"
-    return [
+    notes = [
         f"Cards as one looks from ROOT to TIP, aft to the {aft}; glue to stiff sheet before cutting out",
         f"Hold square to the edge, long leg flat on the {stated.face.upper()} face: no light under the short one",
         "Bevel: positive where the edge rises aft; corner: angle of the foam between face and edge",
     ]
+    if job.record.web.edge == "square":
+        places = ", ".join(job.wording.plain(s) for s in stated.places or _handful(job))
+        notes.append(f"Both edges are cut square: one card for either of them, at s {places} and wherever you like")
+    return notes

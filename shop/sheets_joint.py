@@ -12,7 +12,7 @@ from shapely.geometry.base import BaseGeometry
 
 from ..geom import blank
 from ..geom.blank import Face
-from ..geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
+from ..geom.drawing import Anchor, Drawing, Hand, Hole, Role, Stroke, thin
 from ..geom.joint import Pad, Tube
 from .job import Job
 from .joint import JointEnd
@@ -23,7 +23,7 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 
-SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+SMALL, PLAIN = 2.5, 3.0  # heights of lettering
 APART = 10.0  # mm between plan and profile
 OUT = 50.0  # mm that a pin along the web is drawn out of its end, to be cut off there
 
@@ -128,13 +128,9 @@ def _pad_sheet(job: Job, end: JointEnd, tube: Tube, pad: Pad, hand: Hand) -> Dra
     arrow = _write_plan(job, end, pad, flip, layout, inside, hand)
     profile = _profile(end, tube, pad, job.web.plain, flip, low - APART - pad.thickness)
     foot = _write_profile(job, end, pad, profile, layout)
-    lines = [
-        (job.record.name, LARGE),
-        (f"joint pad, {pad.face.upper()} face, {hand.upper()} hand", LARGE),
-        *((text, PLAIN) for text in _notes(job, end, pad)),
-    ]
-    seen_from_front = flip[0] < 0
-    layout.write_block(lines, x0 * flip[0], foot - 4.0, "end" if seen_from_front else "start")
+    heads = (job.record.name, f"joint pad, {pad.face.upper()} face, {hand.upper()} hand")
+    anchor: Anchor = "end" if flip[0] < 0 else "start"  # seen from the front the pad starts at the right
+    layout.write_notes(heads, _notes(job, end, pad), x0 * flip[0], foot - 4.0, anchor=anchor)
     drawing = Drawing(
         name=f"joint-pad-{pad.face}",
         title=f"Joint pad, {pad.face} face",

@@ -7,15 +7,17 @@ import shapely
 from numpy.typing import NDArray
 from shapely.geometry.base import BaseGeometry
 
-from ..geom.drawing import Anchor, Drawing, Hand, Label, Role, Stroke, thin
+from ..geom.drawing import Anchor, Drawing, Hand, Role, Stroke, thin
 from ..geom.rib import Cradle, Rib
+from ..geom.slot import parts
 from .job import Job
-from .layout import Layout, Spot, wrapped
+from .layout import Layout, Spot
+from .ribs import cradle_sheet, facing, left_out, rib_sheet
 from .wording import degrees
 
 Array = NDArray[np.float64]
 
-SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+SMALL, PLAIN = 2.5, 3.0  # heights of lettering
 _LEAST = 2.2
 _WIDE = 160.0  # mm, the longest line of notes
 _BESIDE: tuple[tuple[float, Anchor], ...] = ((9.0, "start"), (-9.0, "end"), (14.0, "start"))
@@ -72,12 +74,8 @@ class _Sheet:
         boxes = [label.box().bounds for label in self.layout.labels]
         x = float(points[:, 0].min() if hand == "right" else points[:, 0].max())
         y = min([float(points[:, 1].min()), *(box[1] for box in boxes)]) - 4.0
-        for i, note in enumerate(notes):
-            height = LARGE if i < 2 else PLAIN
-            for line in wrapped(note, height, _WIDE):
-                y -= 1.6 * height
-                self.layout.write(Label(line, x, y, height, anchor="start" if hand == "right" else "end"))
-            y -= 0.4 * height
+        anchor: Anchor = "start" if hand == "right" else "end"
+        self.layout.write_notes(notes[:2], notes[2:], x, y, anchor=anchor, wide=_WIDE)
 
     def drawing(self, job: Job, name: str, title: str, notes: list[str], hand: Hand) -> Drawing:
         """The finished drawing."""
@@ -93,7 +91,7 @@ class _Sheet:
 
 
 def _rib(job: Job, made: Rib, number: int, hand: Hand) -> Drawing:
-    sheet, words, stated = _Sheet(), job.wording, job.record.ribs
+    sheet, words = _Sheet(), job.wording
     pieces = [sheet.cut(ring) for ring in made.pieces]
     holes = [sheet.cut(ring, Role.CUT_INSIDE) for ring in made.holes]
     solid = shapely.union_all(pieces).difference(shapely.union_all(holes))
@@ -101,36 +99,70 @@ def _rib(job: Job, made: Rib, number: int, hand: Hand) -> Drawing:
     x0, _, x1, _ = solid.bounds
     sheet.engrave(made.chord, solid)
     sheet.engrave(np.array([[x0 - 1.0, level], [x1 + 1.0, level]]), solid)
-    names = ("nose", "tail") if len(pieces) == 2 else tuple(f"part {i + 1}" for i in range(len(pieces)))
-    for piece, name in zip(pieces, names if len(pieces) > 1 else ("rib",), strict=True):
-        room = max(_parts(piece.intersection(solid)), key=lambda g: g.area)
-        short = f"rib {number}" if name == "rib" else f"rib {number} {name}"
+    for piece, name in zip(pieces, _names(made, pieces), strict=True):
+        room = max(parts(piece.intersection(solid)), key=lambda g: g.area)
+        short = f"rib {number} {name}".strip()
         if not sheet.put(f"{short}, y {words.plain(made.y)}, {hand} hand, {job.stamp}", room):
             sheet.put(short, room)
             for text in (f"y {words.plain(made.y)}", f"{hand} hand", job.stamp):
                 sheet.put(text, room)
     washout = float(np.degrees(job.loft.washout(np.array(made.y), np.array(made.y))[0]))
-    outline = "the skin's inside" if stated and stated.outline == "inner" else "the outer surface"
     notes = [
-        f"Rib at y {words.plain(made.y)}, outline of {outline}, as one looks outwards along the span.",
+        *_outline(job, made),
         f"Chord line {degrees(washout, 2)} nose down from the level line, which crosses it at the twist axis, "
         f"{words.length(level)} above the panel's origin.",
+        *_slot(job, made),
     ]
-    if made.slot is not None and stated is not None:
-        free = words.length(stated.clearance)
-        notes.append(
-            f"Slot {words.length(made.slot.width)} wide, level across: the web as this rib meets it and {free} on each "
-            "face. The web goes through from skin to skin, so the rib is in two parts."
-        )
-    if made.holes and stated is not None and stated.margin is not None:
-        notes.append(f"Lightening holes leave {words.length(stated.margin)} all round.")
+    if made.slivers:
+        notes.append(f"W{left_out(job, made)[1:]}.")
+    if made.holes and job.record.ribs and job.record.ribs.margin is not None:
+        notes.append(f"Lightening holes leave {words.length(job.record.ribs.margin)} all round.")
     notes.append(f"Wing file revision {job.stamp}")
     sheet.say([job.record.name, f"rib {number}, {hand.upper()} hand", *notes], hand)
     return sheet.drawing(job, f"rib-{number}", f"Rib {number}, y {words.length(made.y)}", notes, hand)
 
 
-def _parts(shape: BaseGeometry) -> list[shapely.Polygon]:
-    return [g for g in getattr(shape, "geoms", [shape]) if isinstance(g, shapely.Polygon)]
+def _names(made: Rib, pieces: list[shapely.Polygon]) -> list[str]:
+    """What each piece is called: nose or tail, as it lies to the web, numbered where there are several."""
+    if made.slot is None:
+        return [""]
+    middle = made.slot.shape.centroid.x
+    sides = ["nose" if piece.centroid.x < middle else "tail" for piece in pieces]
+    return [side if sides.count(side) == 1 else f"{side} {sides[: i + 1].count(side)}" for i, side in enumerate(sides)]
+
+
+def _outline(job: Job, made: Rib) -> list[str]:
+    """What the outline is of, and what becomes of it through the sheet."""
+    words, stated, thickness = job.wording, job.record.ribs, rib_sheet(job)
+    outline = "the skin's inside" if stated and stated.outline == "inner" else "the outer surface"
+    of = f"Rib at y {words.plain(made.y)}, outline of {outline}, as one looks outwards along the span."
+    if thickness == 0.0:
+        return [of, "Drawn as if it had no thickness: state that of its sheet, so that it may clear skin and web."]
+    return [
+        of,
+        f"Its sheet, {words.length(thickness)}, lies half on each side of y. It is cut square, to what clears "
+        f"{outline} all through, and so stands up to {words.length(made.short)} short of it on one face.",
+    ]
+
+
+def _slot(job: Job, made: Rib) -> list[str]:
+    """How wide the slot is and what of: the sentences of a rib about the web, the flanges, and its parts."""
+    words, stated = job.wording, job.record.ribs
+    if made.slot is None or stated is None:
+        return []
+    free, laid = words.length(stated.clearance), facing(job)
+    faced = f" with its facings, {words.length(laid)} each," if laid else ""
+    unknown = ", its facings left out, as their thickness is not known" if laid is None else ""
+    count = {1: "one part", 2: "two parts"}.get(len(made.pieces), f"{len(made.pieces)} parts")
+    said = [
+        f"Slot {words.length(made.slot.width)} wide, level across: the web{faced} as this rib meets it and {free} on "
+        f"each face{unknown}. The web goes through from skin to skin, and the rib is in {count}."
+    ]
+    if job.flanges:
+        names = ", ".join(of.flange.name for of in job.flanges)
+        thick = words.length(job.flanges[0].flange.shape.thickness)
+        said.append(f"Beside it room for the flanges {names}: their legs, {thick} thick, and {free} all about.")
+    return said
 
 
 def _cradle(job: Job, made: tuple[Cradle, ...], index: int, hand: Hand) -> Drawing:
@@ -163,7 +195,9 @@ def _cradle(job: Job, made: tuple[Cradle, ...], index: int, hand: Hand) -> Drawi
         f"{degrees(washout, 2)}). All base lines stand on one flat, level bench.",
         f"Height {words.length(top)}; saddle {ends[0]} above the bench at its forward end, {ends[1]} aft{padded}.",
         _spacing(job, made, index),
-        "The face that is drawn on stands at that y and looks to the root.",
+        "The face that is drawn on stands at that y and looks to the root; its sheet, "
+        f"{words.length(cradle_sheet(job))}, reaches outwards from there. Cut square, it holds the panel on one face "
+        f"and stands up to {words.length(cradle.short)} short of it on the other.",
         f"Wing file revision {job.stamp}",
     ]
     sheet.say([job.record.name, f"cradle {number}, {hand.upper()} hand", *notes], hand)

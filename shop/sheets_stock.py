@@ -8,15 +8,16 @@ from dataclasses import replace
 import numpy as np
 import shapely
 
-from ..geom.drawing import Drawing, Hand, Role, Stroke
+from ..geom.drawing import Drawing, Hand, Label, Role, Stroke
 from ..geom.nest import Laid
 from .job import Job
 from .layout import Layout
 from .nesting import Nesting
 from .pieces import Piece
 
-SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+PLAIN = 3.0  # height of lettering
 _ARROW = 60.0  # mm
+_ROOM = 10.0  # mm that it needs within a sheet, with its lettering
 
 
 def stock_sheets(job: Job, laid: Sequence[Nesting], hands: Sequence[Hand]) -> list[Drawing]:
@@ -31,7 +32,9 @@ def _sheet(job: Job, nesting: Nesting, index: int, hands: Sequence[Hand], number
     placed = [_placed(nesting.pieces[laid.piece], laid) for laid in nesting.sheets[index]]
     border = Stroke(np.array([[0.0, 0.0], [long, 0.0], [long, wide], [0.0, wide]]), Role.NOTE, closed=True, frame=True)
     layout = Layout()
-    layout.write_block([("grain or roll", PLAIN)], _ARROW + 4.0, wide + 6.0)
+    used_up = max(float(s.points[:, 1].max()) for d in placed for s in d.strokes)
+    over = used_up if used_up + _ROOM < wide else wide  # near the pieces, or a page would be printed for its sake
+    layout.write(Label("grain or roll", _ARROW + 4.0, over + 2.5, PLAIN))
     whose = " and ".join(hands)
     title = f"{words.length(nesting.thickness)} {nesting.material}, sheet {index + 1} of {len(nesting.sheets)}"
     used = sum(nesting.pieces[laid.piece].shape.area for laid in nesting.sheets[index]) / (long * wide)
@@ -41,23 +44,22 @@ def _sheet(job: Job, nesting: Nesting, index: int, hands: Sequence[Hand], number
         "Cut along the outer lines; the web's bevels are planed to the engraved lines of its faces",
         *dict.fromkeys(text for laid in nesting.sheets[index] for text in nesting.pieces[laid.piece].beside),
     ]
-    lines = [(job.record.name, LARGE), (title, LARGE), *((note, PLAIN) for note in notes)]
-    layout.write_block([*lines, (f"Wing file revision {job.stamp}", PLAIN)], 0.0, -4.0)
+    layout.write_notes([job.record.name, title], [*notes, f"Wing file revision {job.stamp}"], 0.0, -4.0)
     return Drawing(
         name=f"stock-sheet-{number}",
         title=f"Stock sheet, {title}",
         stamp=job.stamp,
         hand=hands[0] if len(hands) == 1 else "both",
-        strokes=(*(s for d in placed for s in d.strokes), border, *_grain(wide)),
+        strokes=(*(s for d in placed for s in d.strokes), border, *_grain(over)),
         holes=tuple(h for d in placed for h in d.holes),
         labels=(*layout.labels, *(t for d in placed for t in d.labels)),
         notes=tuple(notes),
     )
 
 
-def _grain(wide: float) -> list[Stroke]:
-    """An arrow along the grain above a sheet."""
-    y = wide + 4.0
+def _grain(over: float) -> list[Stroke]:
+    """An arrow along the grain, over what reaches so far up."""
+    y = over + 4.0
     tips = [[_ARROW - 3.0, y + 1.5], [_ARROW, y], [_ARROW - 3.0, y - 1.5]]
     return [Stroke(np.array(line), Role.NOTE) for line in ([[0.0, y], [_ARROW, y]], tips)]
 

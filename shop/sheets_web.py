@@ -15,9 +15,9 @@ from ..geom.blank import Face
 from ..geom.drawing import Anchor, Drawing, Hand, Hole, Label, Role, Stroke, thin
 from ..geom.seat import Run
 from ..geom.web import Side
-from .describe_strength import strip_notes
+from .describe_strips import strip_notes
 from .job import Job
-from .layout import Layout, Spot, wrapped
+from .layout import Layout, Spot
 from .sheets_caps import strip_marks
 from .sheets_joint import joint_marks, joint_notes
 from .units import MM_PER_INCH
@@ -27,7 +27,7 @@ Array = NDArray[np.float64]
 Place = tuple[float, float, Anchor]  # s, shift on the sheet, anchor
 
 TICK = 4.0
-SMALL, PLAIN, LARGE = 2.5, 3.0, 4.5  # heights of lettering
+SMALL, PLAIN = 2.5, 3.0  # heights of lettering
 WIDE = 150.0  # mm, the longest line of notes: it leaves room on a sheet of paper for what stands beside it
 _LINE = 1.7  # line spacing, in heights
 _BEYOND = 1.5 + 2.0 * _LINE * SMALL  # mm from an edge, past a tick's bevel and its s
@@ -284,8 +284,6 @@ def write_titles(
     layout: Layout, inside: shapely.Polygon, heads: Sequence[str], notes: Sequence[str], hand: Hand
 ) -> None:
     """Write a title block below all that stands at the left end of a piece, its notes wrapped."""
-    texts = [*((text, LARGE) for text in heads), *((text, PLAIN) for text in notes)]
-    lines = [(line, height) for text, height in texts for line in wrapped(text, height, WIDE)]
     x0, low, x1, high = inside.bounds
     strip = shapely.box(x0, low, x0 + WIDE, high) if hand == "right" else shapely.box(x1 - WIDE, low, x1, high)
     foot = inside.intersection(strip).bounds[1]
@@ -293,7 +291,7 @@ def write_titles(
     feet = [box[1] for box in boxes if box[2] > strip.bounds[0] - 10.0 and box[0] < strip.bounds[2] + 10.0]
     # a left hand is mirrored: its text starts at the right end
     start: tuple[float, Anchor] = (x0, "start") if hand == "right" else (x1, "end")
-    layout.write_block(lines, start[0], min([foot, *feet]) - 4.0, start[1])
+    layout.write_notes(heads, notes, start[0], min([foot, *feet]) - 4.0, anchor=start[1], wide=WIDE)
 
 
 def _notes(job: Job, face: Face) -> list[str]:

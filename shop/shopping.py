@@ -7,7 +7,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from .cutlist import NOT_STATED, Cut, cloth_name, cut_list
-from .describe_strength import cut_length
+from .describe_strips import cut_length
 from .job import Job
 from .masses import Masses, masses
 from .nesting import Nesting, nestings

@@ -10,7 +10,8 @@ import numpy as np
 
 from ..geom.web import SIDES, Side
 from .describe_core import miss_words
-from .describe_strength import cut_length, size
+from .describe_strength import factor
+from .describe_strips import cut_length, size
 from .job import Job
 from .records_cutting import Cutting
 from .stock import Filler
@@ -122,7 +123,7 @@ def _strips(job: Job) -> Iterator[Step]:
         more.append(f"{side} edge, from the skin inwards: {', '.join(pieces)}")
     if job.strength is not None:
         worst = job.strength.worst
-        more.append(f"least reserve factor {worst.reserve[worst.least]:.2f}, {worst.name}: an estimate, no proof")
+        more.append(f"least reserve factor {factor(float(worst.reserve.min()))}, {worst.name}: an estimate, no proof")
     yield Step("Cap strips", f"{_count(total, 'strip')}: {caps.strip} {size(job, caps)}", tuple(more))
 
 

@@ -68,7 +68,8 @@ class Adhesive:
 class Cloth:
     """A reinforcing cloth: dry areal weight in g/m^2, density of the fibre itself in kg/m^3.
 
-    Shear strength and modulus, MPa, are those of a laminate on the bias.
+    Shear strength and modulus, MPa, are those of a laminate on the bias with `fibre_volume` of its volume fibre; unless
+    stated that of the usual hand lay-up, as much resin as cloth by mass.
     """
 
     name: str
@@ -77,6 +78,16 @@ class Cloth:
     source: str = PRACTICE
     shear: float | None = None
     shear_modulus: float | None = None
+    fibre_volume: float | None = None
+
+    @property
+    def bears_at(self) -> float:
+        """The fibre's share of the volume of the laminate that the shear figures are for.
+
+        >>> round(Stock().find("glass cloth 105", Cloth).bears_at, 4)
+        0.3108
+        """
+        return self.fibre_volume or strengths.RESIN / (strengths.RESIN + self.fibre_density)
 
 
 @dataclass(frozen=True)
@@ -119,12 +130,15 @@ Material = Foam | Filler | Adhesive | Cloth | Strip | Pin
 _M = TypeVar("_M", bound=Material)
 KINDS: dict[str, type[Material]] = {
     "foam": Foam,
+    "wood": Foam,
     "filler": Filler,
     "adhesive": Adhesive,
     "cloth": Cloth,
     "strip": Strip,
     "pin": Pin,
 }
+STRENGTHS = ("shear", "compression", "tension", "shear_modulus", "modulus")
+LIGHTER = 0.9  # of stock's density: what is lighter still does not bear what stock says
 NEEDED = {
     "cloth": ("areal_weight", "fibre_density"),
     "strip": ("density", "tension", "compression", "modulus"),
@@ -245,6 +259,15 @@ PAPERS: dict[str, Paper] = {
 }
 
 
+@dataclass(frozen=True)
+class Lighter:
+    """A material that a wing file states lighter than stock has it: kg/m^3, and the strengths it states none of."""
+
+    own: float
+    usual: float
+    strengths: tuple[str, ...]
+
+
 class MaterialError(ValueError):
     """What is wrong with one figure of a wing file's material; `key` names the figure."""
 
@@ -271,14 +294,26 @@ class Stock:
         """Where a figure of a material comes from: ``the wing file`` or ``stock``."""
         return OWN if figure in self.stated.get(_plain(name), ()) else "stock"
 
+    def lighter(self, name: str) -> Lighter | None:
+        """A material of stock that the wing file makes lighter, by more than a tenth, without all of its strengths."""
+        usual, own = _USUAL.get(_plain(name)), self.materials.get(_plain(name))
+        figure = "fibre_density" if isinstance(usual, Cloth) else "density"
+        high, low = getattr(usual, figure, None), getattr(own, figure, None)
+        if high is None or low is None or low >= LIGHTER * high:
+            return None
+        missing = tuple(key for key in STRENGTHS if hasattr(own, key) and self.origin(name, key) != OWN)
+        return Lighter(low, high, missing) if missing else None
+
     def find(self, name: str, kind: type[_M]) -> _M:
         """Material of that name and kind; ValueError with the nearest known names if there is none."""
         found = self.materials.get(_plain(name))
         if isinstance(found, kind):
             return found
         names = [known for known, material in self.materials.items() if isinstance(material, kind)]
-        got = f"{shown(name)}, which is {_a(_kind_of(found))}" if found else shown(name)
-        raise ValueError(f"a known {_kind_name(kind)}, got {got} (nearest: {_nearest(name, names)})")
+        got = f"{shown(name)}, which is {_a(kind_of(found))}" if found else shown(name)
+        kinds = [of for of, made in KINDS.items() if made is kind]
+        near = f"nearest: {_nearest(name, names)}; `wrywing stock {kinds[0]}` lists them"
+        raise ValueError(f"a known {' or '.join(kinds)}, got {got} ({near})")
 
     def with_material(self, name: str, given: Mapping[str, Any]) -> Stock:
         """Stock with a new material, or with figures of a known one overridden.
@@ -290,7 +325,7 @@ class Stock:
         given : mapping
             Only what is stated there: `kind` (needed for a new material) and any of `density` and
             `fibre_density` in kg/m^3, `areal_weight` in g/m^2, `sheets` and `diameters` in mm, `family`, `hot_wire`,
-            `source`, and strengths and moduli in MPa.
+            `source`, strengths and moduli in MPa, and `fibre_volume`, a share.
 
         Raises
         ------
@@ -299,11 +334,11 @@ class Stock:
         """
         figures = dict(given)
         known = self.materials.get(_plain(name))
-        kind = figures.pop("kind", known and _kind_of(known))
+        kind = figures.pop("kind", known and kind_of(known))
         if kind is None:
             raise MaterialError("kind", f"is missing, wanted {_or(KINDS)}, as {shown(name)} is not in stock")
-        if known and kind != _kind_of(known):
-            raise MaterialError("kind", f"wanted {_kind_of(known)!r}, as stock has this name, got {kind!r}")
+        if known and KINDS[kind] is not type(known):
+            raise MaterialError("kind", f"wanted {kind_of(known)!r}, as stock has this name, got {kind!r}")
         stated = self.stated.get(_plain(name), frozenset()) | figures.keys()
         made = _overridden(known, figures) if known else _new(kind, _plain(name), figures)
         return Stock({**self.materials, made.name: made}, {**self.stated, made.name: stated})
@@ -342,17 +377,22 @@ def _new(kind: str, name: str, figures: dict[str, Any]) -> Material:
     for key in NEEDED.get(kind, ("density",)):
         if key not in figures:
             raise MaterialError(key, f"is missing, wanted for a new {kind}")
-    if kind == "foam":
-        return _overridden(_foam(name, figures.pop("family", "other"), figures["density"]), figures)
+    if KINDS[kind] is Foam:
+        family = figures.pop("family", "wood" if kind == "wood" else "other")
+        if kind == "wood" and family != "wood":
+            raise MaterialError("family", f'wanted none, or "wood", for a wood, got {shown(family)}')
+        return _overridden(_foam(name, family, figures["density"]), figures)
     _refuse_strays(KINDS[kind], figures)
     return KINDS[kind](name, **{"source": OWN, **figures})
 
 
 def _overridden(known: Material, figures: dict[str, Any]) -> Material:
-    """Material with some figures changed; the wing file becomes their source."""
+    """Material with some figures changed; their source is the wing file. A lighter foam loses stock's strengths."""
     _refuse_strays(type(known), figures)
     changes = {"source": known.source if not figures else OWN, **figures}
     if isinstance(known, Foam):
+        if figures.get("density", known.density) < LIGHTER * known.density:
+            changes = {key: None for key in STRENGTHS if hasattr(known, key)} | changes
         if figures.get("family", known.family) != known.family:
             got = figures["family"]
             raise MaterialError("family", f"wanted {known.family!r}, as stock has this name, got {got!r}")
@@ -369,15 +409,13 @@ def _refuse_strays(kind: type[Material], figures: Mapping[str, Any]) -> None:
     allowed = {f.name for f in fields(kind)} | ({"sheets"} if kind is Foam else set())
     for key in figures:
         if key not in allowed:
-            raise MaterialError(key, f"wanted none for {_a(_kind_name(kind))}, got {shown(figures[key])}")
+            raise MaterialError(key, f"wanted none for {_a(kind.__name__.lower())}, got {shown(figures[key])}")
 
 
-def _kind_name(kind: type[object]) -> str:
-    return kind.__name__.lower()
-
-
-def _kind_of(material: Material) -> str:
-    return _kind_name(type(material))
+def kind_of(material: Material) -> str:
+    """What kind of material one is, a key of `KINDS`: a wood is a foam that no hot wire may touch."""
+    wood = isinstance(material, Foam) and material.family == "wood"
+    return "wood" if wood else type(material).__name__.lower()
 
 
 def _a(noun: str) -> str:

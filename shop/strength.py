@@ -24,7 +24,11 @@ if TYPE_CHECKING:
 
 Array = NDArray[np.float64]
 
-UNLOOKED = "not looked at: the tie from facings to caps, buckling, torsion, fatigue, heat"
+UNLOOKED = (
+    "not looked at: negative load factors (the bottom cap pressed), the tie from facings to caps, buckling, "
+    "torsion, fatigue, heat"
+)
+NOTHING = 1e-9  # of the allowable: what is asked for below that is rounding
 STRAINED = 1e-3  # a strip bent to more than this in building is doubtful
 
 
@@ -54,8 +58,13 @@ class Check:
     @property
     def reserve(self) -> Array:
         """(k,) allowable over demand; infinite where nothing is asked."""
-        with np.errstate(divide="ignore"):
-            return np.asarray(self.allowable / self.demand)
+        nothing = self.demand <= NOTHING * self.allowed
+        return np.where(nothing, np.inf, self.allowed / np.where(nothing, 1.0, self.demand))
+
+    @property
+    def allowed(self) -> Array:
+        """(k,) the allowable at each place."""
+        return np.broadcast_to(self.allowable, self.demand.shape)
 
     @property
     def least(self) -> int:
@@ -113,14 +122,8 @@ def assess(job: Job, found: Schedule) -> Strength:
 def _cap_checks(job: Job, caps: Caps, found: Schedule) -> Iterator[Check]:
     for side in SIDES:
         one, carrying = found.one[side], _carrying(found, side)
-        yield Check(
-            f"{side} cap",
-            "bending moment / distance between cap centroids",
-            "N",
-            found.force,
-            one.value * caps.beside * carrying,
-            one.origin,
-        )
+        allowed = one.value * caps.beside * carrying
+        yield Check(f"{side} cap", found.carried.force_formula, "N", found.force, allowed, one.origin)
     bond = bond_shear(job, caps)
     wide = caps.beside * caps.width
     yield Check("strip bond", "shear flow / width of the strips", "MPa", found.flow / wide, bond.value, bond.origin)
@@ -134,46 +137,56 @@ def core_checks(job: Job, flow: Array, thickness: ArrayLike) -> tuple[tuple[Chec
     """Shear in core and facings for a shear flow (k,), N/mm, in a sheet of a thickness in mm; and what is not checked.
 
     Both are strained alike, so that they share the flow q as their stiffness is: ``tau = G q / (G_core t + 2 G_facing
-    t_facing)``. Without facings, or where a figure of theirs is not known, the core bears it all: ``q / t``.
+    t_facing)``, t_facing being the facing's bearing thickness. Where either stiffness is not known, each is checked as
+    if it bore it all, ``q / t`` and ``q / (2 t_facing)``; and so is the core where the facing's strength is not.
     """
-    thickness = np.asarray(thickness, dtype=float)
-    name = job.record.web.foam
-    foam = job.stock.find(name, Foam)
-    faced = _facing(job)
-    if faced is None or foam.shear_modulus is None:
-        core, skin, formula = flow / thickness, None, "shear flow / thickness"
-    else:
-        cloth, thick = faced
-        modulus = cloth.shear_modulus or 0.0
-        angle = flow / (foam.shear_modulus * thickness + 2.0 * modulus * thick)
-        core, skin = foam.shear_modulus * angle, modulus * angle
-        formula = "shear flow shared by stiffness, G q / (G t + 2 Gf tf)"
+    name, facing = job.record.web.foam, job.record.web.facing
+    foam, faced = job.stock.find(name, Foam), _facing(job)
+    core, skin, formula = _shared(foam, faced, flow, np.asarray(thickness, dtype=float))
     checks, unchecked = [], []
     if foam.shear is None:
         unchecked.append(f'core in shear: state the shear strength of "{name}" under [materials]')
     else:
         checks.append(Check("core in shear", formula, "MPa", core, foam.shear, job.stock.origin(name, "shear")))
-    if skin is not None and faced is not None:
-        cloth = faced[0]
-        origin = job.stock.origin(cloth.name, "shear")
-        checks.append(Check("facings in shear", formula, "MPa", skin, cloth.shear or 0.0, origin))
-    elif job.record.web.facing is not None:
-        unchecked.append(
-            "facings in shear: their thickness, strength or stiffness is not known, so the core bears it all"
-        )
+    if faced is not None:
+        origin = job.stock.origin(faced.cloth.name, "shear")
+        checks.append(Check("facings in shear", formula, "MPa", skin, faced.shear, origin))
+    elif facing is not None:
+        unchecked.append("facings in shear: their thickness or strength is not known, so the core bears it all")
     return tuple(checks), tuple(unchecked)
 
 
-def _facing(job: Job) -> tuple[Cloth, float] | None:
-    """Cloth and laminate thickness of one facing, where all its figures are known."""
+@dataclass(frozen=True)
+class _Faced:
+    """One facing: its cloth, its shear strength in MPa, and the thickness in mm that this counts for."""
+
+    cloth: Cloth
+    shear: float
+    bearing: float
+
+
+def _facing(job: Job) -> _Faced | None:
+    """One facing, where its strength and thickness are known."""
     facing = job.record.web.facing
     if facing is None or facing.cloth is None:
         return None
     cloth = job.stock.find(facing.cloth, Cloth)
-    thick = laminate(facing, job.stock, job.record.web.adhesive).thickness
-    if thick is None or cloth.shear is None or cloth.shear_modulus is None:
-        return None
-    return cloth, thick
+    bearing = laminate(facing, job.stock, job.record.web.adhesive).bearing
+    return None if bearing is None or cloth.shear is None else _Faced(cloth, cloth.shear, bearing)
+
+
+def _shared(foam: Foam, faced: _Faced | None, flow: Array, thickness: Array) -> tuple[Array, Array, str]:
+    """Shear stress (k,) of core and of facings, MPa, and how it is reckoned."""
+    if faced is None:
+        return flow / thickness, np.zeros_like(flow), "shear flow / thickness"
+    at = f"tf at {100.0 * faced.cloth.bears_at:.0f} % fibre by volume"
+    modulus = faced.cloth.shear_modulus
+    if foam.shear_modulus is None or modulus is None:
+        alone = f"q / t or q / (2 tf), each as if it bore the shear flow alone, a stiffness not being known, {at}"
+        return flow / thickness, flow / (2.0 * faced.bearing), alone
+    angle = flow / (foam.shear_modulus * thickness + 2.0 * modulus * faced.bearing)
+    formula = f"shear flow shared by stiffness, G q / (G t + 2 Gf tf), {at}"
+    return foam.shear_modulus * angle, modulus * angle, formula
 
 
 def _crushing(job: Job, caps: Caps, found: Schedule) -> Check | str:
@@ -181,7 +194,8 @@ def _crushing(job: Job, caps: Caps, found: Schedule) -> Check | str:
 
     A cap of force F on a curved line presses with F times the curvature for each length (L. G. Brazier, *On the flexure
     of thin cylindrical shells*, 1927): that of the beam as it bends, the sum of the caps' strains over their distance,
-    and that of the edge itself, whichever way it is curved. The air load comes on top of it, taken to cross the web.
+    and that of the edge itself, whichever way it is curved. The air load, where it is known, comes on top of it, taken
+    to cross the web.
     """
     name = job.record.web.foam
     foam, strip = job.stock.find(name, Foam), job.stock.find(caps.strip, Strip)
@@ -190,10 +204,12 @@ def _crushing(job: Job, caps: Caps, found: Schedule) -> Check | str:
     wide = caps.beside * caps.width
     strained = sum(found.force / (strip.modulus * wide * caps.thickness * _carrying(found, side)) for side in SIDES)
     edge = np.max([np.interp(found.s, *_edge_curvature(job, side)) for side in SIDES], axis=0)
-    pressed = found.force * (strained / found.apart + edge) + found.running
+    pressed, formula = found.force * (strained / found.apart + edge), "force x (curvature under load + of the edge)"
+    if (running := found.carried.running) is not None:
+        pressed, formula = pressed + running, f"({formula} + air load)"
     return Check(
         "core crushed",
-        "Brazier: force x (curvature under load + of the edge), + air load, / width of the strips",
+        f"Brazier: {formula} / width of the strips",
         "MPa",
         pressed / wide,
         foam.compression,

@@ -35,12 +35,15 @@ FOAMS: dict[str, tuple[float, float, float]] = {
     "sitka spruce": (5.00, 2.50, 400.0),
 }
 
-# shear strength and shear modulus of a laminate on the bias, by fibre: the first word of a cloth's name
+# shear strength and shear modulus of a laminate on the bias, by fibre: the first word of a cloth's name; for the fibre
+# volume of the usual hand lay-up, as much resin as cloth by mass, the resin's density being RESIN kg/m^3
 CLOTHS: dict[str, tuple[float, float]] = {
     "glass": (70.0, 8000.0),
     "carbon": (100.0, 18000.0),
     "aramid": (40.0, 9000.0),
 }
+
+RESIN = 1150.0
 
 # shear strength of a bond over a long overlap
 ADHESIVES: dict[str, float] = {"laminating epoxy": 6.0, "epoxy glue": 8.0}

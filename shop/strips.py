@@ -9,7 +9,6 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
-from functools import cached_property
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -20,6 +19,7 @@ from ..geom.caps import Stack
 from ..geom.seat import Along, constant
 from ..geom.web import SIDES, Plane, Side, end_places
 from .laminate import laminate
+from .loads import Carried, Line
 from .records_caps import Caps
 from .stock import OWN, Adhesive, Strip
 from .units import MM_PER_INCH
@@ -84,12 +84,8 @@ class Schedule:
         (k,) places along the web line, and their rib planes.
     apart
         (k,) distance between the cap centroids, or without strips between the seats.
-    force
-        (k,) cap force at ultimate load, N.
-    flow
-        (k,) shear flow in the web at ultimate load, N/mm.
-    running
-        (k,) air load at ultimate load, N for each mm along the web.
+    carried
+        What the web has to carry there at ultimate load.
     need
         For each side (k,) layers needed, not rounded.
     stacks
@@ -104,23 +100,31 @@ class Schedule:
     s: Array
     y: Array
     apart: Array
-    force: Array
-    flow: Array
-    running: Array
+    carried: Carried
     need: Mapping[Side, Array]
     stacks: Mapping[Side, Stack]
     one: Mapping[Side, Figure]
     bond: Mapping[Side, float]
 
-    @cached_property
+    @property
+    def force(self) -> Array:
+        """(k,) cap force at ultimate load, N."""
+        return self.carried.force
+
+    @property
+    def flow(self) -> Array:
+        """(k,) shear flow in the web at ultimate load, N/mm."""
+        return self.carried.flow
+
+    @property
     def shear(self) -> Array:
         """(k,) ultimate shear, N."""
-        return self.flow * self.apart
+        return self.carried.shear
 
-    @cached_property
+    @property
     def moment(self) -> Array:
         """(k,) ultimate bending moment, N mm."""
-        return self.force * self.apart
+        return self.carried.moment
 
     def height(self, side: Side) -> Along:
         """Height of the strips along one edge."""
@@ -250,21 +254,26 @@ def _carried(
     top, bottom = (geometry.height(job.loft, plane, s, side, under(job) + high[side] / 2.0) for side in SIDES)
     apart = top - bottom
     _refuse_high(job, plane, s, apart, high)
-    y, lean, ultimate = plane.origin[1] + s * plane.s[1], float(plane.s[1]), stated.ultimate_factor
-    force = ultimate * load.cap_force(y, apart, lean)
+    y = plane.origin[1] + s * plane.s[1]
+    line = Line(y, apart, _taper(s, apart + (high["top"] + high["bottom"]) / 2.0), float(plane.s[1]))
+    carried = load.at(line).times(stated.ultimate_factor)
     return Schedule(
         plane=plane,
         s=s,
         y=y,
         apart=apart,
-        force=force,
-        flow=ultimate * load.flow(y, apart, lean),
-        running=ultimate * load.running(y) * lean,
-        need={side: force / (one[side].value * caps.beside) for side in SIDES} if caps else {},
+        carried=carried,
+        need={side: carried.force / (one[side].value * caps.beside) for side in SIDES} if caps else {},
         stacks=stacks,
         one=one,
         bond=bond,
     )
+
+
+def _taper(s: Array, height: Array) -> Array:
+    """How fast a height (k,) grows along the web, each time over a stretch that places lying close cannot upset."""
+    low, high = np.clip(s - APART, s[0], s[-1]), np.clip(s + APART, s[0], s[-1])
+    return np.asarray((np.interp(high, s, height) - np.interp(low, s, height)) / (high - low))
 
 
 def _at(job: Job, s: float, y: float) -> str:

@@ -153,7 +153,8 @@ def _read(value: object, kind: Kind, bare: float = 1.0) -> float:
     except (ValueError, ArithmeticError):
         result = math.nan
     if not math.isfinite(result):
-        raise ValueError(f"{kind.wanted}, got {shown(value)}")
+        point = ", with a decimal point" if isinstance(value, str) and re.search(r"\d,\d", value) else ""
+        raise ValueError(f"{kind.wanted}{point}, got {shown(value)}")
     return result
 
 

@@ -92,7 +92,10 @@ def _named(candidate: Candidate, job: Job) -> str:
 
 
 def _shear_checked(job: Job) -> bool:
-    return job.caps is not None and bool(core_checks(job, job.caps.flow, job.record.web.thickness)[0])
+    """Whether the core was: facings alone, checked for all of it, say nothing of the core that holds them apart."""
+    if job.caps is None:
+        return False
+    return "core in shear" in {check.name for check in core_checks(job, job.caps.flow, job.record.web.thickness)[0]}
 
 
 def saving(job: Job) -> Saving | None:

@@ -12,6 +12,7 @@ from shapely.geometry.base import BaseGeometry
 
 from ..geom import blank, scarf
 from ..geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
+from .face_lines import name_line
 from .job import Job
 from .layout import Layout, Spot
 from .pieces import Piece, foam_name
@@ -98,7 +99,12 @@ class _Web:
         ring = thin(np.asarray(shape.exterior.coords))[:-1]
         inside, layout = shapely.Polygon(ring), Layout()
         layout.keep_clear(inside.exterior)
-        lines = [line for face in (self.front, self.rear) for line in self._face_lines(face, whole, inside)]
+        ends = [
+            (face, line)
+            for face, own in zip(blank.FACES, (self.front, self.rear), strict=True)
+            for line in self._face_lines(own, whole, inside)
+        ]
+        lines = [line for _, line in ends]
         pin = blank.register_diameter(*self.job.web.faces, self.job.register)
         holes = tuple(Hole(x, y, pin) for x, y in self.job.register.tolist() if inside.contains(shapely.Point(x, y)))
         for line in lines:
@@ -116,6 +122,10 @@ class _Web:
         for (low, high), texts in zip(joints, scarfs, strict=True):
             left = [text for text in texts if not self._put_near(text, (low + high) / 2.0, inside, layout)]
             beside += [f"{self._name}, {text}" for text in left]
+        for face, line in ends:
+            if not name_line(layout, face, line, inside):
+                at = self.job.wording.plain(float(line[:, 0].mean()))
+                beside.append(f"{self._name}, inner line at s {at}: the {face} face ends there")
         strokes = (Stroke(ring, Role.CUT_OUTSIDE, closed=True), *(Stroke(line, Role.ENGRAVE) for line in lines))
         title = f"Web sheet{self.which}"
         name = "web-sheet" + self.which.replace(" of ", "-").replace(" ", "-")

@@ -18,7 +18,7 @@ from typing import Any, get_args, get_origin
 from pydantic import BaseModel, ValidationError
 from pydantic_core import ErrorDetails
 
-from ..geom import airfoil
+from ..geom import airfoil, coordinates, naca
 from .changes import changed
 from .records import WingFile
 from .records_core import foams_asked, refuse_unfit
@@ -233,8 +233,10 @@ def _toml(raw: bytes) -> dict[str, Any]:
         if told is None:
             raise KeyedError((), f"wanted TOML, got a mistake: {error}") from None
         line, column, what = told[2], told[3], told[1]
-        got = shown(text.replace("\r\n", "\n").split("\n")[int(line) - 1].strip())
-        raise KeyedError((), f"line {line}: wanted TOML, got {got} (column {column}: {what})") from None
+        wrong = text.replace("\r\n", "\n").split("\n")[int(line) - 1].strip()
+        if re.search(r"=\s*[+-]?\d+,\d", wrong):
+            what = "a figure has a decimal point, no comma"
+        raise KeyedError((), f"line {line}: wanted TOML, got {shown(wrong)} (column {column}: {what})") from None
 
 
 def _record(data: dict[str, Any]) -> WingFile:
@@ -288,11 +290,11 @@ def _sections(record: WingFile, folder: Path) -> tuple[tuple[airfoil.Section, ..
             continue
         where: Where = ("wing", "stations", i, "airfoil")
         try:
-            if code := airfoil.naca_code(name):
-                sections[name] = airfoil.naca(code)
+            if code := naca.naca_code(name):
+                sections[name] = naca.naca(code)
                 continue
             files.append(_bytes(folder / name, 'a coordinate file or a NACA section such as "naca 2412"'))
-            sections[name] = airfoil.read(files[-1], name)
+            sections[name] = coordinates.read(files[-1], name)
         except ValueError as error:
             raise KeyedError(where, str(error) if code else f"{name}: {error}") from None
     return tuple(sections[station.airfoil] for station in record.wing.stations), files

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
+from fractions import Fraction
 
 from .units import MM_PER_INCH, Units
 
@@ -20,6 +22,10 @@ CAUTIONS = (
     "Nothing here is proof of airworthiness: the rules of your own country, a licensed engineer and a proof load come "
     "before flight.",
 )
+_DENSITY = 0.016 * GRAMS_PER_OUNCE / (0.012 * MM_PER_INCH) ** 3  # kg/m^3 in 1 lb/ft^3
+_AREAL = GRAMS_PER_OUNCE / (0.036 * MM_PER_INCH) ** 2  # g/m^2 in 1 oz/yd^2
+_HALF_UP = 1e-9  # mm or in: 5/16 in is 0.313 in, as every drill chart has it, though Python would round it to even
+_PARTS = 64  # of an inch, the finest that is marked
 _MM2_PER_SQUARE_FOOT = (12.0 * MM_PER_INCH) ** 2
 
 
@@ -29,8 +35,8 @@ class Wording:
 
     Examples
     --------
-    >>> Wording("in").length(6.35), Wording("mm").length(6.35)
-    ('0.25 in', '6.35 mm')
+    >>> Wording("in").length(6.35), Wording("mm").length(6.35), Wording("in").length(7.9375)
+    ('0.25 in', '6.35 mm', '0.313 in')
     """
 
     units: Units
@@ -58,7 +64,21 @@ class Wording:
         """Length without its unit, always as many digits, for a column: 0.01 mm or 0.001 in unless told otherwise."""
         if digits is None:
             digits = 3 if self.units == "in" else 2
-        return _tidy(f"{mm / MM_PER_INCH if self.units == 'in' else mm:.{digits}f}")
+        value = mm / MM_PER_INCH if self.units == "in" else mm
+        return _tidy(f"{value + math.copysign(_HALF_UP, value):.{digits}f}")
+
+    def size(self, mm: float) -> str:
+        """Size of what is bought, without its unit: in inches a fraction, as drills and sheets are marked.
+
+        >>> Wording("in").size(7.9375), Wording("in").size(38.1), Wording("in").size(7.0), Wording("mm").size(1.5)
+        ('5/16', '1 1/2', '0.276', '1.5')
+        """
+        parts = mm / MM_PER_INCH * _PARTS
+        if self.units != "in" or abs(parts - round(parts)) > 1e-3:
+            return self.plain(mm)
+        whole, rest = divmod(round(parts), _PARTS)
+        words = [str(whole)] * bool(whole or not rest) + [str(Fraction(rest, _PARTS))] * bool(rest)
+        return " ".join(words)
 
     def area(self, mm2: float) -> str:
         """Area in square metres or square feet."""
@@ -108,8 +128,32 @@ class Wording:
         >>> Wording("in").stress(147.4), Wording("mm").stress(147.4)
         ('21,400 psi', '147 MPa')
         """
-        value, unit = (mpa * PSI_PER_MPA, "psi") if self.units == "in" else (mpa, "MPa")
-        return f"{float(f'{value:.3g}'):,g} {unit}"
+        return f"{self.stress_column(mpa)} {self.stress_unit}"
+
+    @property
+    def stress_unit(self) -> str:
+        """MPa, or psi in a wing file in inches."""
+        return "psi" if self.units == "in" else "MPa"
+
+    def stress_column(self, mpa: float) -> str:
+        """Stress without its unit."""
+        return _three(mpa * PSI_PER_MPA if self.units == "in" else mpa)
+
+    def density(self, kg_per_m3: float) -> tuple[str, str]:
+        """Density and its unit: kg/m³ or pounds a cubic foot.
+
+        >>> Wording("in").density(80.0), Wording("mm").density(80.0)
+        (('4.99', 'lb/ft³'), ('80', 'kg/m³'))
+        """
+        return (_three(kg_per_m3 / _DENSITY), "lb/ft³") if self.units == "in" else (_three(kg_per_m3), "kg/m³")
+
+    def areal_weight(self, g_per_m2: float) -> tuple[str, str]:
+        """Weight of a cloth and its unit: g/m² or ounces a square yard.
+
+        >>> Wording("in").areal_weight(105.0), Wording("mm").areal_weight(105.0)
+        (('3.1', 'oz/yd²'), ('105', 'g/m²'))
+        """
+        return (_three(g_per_m2 / _AREAL), "oz/yd²") if self.units == "in" else (_three(g_per_m2), "g/m²")
 
     def mass_column(self, grams: float) -> str:
         """Mass without its unit: 0.1 g or 0.01 oz."""
@@ -124,6 +168,12 @@ def degrees(angle: float, digits: int = 1) -> str:
     """
     text = _tidy(f"{angle:.{digits}f}")
     return f"{text}°" if text.startswith("-") or not text.strip("0.") else f"+{text}°"
+
+
+def _three(value: float) -> str:
+    """Three digits that count, without needless noughts; thousands apart."""
+    rounded = float(f"{value:.3g}")
+    return f"{rounded:,.0f}" if abs(rounded) >= 100.0 else f"{rounded:g}"
 
 
 def _tidy(text: str) -> str:

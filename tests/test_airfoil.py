@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable
+from pathlib import Path
 
 import numpy as np
 import pytest
@@ -11,7 +12,9 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from numpy.typing import NDArray
 
-from wrywing.geom.airfoil import N, Section, from_points, mean_line, naca, naca_code, parse, read
+from wrywing.geom.airfoil import N, Section
+from wrywing.geom.coordinates import from_points, parse, read
+from wrywing.geom.naca import mean_line, naca, naca_code
 
 Floats = NDArray[np.float64]
 
@@ -280,6 +283,85 @@ def test_few_points_are_doubtful() -> None:
     assert "17 points only" in from_points(np.vstack([UPPER[::-12], LOWER[12::12]]), "file").doubts[-1]
 
 
+# --- a figure that is wrong
+
+STATIONS = np.array([0, 1.25, 2.5, 5, 7.5, 10, 15, 20, 25, 30, 40, 50, 60, 70, 80, 90, 95, 100]) / 100
+
+
+def listed(code: str, x: Floats, digits: int = 4) -> Floats:
+    """A loop as it is printed: rounded."""
+    upper, lower = outline(code, x)
+    return np.round(np.vstack([upper[::-1], lower[1:]]), digits)
+
+
+@pytest.mark.parametrize(("place", "wrong"), [(0.3, 0.0987), (0.7, 0.0156), (0.1, 0.0954), (0.05, 0.0301)])
+@pytest.mark.parametrize("form", ["one list", "other way round", "two sides"])
+def test_a_wrong_figure_is_reported_with_its_line(place: float, wrong: float, form: str) -> None:
+    # One digit wrong (0.0787, 0.0554, 0.0401) or two of them exchanged (0.0516).
+    loop = listed("2412", STATIONS)
+    i = int(np.abs(loop[:18, 0] - place).argmin())
+    loop[i, 1] = wrong
+    text, line = {
+        "one list": ("t\n" + rows(loop), i + 2),
+        "other way round": ("t\n" + rows(loop[::-1]), len(loop) - i + 1),
+        "two sides": ("t\n18 18\n" + rows(loop[17::-1]) + "\n" + rows(loop[17:]), 20 - i),
+    }[form]
+    (doubt,) = parse(text, "file").doubts
+    said = re.fullmatch(rf"the point in line {line}, at ([\d.]+) chord on the upper side, stands ([\d.]+) of .*", doubt)
+    assert said is not None
+    assert float(said[1]) == pytest.approx(place, abs=0.004)
+    assert 0.005 < float(said[2]) < 0.05
+
+
+@pytest.mark.parametrize("by", [-0.005, 0.005])
+def test_a_wrong_figure_is_found_anywhere_in_a_close_list(by: float) -> None:
+    plain = listed("2412", 0.5 * (1.0 - np.cos(np.linspace(0.0, np.pi, 61))))
+    for i in np.flatnonzero((plain[:, 0] > 0.02) & (plain[:, 0] < 0.997)):
+        loop = plain.copy()
+        loop[i, 1] += by
+        (doubt,) = from_points(loop, "file").doubts
+        side = "upper" if i < 60 else "lower"
+        assert doubt.startswith(f"the point, at {loop[i, 0]:.3f} chord on the {side} side, stands 0.00")
+
+
+def test_more_points_than_one_are_counted() -> None:
+    loop = listed("0012", STATIONS)
+    loop[[5, 9, 25], 1] += 0.02
+    (doubt,) = from_points(loop, "file").doubts
+    assert "of its neighbours, and 2 more stand out so: is a figure wrong?" in doubt
+
+
+@pytest.mark.parametrize("code", ["0006", "2412", "4424", "23012", "25112"])
+@pytest.mark.parametrize("digits", [3, 4, 5])
+def test_rounded_figures_however_spaced_are_not_doubted(code: str, digits: int) -> None:
+    for count in (10, 20, 40, 101):
+        u = np.linspace(0.0, 1.0, count)
+        for x in (STATIONS, u, u**2, 0.5 * (1.0 - np.cos(np.pi * u)), 1.0 - np.cos(np.pi * u / 2.0)):
+            loop = listed(code, x, digits)
+            said = from_points(loop, "file").doubts
+            assert not any("neighbours" in doubt for doubt in said)
+
+
+@pytest.mark.parametrize("degrees", [-20.0, -6.0, 6.0, 20.0])
+def test_kinks_and_blunt_ends_are_not_doubted(degrees: float) -> None:
+    upper, lower = outline("2412", 0.5 * (1.0 - np.cos(np.linspace(0.0, np.pi, 41))))
+    c, s = np.cos(np.radians(degrees)), np.sin(np.radians(degrees))
+    sides = []
+    for side in (upper, lower):
+        flap = (side[side[:, 0] > 0.72] - [0.7, 0.02]) @ [[c, s], [-s, c]] + [0.7, 0.02]
+        sides.append(np.vstack([side[side[:, 0] < 0.69], flap[flap[:, 0] > 0.71]]))
+    assert not any("neighbours" in d for d in from_points(np.vstack([sides[0][::-1], sides[1][1:]]), "flap").doubts)
+    a = np.linspace(0.5, 1.5, 9) * np.pi
+    nose = 0.04 * np.column_stack([1.0 + np.cos(a), np.sin(a)])
+    plate = np.vstack([[[1.0, 0.04], [0.6, 0.04]], nose, [[0.6, -0.04], [1.0, -0.04]]])
+    assert not any("neighbours" in d for d in from_points(plate, "plate").doubts)
+
+
+def test_sections_of_the_examples_are_not_doubted() -> None:
+    for path in (Path(__file__).parent.parent / "examples" / "sections").iterdir():
+        assert read(path.read_bytes(), path.name).doubts == ()
+
+
 LINES = rows(LOOP).splitlines(keepends=True)
 JUMBLED = np.vstack([LOOP[:20], LOOP[20:60][::-1], LOOP[60:]])
 
@@ -380,6 +462,21 @@ def test_code_or_file(text: str, code: str | None) -> None:
 )
 def test_bad_codes(code: str) -> None:
     with pytest.raises(ValueError, match=rf"^wanted a .*, got '{code}'$"):
+        naca(code)
+
+
+@pytest.mark.parametrize(("code", "line", "meant"), [("64012", "240", "64-012"), ("65012", "250", "65-012")])
+def test_five_digits_that_look_like_the_6_series_are_doubted(code: str, line: str, meant: str) -> None:
+    # Published: Abbott & von Doenhoff; 64-012 is of the 6-series and symmetrical, five digits have a mean line.
+    (doubt,) = naca(code).doubts
+    for word in (f"mean line {line}", "lift coefficient of 0.9", f"if {meant} is meant", "needs a coordinate file"):
+        assert word in doubt
+    assert naca("23012").doubts == naca("6412").doubts == ()
+
+
+@pytest.mark.parametrize("code", ["63-412", "64A210", "66012", "65(2)-415"])
+def test_a_code_of_the_6_series_is_refused_with_a_way_out(code: str) -> None:
+    with pytest.raises(ValueError, match="a section of the 6-series needs a coordinate file"):
         naca(code)
 
 

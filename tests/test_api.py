@@ -9,7 +9,7 @@ from dataclasses import asdict
 
 import pytest
 from richest import EXAMPLES
-from test_cli import GOOD
+from wings import GOOD
 
 import wrywing
 from wrywing import cli

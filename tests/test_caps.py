@@ -16,7 +16,7 @@ from typer.testing import CliRunner
 
 from wrywing import cli
 from wrywing.geom import caps, seat, web
-from wrywing.shop import describe_strength, sheets, weigh
+from wrywing.shop import describe_strength, loads, sheets, weigh
 from wrywing.shop import job as jobs
 from wrywing.shop import masses as weights
 from wrywing.shop import verdict as choice
@@ -184,7 +184,9 @@ def test_schedule_and_centroids_agree():
         for side in web.SIDES
     ]
     assert_allclose(found.apart, heights[0] - heights[1], atol=1e-4)
-    assert_allclose(found.moment, 1.5 * job.load.moment(found.y) / plane.s[1], rtol=1e-9)
+    limit = job.load.at(loads.Line(found.y, found.apart, np.zeros_like(found.y), plane.s[1]))
+    assert_allclose(found.force, 1.5 * limit.force, rtol=1e-9)
+    assert_allclose(found.moment, found.force * found.apart, rtol=1e-9)
     for check in job.strength.checks[:2]:
         assert check.reserve.min() >= 1.0
 

@@ -7,40 +7,18 @@ import io
 import json
 import subprocess
 import sys
+import time
 import tomllib
 from pathlib import Path
 
 import pdfplumber
 import pytest
+from wings import GOOD
 
 from wrywing import cli
+from wrywing.shop.stock import Stock
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
-
-GOOD = """
-name = "plain"
-[wing]
-[[wing.stations]]
-y = 0
-chord = 300
-airfoil = "naca 2412"
-washout = 0
-[[wing.stations]]
-y = 1000
-chord = 200
-le = 100
-airfoil = "naca 2412"
-washout = 6
-[skin]
-thickness = 1
-[web]
-ends = [0, 980]
-line = [0.3, 0.3]
-thickness = 6
-edge = "square"
-foam = "pvc foam 80"
-filler = "microballoon paste"
-"""
 
 
 @pytest.fixture
@@ -118,6 +96,12 @@ def test_webs_that_do_not_fit_the_wing_are_refused_in_one_line(run, wing, tmp_pa
         (["weigh", "WING", "--thickness", ""], "--thickness: wanted a list"),
         (["weigh", "WING", "--thickness", "thick"], "--thickness: wanted a length"),
         (["weigh", "WING", "--thickness", "0"], "--thickness: wanted lengths above 0"),
+        (["weigh", "WING", "--thickness", "4,5mm"], "--thickness: wanted 4.5mm with a point, or 4, 5mm with a blank"),
+        (["bevels", "WING", "--every", "0,5 mm"], "with a decimal point, got '0,5 mm'"),
+        (["weigh", "WING", "--json", "--csv"], "--csv: wanted none beside --json"),
+        (["bevels", "WING", "--json", "--csv"], "--csv: wanted none beside --json"),
+        (["stock", "--json", "--csv"], "--csv: wanted none beside --json"),
+        (["stock", "steel"], "KIND: wanted one of foam, wood, filler, adhesive, cloth, strip, pin, got 'steel'"),
         (["weigh", "WING", "--edge", "round"], "--edge: wanted one of square, set bevel, full bevel, got 'round'"),
         (["weigh", "WING", "--cant", "80"], "--cant: wanted angles within 45 degrees"),
         (["weigh", "WING", "--cant", "square at 3000"], "--cant: wanted y within the stations, 0 mm to"),
@@ -125,7 +109,7 @@ def test_webs_that_do_not_fit_the_wing_are_refused_in_one_line(run, wing, tmp_pa
         (["weigh", "WING", "--cant", "upright"], '--cant: wanted "square at Y"'),
         (["report", "WING", "--out", "WING"], "wanted a name that ends in .html"),
         (["templates", "WING", "--out", "OUT", "--formats", "png"], "--formats: wanted one of dxf, svg, pdf"),
-        (["templates", "WING", "--out", "OUT", "--hand", "upper"], "--hand: wanted one of right, left"),
+        (["templates", "WING", "--out", "OUT", "--hand", "upper"], "--hand: wanted one of right, left, both,"),
         (["templates", "WING", "--out", "OUT", "--paper", "a9"], "--paper: wanted a paper size"),
         (["templates", "WING", "--out", "OUT", "--paper", "roll"], "--paper: wanted a paper size"),
         (["templates", "WING", "--out", "OUT", "--paper", "roll 90 mm"], "--paper: paper roll 90 mm: wanted a roll at"),
@@ -239,7 +223,7 @@ def test_check_says_what_is_doubtful(run, wing, changes, doubt):
 
 
 def test_a_crossed_trailing_edge_is_doubtful(run, wing, tmp_path):
-    from wrywing.geom.airfoil import naca
+    from wrywing.geom.naca import naca
 
     section = naca("2412")
     t = [i / 40.0 for i in range(40, -41, -1)]
@@ -264,12 +248,84 @@ def test_bevels_json_is_as_documented_and_csv_holds_the_same(run):
 
 
 def test_the_screen_fits_a_hundred_columns(run):
-    for words in (("bevels",), ("weigh",), ("check",)):
-        for name in ("saltpan.toml", "highmoor.toml"):
-            _, printed, _ = run(*words, EXAMPLES / name)
-            tables = [line for line in printed.splitlines() if not line.startswith(("Take", "With"))]
-            assert max(map(len, tables)) <= 100
-            assert "…" not in printed
+    wings = [
+        (word, EXAMPLES / name) for word in ("bevels", "weigh", "check") for name in ("saltpan.toml", "highmoor.toml")
+    ]
+    for words in [*wings, ("stock",), ("stock", "--units", "in")]:
+        _, printed, _ = run(*words)
+        tables = [line for line in printed.splitlines() if not line.startswith(("Take", "With"))]
+        assert max(map(len, tables)) <= 100
+        assert "…" not in printed
+
+
+def test_the_washout_is_said_for_both_ends_and_where_its_extremes_lie_in_between(run, wing):
+    middle = '[[wing.stations]]\ny = {}\nchord = 250\nle = 50\nairfoil = "naca 2412"\nwashout = {}\n'
+    tip = "[[wing.stations]]\ny = 1000"
+    sagging = wing((tip, middle.format(300, -0.5) + middle.format(700, -1) + tip), ("washout = 6", "washout = 4"))
+    said = "washout   0.0° at the root, +4.0° at the tip, least -1.0° at y 700 mm, law smooth"
+    assert said in run("check", sagging)[1].splitlines()
+    assert json.loads(run("check", sagging, "--json")[1])["washout"] == pytest.approx([0.0, 4.0])
+    bulging = wing((tip, middle.format(500, 7) + tip))
+    assert "washout   0.0° at the root, +6.0° at the tip, greatest +7.0° at y 500 mm, law" in run("check", bulging)[1]
+    assert "washout   0.0° at the root, +6.0° at the tip, law smooth\n" in run("check", wing())[1]
+
+
+def test_the_stock_is_listed_and_all_of_it_can_be_named(run):
+    _, shown, _ = run("stock")
+    names = Stock().materials
+    assert all(f" {name} " in shown for name in names)
+    records = json.loads(run("stock", "--json")[1])
+    assert [record["name"] for record in records] == [*names]
+    assert all(record["source"] for record in records)
+    rows = list(csv.DictReader(io.StringIO(run("stock", "--csv")[1])))
+    assert [row["density"] for row in rows if row["name"] == "pvc foam 80"] == ["80"]
+    # published: 1 lb/ft^3 = 16.01846 kg/m^3, 1 MPa = 145.0377 psi (NIST SP 811, appendix B)
+    (line,) = (line for line in run("stock", "FOAM", "--units", "in")[1].splitlines() if " pvc foam 80 " in line)
+    density, _, shear, *_, wire = line.split()[3:]
+    assert float(density) == pytest.approx(80.0 / 16.01846, rel=0.005)
+    assert float(shear) == pytest.approx(names["pvc foam 80"].shear * 145.0377, rel=0.005)
+    assert wire == "never"
+    assert "PVC foam gives off poisonous gas" in run("stock", "foam")[1]
+    assert " 1/8, 3/16, 1/4, 5/16, 3/8, " in run("stock", "pin", "--units", "in")[1]
+
+
+def test_a_decimal_comma_in_a_wing_file_is_named(run, wing):
+    said = "a figure has a decimal point, no comma"
+    for changed, words in (("4,5", said), ('"4,5 mm"', "with a decimal point, got")):
+        status, _, complaint = run("check", wing(("thickness = 6", f"thickness = {changed}")))
+        assert status == 2
+        assert words in complaint
+
+
+def test_case_does_not_matter(run, wing, tmp_path):
+    words = ("--formats", "DXF,Svg", "--hand", "Both", "--paper", "A4", "--dxf-version", "r12")
+    assert run("templates", wing(), "--out", tmp_path / "out", *words)[0] == 0
+    made = {path.suffix for path in (tmp_path / "out").iterdir()}
+    assert made == {".dxf", ".svg", ".json"}
+    assert run("weigh", wing(), "--thickness", "5", "--edge", "Square", "--cant", "Least Filler")[0] == 0
+
+
+def test_refused_sheets_are_joined_by_sheet_and_cant_not_by_what_is_shown_of_them(run, wing):
+    words = ("--thickness", "400.001, 400.002", "--cant", "0,5")
+    rows = [line.split() for line in run("weigh", wing(), *words)[1].splitlines() if line.endswith("no room ")]
+    assert rows == [["400", "any", cant, "no", "room"] for cant in ("0.0°", "+5.0°") for _ in range(2)]
+
+
+class Terminal(io.StringIO):
+    def isatty(self):
+        return True
+
+
+@pytest.mark.parametrize(
+    ("terminal", "seconds", "shown"), [(Terminal, 1.3, True), (Terminal, 0.0, False), (io.StringIO, 1.3, False)]
+)
+def test_what_takes_long_says_so_on_a_terminal_alone(monkeypatch, terminal, seconds, shown):
+    monkeypatch.setattr(sys, "stderr", terminal())
+    monkeypatch.setenv("TERM", "xterm")
+    with cli._waiting("weighing") as say:
+        say("weighing 2 of 3")
+        time.sleep(seconds)
+    assert ("weighing 2 of 3" in sys.stderr.getvalue()) == shown
 
 
 def test_weigh_json_marks_one_candidate_and_gives_the_saving(run):

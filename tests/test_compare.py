@@ -7,7 +7,7 @@ import sys
 
 import pytest
 from richest import EXAMPLES, richest
-from test_cli import GOOD
+from wings import GOOD
 
 import wrywing
 from wrywing import cli

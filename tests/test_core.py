@@ -11,10 +11,11 @@ import numpy as np
 import pytest
 import trimesh
 from numpy.testing import assert_allclose
+from scipy.integrate import quad
 from scipy.spatial import cKDTree
 from wings import Bent, ellipse, loft, slab
 
-from wrywing.geom import airfoil, bays, core, profile, straight, web
+from wrywing.geom import bays, core, naca, profile, straight, washout, web
 from wrywing.geom.core import NoFoam, Region
 from wrywing.geom.seat import Along, constant
 from wrywing.shop import job as jobs
@@ -65,14 +66,14 @@ def test_inside_of_a_swept_slab():
 
 
 def test_a_nose_sharper_than_the_skin_is_not_folded():
-    of = profile.profile(loft(airfoil.naca("0006"), [0, 400], chord=120.0, skin=1.5), 200.0, T)
+    of = profile.profile(loft(naca.naca("0006"), [0, 400], chord=120.0, skin=1.5), 200.0, T)
     crossing = of.points[np.abs(of.t) < 0.06]
     assert np.ptp(crossing, axis=0).max() < 1e-9  # one point where the two sides meet
     assert np.all(np.diff(of.points[of.t >= 0.0][:, 0]) >= 0.0)
 
 
 def test_a_thin_tail_is_padded_about_its_middle():
-    of = profile.profile(loft(airfoil.naca("2410"), [0, 400], skin=1.0), 200.0, T)
+    of = profile.profile(loft(naca.naca("2410"), [0, 400], skin=1.0), 200.0, T)
     padded = of.padded(1.5)
     thin = of.t[len(T) // 2 :] > of.tail(1.5)
     assert thin.any()
@@ -105,7 +106,7 @@ def test_straight_cut_of_a_parabolic_washout(skin):
 
 
 def test_no_error_without_twist():
-    of = loft(airfoil.naca("2412"), [0, 700], chord=[300, 140], le=[0, 210], z=[0, 35], skin=1.3)
+    of = loft(naca.naca("2412"), [0, 700], chord=[300, 140], le=[0, 210], z=[0, 35], skin=1.3)
     for t in (-0.9, -0.3, 0.0, 0.2, 0.7):
         assert_allclose(straight.proud(of, (50.0, 620.0), t, np.linspace(60.0, 610.0, 7)), 0.0, atol=1e-9)
     sampled = straight.grid(of, Region("whole", (50.0, 620.0)), rows=61)
@@ -152,7 +153,7 @@ def test_straight_cut_against_a_mesh(nasa, kind):
 
 def divided(of, wanted, tolerance, most=20, longest=float("inf"), rows=241):
     sampled = straight.grid(of, wanted, rows=rows)
-    divider = bays.Divider(wanted.ends, sampled.parts, sampled.thinned(2, 2).parts, sampled.spread, longest)
+    divider = bays.Divider(wanted.ends, sampled.parts, sampled.table, sampled.spread, longest)
 
     def exact(bounds):
         return max(abs(straight.worst(of, sampled, pair).off) for pair in pairwise(bounds))
@@ -160,14 +161,19 @@ def divided(of, wanted, tolerance, most=20, longest=float("inf"), rows=241):
     return sampled, divider, exact, divider.fewest(tolerance, most, exact)
 
 
-def searched(sampled, places, count):
-    """Least largest error of `count` bays with bounds at any of the places, by trying every way (Bellman 1961)."""
+def errors(sampled, places, hopeless=2.0):
+    """Errors (k, k) of all bays between the places."""
     cost = np.full((len(places),) * 2, np.inf)
     for i, a in enumerate(places):
         for j in range(i + 1, len(places)):
             cost[i, j] = sampled.error(a, places[j])
-            if cost[i, j] > 2.0 and j > i + 30:
+            if cost[i, j] > hopeless and j > i + 30:
                 break
+    return cost
+
+
+def searched(cost, count):
+    """Least largest error of `count` bays with bounds at any of the places, by trying every way (Bellman 1961)."""
     best = cost[0]
     for _ in range(count - 1):
         best = np.maximum(best[:, None], cost).min(axis=0)
@@ -179,11 +185,11 @@ def test_fewest_bays_of_the_nasa_wing(nasa, kind):
     wanted = region(nasa, kind)
     sampled, _, exact, bounds = divided(nasa.loft, wanted, 0.2)
     count = len(bounds) - 1
-    places = np.linspace(*wanted.ends, 101)
+    cost = errors(sampled, np.linspace(*wanted.ends, 101))
     assert exact(bounds) <= 0.2
-    assert exact(bounds) < searched(sampled, places, count) * 1.002
+    assert exact(bounds) < searched(cost, count) * 1.002
     # bounds at the places are at most half a step, 9 mm, off better ones
-    assert searched(sampled, places, count - 1) * 0.9 > 0.2
+    assert searched(cost, count - 1) * 0.9 > 0.2
 
 
 def test_fewest_bays_of_an_example():
@@ -193,7 +199,7 @@ def test_fewest_bays_of_an_example():
     places = np.union1d(np.linspace(*made.region.ends, 81), of.loft.knots[1:-1])
     tolerance = made.stated.tolerance
     assert abs(made.worst.off) <= tolerance
-    assert searched(sampled, places, len(made.bays) - 1) > tolerance
+    assert searched(errors(sampled, places), len(made.bays) - 1) > tolerance
 
 
 def test_bays_have_equal_errors():
@@ -206,8 +212,34 @@ def test_bays_have_equal_errors():
     assert_allclose(np.diff(bounds), 1200.0 / len(errors), rtol=0.01)
 
 
+def test_bays_of_a_reversing_washout_are_no_worse_than_any_among_even_places():
+    # with 3 bays or more their errors have many local minima
+    law = washout.smooth([0.0, 300.0, 500.0, 1000.0], np.radians([0.0, 4.0, -2.0, 6.0]))
+    of = loft(naca.naca("2412"), [0, 1000], chord=[300, 200], le=[0, 100], twist=law)
+    plane = web.plane(of, ends=(0.0, 980.0), line=(0.3, 0.3))
+    wanted = Region("aft", (0.0, 980.0), plane, constant(3.3), least=1.2)
+    sampled = straight.grid(of, wanted)
+    divider = bays.Divider(wanted.ends, sampled.parts, sampled.table, sampled.spread)
+    cost = errors(sampled, np.linspace(0.0, 980.0, 71), np.inf)
+    for count in (3, 4, 5):
+        found = max(sampled.error(*pair) for pair in pairwise(divider.into(count)))
+        assert found < searched(cost, count) * 1.001
+
+
+def test_a_table_of_errors_is_their_list():
+    of = loft(naca.naca("2412"), [0, 600], chord=[300, 200], twist=washout.smooth([0, 200, 600], [0.0, 0.05, 0.1]))
+    plane = web.plane(of, ends=(0.0, 600.0), line=(0.3, 0.3))
+    for kind, side in (("nose", -1.0), ("aft", 1.0)):
+        face = Along(np.array([100.0, 200.0]), side * np.array([6.0, 3.0]))
+        sampled = straight.grid(of, Region(kind, (0.0, 600.0), plane, face))
+        places = np.linspace(0.0, 600.0, 13)
+        table = sampled.table(places)
+        for i, j in zip(*np.triu_indices(13, 1), strict=True):
+            assert table[i, j] == pytest.approx(sampled.error(places[i], places[j]), rel=0.02, abs=0.002)
+
+
 def test_no_bay_is_longer_than_longest():
-    of = loft(airfoil.naca("2412"), [0, 1000], chord=[300, 200], twist=[0, 1e-9])
+    of = loft(naca.naca("2412"), [0, 1000], chord=[300, 200], twist=[0, 1e-9])
     *_, bounds = divided(of, Region("whole", (0.0, 1000.0)), 0.5, longest=300.0, rows=61)
     assert len(bounds) == 5
     assert max(np.diff(bounds)) <= 300.0 + 1e-6
@@ -217,6 +249,57 @@ def test_too_few_bays_are_refused(nasa):
     with pytest.raises(bays.TooFew) as refused:
         divided(nasa.loft, region(nasa, "aft"), 0.05, most=4)
     assert refused.value.reached > 0.05
+
+
+# --- the face beside a thickened web ---------------------------------------------------------------
+
+TAPER = Along(np.array([100.0, 160.0]), np.array([6.0, 3.0]))
+
+
+def beside(kind, taper=TAPER, **more):
+    """An untwisted panel of ellipses, 200 by 20 mm; its web is 3 mm to either side, and 6 mm at one end."""
+    cant = more.pop("cant", 0.2)
+    of = loft(ellipse(0.05), [0, 600], skin=1e-9, **more)
+    plane = web.plane(of, ends=(0.0, 600.0), line=(0.4, 0.4), cant=cant)
+    side = 1.0 if kind == "aft" else -1.0
+    return of, Region(kind, (0.0, 600.0), plane, Along(taper.s, side * taper.value), to=1.0 if kind == "nose" else 0.8)
+
+
+@pytest.mark.parametrize("kind", ["nose", "aft"])
+def test_straight_cut_beside_a_taper(kind):
+    # by similar triangles: from 6 mm at s = 0 to 3 mm at s = b the cut is at 6 - 3 s / b
+    of, wanted = beside(kind)
+    sampled = straight.grid(of, wanted, rows=61)
+    for b, at, off in ((160.0, 100.0, 3.0 * 100.0 / 160.0), (500.0, 160.0, -3.0 * (1.0 - 160.0 / 500.0))):
+        found = straight.worst(of, sampled, (0.0, b))
+        assert (found.side, round(found.y, 3)) == ("web", at)
+        assert found.off == pytest.approx(off, abs=1e-6)
+        assert sampled.error(0.0, b) == pytest.approx(abs(off), abs=1e-6)
+    assert abs(straight.worst(of, sampled, (100.0, 160.0)).off) < 1e-6
+
+
+@pytest.mark.parametrize("steep", [60.0, 5.0])
+def test_a_core_gives_way_to_what_thickens_the_web(steep):
+    # height between the skins, 40 sqrt(p (1 - p)) mm, times how far along the web the thickening has that n
+    taper = Along(np.array([100.0, 100.0 + steep]), TAPER.value)
+    for kind, side in (("nose", -1.0), ("aft", 1.0)):
+        of, wanted = beside(kind, taper, cant=0.0)
+        _, plain = beside(kind, constant(3.0), cant=0.0)
+
+        def layer(n, side=side):
+            p = (80.0 + side * n) / 200.0
+            return 40.0 * np.sqrt(p * (1.0 - p)) * (100.0 + steep * (6.0 - n) / 3.0)
+
+        less = core.solid(of, plain).volume - core.solid(of, wanted).volume
+        assert less == pytest.approx(quad(layer, 3.0, 6.0)[0], rel=1e-3)
+
+
+def test_a_swept_canted_cores_mesh_keeps_to_the_face():
+    of, wanted = beside("nose", le=[0, 200])
+    corners = core.solid(of, wanted, longest=40.0).points.reshape(-1, 162, 3)[:, [0, -1]]
+    way = np.linspace(0.0, 1.0, 21)[:, None, None, None]
+    out = (corners[:-1] + way * np.diff(corners, axis=0)).reshape(-1, 3) - wanted.web.origin
+    assert_allclose(out @ wanted.web.n, wanted.face(out @ wanted.web.s), atol=0.003)
 
 
 # --- volume ----------------------------------------------------------------------------------------
@@ -260,14 +343,14 @@ def test_nose_web_and_aft_make_the_whole(nasa):
 
 
 def test_regions_without_foam():
-    of = loft(airfoil.naca("0010"), [0, 500], chord=[200, 90])
+    of = loft(naca.naca("0010"), [0, 500], chord=[200, 90])
     plane = web.plane(of, ends=(0.0, 500.0), line=(0.3, 0.3))
     inside = profile.profile(of, 250.0, T)
     with pytest.raises(NoFoam, match="ahead of the web's rear face"):
         core.limits(Region("aft", (0.0, 500.0), plane, constant(4.0), to=0.31), inside)
     with pytest.raises(NoFoam, match="misses the lower side"):
         core.limits(Region("nose", (0.0, 500.0), plane, constant(-60.0)), inside)
-    thick = profile.profile(loft(airfoil.naca("0006"), [0, 500], chord=40.0, skin=1.3), 250.0, T)
+    thick = profile.profile(loft(naca.naca("0006"), [0, 500], chord=40.0, skin=1.3), 250.0, T)
     with pytest.raises(NoFoam, match="less than 1 mm"):
         core.limits(Region("whole", (0.0, 500.0)), thick)
 

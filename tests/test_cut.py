@@ -6,6 +6,7 @@ from pathlib import Path
 import numpy as np
 import pytest
 import shapely
+from wings import GOOD
 
 from wrywing.export import contours
 from wrywing.geom.drawing import Role
@@ -55,8 +56,37 @@ def test_each_line_says_whose_it_is_and_no_lettering_lies_on_anything(case):
     ring = shapely.LinearRing(drawing.strokes[0].points)
     assert not any(box.intersects(marks) or box.intersects(ring) for box in boxes)
     text = "\n".join(label.text for label in drawing.labels)
-    for words in ("rear face ends here", "front face ends here, on the far side", "ROOT", "TIP", "UP", job.stamp):
+    for words in ("rear face", "front face, far side", "ROOT", "TIP", "UP", job.stamp):
         assert words in text
+
+
+LOW = ("chord = 300", "chord = 150"), ("chord = 200", "chord = 100"), ('"square"', '"set bevel"\nruns = 2')
+
+
+@pytest.mark.parametrize("hand", ["right", "left"])
+@pytest.mark.parametrize("changes", [(), (("thickness = 6", "thickness = 9"),), LOW], ids=["plain", "thick", "low"])
+def test_every_line_within_the_blank_has_its_own_face_named_beside_it(tmp_path, changes, hand):
+    path = tmp_path / "wing.toml"
+    text = GOOD.replace('edge = "square"', 'edge = "full bevel"') if changes is not LOW else GOOD
+    for old, new in changes:
+        assert old in text
+        text = text.replace(old, new)
+    path.write_text(text)
+    job = jobs.load(path)
+    (drawing,) = web_cut(job, hand)
+    sense = [1.0 if hand == "right" else -1.0, 1.0]
+    faces = {face.name: shapely.LinearRing(face.outline() * sense) for face in job.web.faces}
+    names = [t for t in drawing.labels if t.text.removeprefix("inner line: ").startswith(("front face", "rear face"))]
+    lines = [shapely.LineString(s.points) for s in drawing.strokes if s.role is Role.ENGRAVE]
+    assert len(lines) >= 2
+    for line in lines:
+        middle = line.interpolate(0.5, normalized=True)
+        whose = min(faces, key=lambda name: faces[name].distance(middle))
+        name = min(names, key=lambda t: t.box().distance(line))
+        assert name.box().distance(line) < 8.0
+        assert f"{whose} face" in name.text
+        # said again on every sheet of paper, an A4 held sideways showing 266 mm
+        assert len([t for t in names if t.box().distance(line) < 8.0]) >= line.length / 266.0
 
 
 def test_a_square_edge_engraves_only_the_ends(tmp_path):

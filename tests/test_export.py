@@ -16,7 +16,7 @@ from samples import A4, WING, blank, card
 
 from wrywing.export import dxf, pdf, svg
 from wrywing.export.pdf import Print
-from wrywing.geom.drawing import Role
+from wrywing.geom.drawing import Label, Role
 
 SVG = "{http://www.w3.org/2000/svg}"
 DRAWINGS = {"blank": blank(), "left": blank().mirrored("left"), "card": card()}
@@ -45,7 +45,9 @@ class TestDxf:
         # published: DXF reference, $INSUNITS 4 is millimetres, $MEASUREMENT 1 is metric
         assert (document.header["$INSUNITS"], document.header["$MEASUREMENT"]) == (4, 1)
         x0, y0, x1, y1 = drawing.bounds()
-        assert document.header["$EXTMIN"][:2] == pytest.approx((x0, y0), abs=0.001)
+        low = document.header["$EXTMIN"]
+        assert low[0] == pytest.approx(x0, abs=0.001)
+        assert 4.0 < y0 - low[1] < 10.0  # a line of lettering below the drawing says what a unit is
         assert document.header["$EXTMAX"][:2] == pytest.approx((x1, y1), abs=0.001)
 
     def test_outlines_are_closed_and_where_they_were(self, document, drawing):
@@ -70,7 +72,8 @@ class TestDxf:
 
     def test_lettering_is_lines(self, document, drawing):
         lines = document.modelspace().query('LWPOLYLINE[layer=="NOTE"]')
-        assert len(lines) == sum(len(label.strokes()) for label in drawing.labels)
+        texts = [label.text for label in drawing.labels] + ["DXF: 1 unit is 1 mm"]  # whatever the wing file's units
+        assert len(lines) == sum(len(Label(text, 0.0, 0.0).strokes()) for text in texts)
         assert not document.modelspace().query("TEXT MTEXT")
 
     def test_it_says_what_it_is(self, document, drawing):

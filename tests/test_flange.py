@@ -19,8 +19,8 @@ from wings import loft, slab
 
 from wrywing.export import dxf
 from wrywing.geom import flange, seat, web
-from wrywing.geom.airfoil import naca
 from wrywing.geom.drawing import Role
+from wrywing.geom.naca import naca
 from wrywing.shop import job as jobs
 from wrywing.shop import masses as weights
 from wrywing.shop import verdict as choice
@@ -58,7 +58,7 @@ def laid(wing, side="top", face="rear", *, legs=(20.0, 20.0), bar=90.0, ends=(0.
     corner = tuple(float(at) for at in web.end_places(wing, plane, n(0.0), side))
     shape = flange.Shape(np.radians(bar), 12.0, seat.Along(np.array([0.0, plane.length]), np.array(legs)), 0.6, 1.5)
     given_ = {"n": n, "ends": corner, "shape": shape}
-    return flange.flange(wing, plane, side, face, **given_), plane, given_
+    return flange.lay(wing, plane, side, face, **given_), plane, given_
 
 
 # ---------------------------------------------------------------------------- the bend
@@ -135,6 +135,67 @@ def test_the_fold_follows_the_edge_and_its_camber_is_the_edges(tmp_path):
         bow = (h - chord) * lean
         assert abs(one.camber[0]) > 0.2
         assert one.camber[0] == pytest.approx(bow[np.abs(bow).argmax()], abs=0.05)
+
+
+# ---------------------------------------------------------------------------- where the skin breaks
+
+RISES = [8.0, -15.0]
+
+
+def laid_over_a_break(degrees, side, face, *, sweep=0.0, n=None):
+    """Along two flat slabs, 40 mm thick, that meet at y = 507 mm, the outer one rising by `degrees`."""
+    y = np.array([0.0, 507.0, 907.0])
+    z = np.array([0.0, 0.0, 400.0 * np.tan(np.radians(degrees))])
+    wing = loft(slab(), y, chord=400.0, le=y * sweep, z=z, skin=1.2)
+    made, plane, given_ = laid(wing, side, face, ends=(300.0, 700.0))
+    if n is not None:
+        made = flange.lay(wing, plane, side, face, **(given_ | {"n": n}))
+    return made, plane, np.column_stack([y, z])
+
+
+@pytest.mark.parametrize("degrees", RISES)
+@pytest.mark.parametrize(("side", "face"), [("top", "rear"), ("bottom", "front")])
+def test_fold_and_legs_have_a_corner_where_the_skin_breaks(degrees, side, face):
+    # Plane geometry, parallels by shapely: the web is square to the ribs, so that it cuts both slabs square.
+    made, plane, middle = laid_over_a_break(degrees, side, face)
+    up = 1.0 if side == "top" else -1.0
+    line = shapely.LineString(middle + np.array([0.0, 20.0 * up]))
+    inside = np.array(shapely.offset_curve(line, -1.2 * up, join_style="mitre").coords)
+    corner = (inside[1] - plane.origin[1:]) @ plane.s[1:]
+    i = int(np.abs(made.places - corner).argmin())
+    assert made.places[i] == pytest.approx(corner, abs=1e-6)
+    fold = made.fold[[0, i, -1]]
+    assert made.fold[:, 1] == pytest.approx(np.interp(made.fold[:, 0], *fold.T), abs=1e-6)
+    assert np.diff(np.degrees(np.arctan2(*np.diff(fold, axis=0).T[::-1]))) == pytest.approx(degrees)
+    ring = shapely.Polygon(made.outline).exterior
+    for leg, out in ((20.0, up), (12.0, -up)):  # the bar is square: set back by R + T, a quarter turn at R + T / 2
+        trim = shapely.offset_curve(shapely.LineString(fold), out * (leg - 2.1 + np.pi / 4 * 1.8), join_style="mitre")
+        places = [trim.interpolate(share, normalized=True) for share in np.linspace(0.1, 0.9, 81)]
+        assert max(ring.distance(place) for place in places) < 1e-6
+
+
+@pytest.mark.parametrize("degrees", RISES)
+def test_the_angle_jumps_where_the_skin_breaks_under_a_swept_web(degrees):
+    # Plane geometry: a flange asks for the angle between the normals of slab and face.
+    made, plane, middle = laid_over_a_break(degrees, "top", "rear", sweep=0.4)
+    normals = [np.array([0.0, -z, y]) / np.hypot(y, z) for y, z in np.diff(middle, axis=0)]
+    ridge = np.array([0.0, 507.0, 20.0]) - plane.origin - 3.0 * plane.n
+    corner = np.linalg.solve([[v @ plane.s, v @ plane.h] for v in normals], [v @ ridge - 1.2 for v in normals])[0]
+    assert np.abs(made.places - corner).min() < 1e-6
+    asked = [np.degrees(np.arccos(v @ plane.n)) for v in normals]
+    assert np.degrees(made.at((corner - 0.01, corner + 0.01))) == pytest.approx(asked, abs=1e-6)
+    assert abs(np.diff(asked)) > 2.0
+
+
+@pytest.mark.parametrize("side", ["top", "bottom"])
+@pytest.mark.parametrize("degrees", RISES)
+def test_a_pattern_hollow_at_a_break_does_not_cross_itself(side, degrees):
+    # shapely's validity; where a pad begins half a millimetre from the break, the legs' lines would turn back.
+    plain = laid_over_a_break(degrees, side, "rear")[0]
+    corner = plain.places[1 + np.abs(np.diff(plain.fold[:, 1], 2)).argmax()]
+    for s in (corner - 0.5, corner + 0.5):
+        made, *_ = laid_over_a_break(degrees, side, "rear", n=seat.Along(np.array([s, s + 60.0]), np.array([6.0, 3.0])))
+        assert shapely.Polygon(made.outline).is_valid
 
 
 # ---------------------------------------------------------------------------- legs and trim lines

@@ -150,9 +150,12 @@ def test_stated_places_and_a_face_are_taken(tmp_path):
 def test_square_edges_need_none_unless_asked_for(tmp_path):
     square = ('edge      = "full bevel"', 'edge      = "square"')
     assert bevel_gauges(variant(tmp_path, "highmoor", square)) == []
-    asked = variant(tmp_path, "highmoor", square, more="\n[gauges]\nplaces = [20]\n")
-    for card in cards(asked):
-        assert np.degrees(gauge.corner_angle(card.cut, "rear", card.s)) == pytest.approx(90.0, abs=1e-6)
+    asked = variant(tmp_path, "highmoor", square, more="\n[gauges]\nplaces = [20, 60]\n")
+    (card,) = cards(asked)  # every other would be the same
+    assert np.degrees(gauge.corner_angle(card.cut, "rear", card.s)) == pytest.approx(90.0, abs=1e-6)
+    (drawing,) = bevel_gauges(asked, "right")
+    said = " ".join(label.text for label in drawing.labels)
+    assert all(words in said for words in ("TOP and BOTTOM", "anywhere along both", "at s 20, 60 and wherever"))
 
 
 def test_a_place_beyond_the_web_is_refused_in_one_line(tmp_path):

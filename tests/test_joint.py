@@ -16,6 +16,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from scipy.integrate import quad
 from scipy.interpolate import CubicSpline
+from wings import loft, section, slab
 
 from wrywing.export import dxf
 from wrywing.geom import joint, seat, web
@@ -194,14 +195,61 @@ def test_an_upright_pin_fills_the_height_and_one_along_lies_midway(tmp_path, end
 
 def test_a_pin_just_fits_or_not():
     # Plane geometry: a cylinder of radius r about the axis of a slit, 2 a high, fits while r <= a.
-    from wings import loft, slab
-
     wing = loft(slab(0.05), [0.0, 400.0], chord=200.0, skin=1.0)
     plane = web.plane(wing, ends=(0.0, 400.0), line=(0.3, 0.3))
     depth = {side: seat.constant(0.5) for side in web.SIDES}
     for across, room in ((16.0, 0.5), (18.0, -0.5)):
         found = joint.fit(wing, plane, joint.Tube((0.0, 0.0), (80.0, 0.0), 0.0, across), depth)
         assert found.room == pytest.approx({"top": room, "bottom": room})
+
+
+def room(wing, tube, line=(0.3, 0.3), ends=(0.0, 400.0)):
+    """Room over and under a tube in a web along a chord fraction, no bond line."""
+    plane = web.plane(wing, ends=ends, line=line)
+    return joint.fit(wing, plane, tube, {side: seat.constant(0.0) for side in web.SIDES}).room
+
+
+@pytest.mark.parametrize("tilt", [3.7, 7.5, 15.0, 22.5])
+def test_room_is_where_tube_and_seat_are_parallel(tilt):
+    # Plane geometry: a line tilted by a clears a circle of radius r under it by H - r / cos a along the vertical. The
+    # rim of an upright tube clears a seat tilted by a, however the web stands to it, by H - r tan a.
+    wing = loft(slab(0.1), [0.0, 400.0], chord=200.0, twist=tilt, skin=1e-9, axis=0.3)
+    high = 20.0 / np.cos(np.radians(tilt))
+    along = room(wing, joint.Tube((10.0, 0.0), (90.0, 0.0), 0.0, 18.0))
+    upright = room(wing, joint.Tube((50.0, -2.0), (50.0, 2.0), 0.0, 18.0))
+    for side in web.SIDES:
+        assert along[side] == pytest.approx(high - 9.0 / np.cos(np.radians(tilt)), abs=5e-4)
+        assert upright[side] == pytest.approx(high - 2.0 - 9.0 * np.tan(np.radians(tilt)), abs=5e-4)
+
+
+@pytest.mark.parametrize("sweep", [0.0, 0.3])
+def test_room_over_a_tube_past_a_break_of_the_skin(sweep):
+    # Plane geometry: the higher of two planes over a circle, in the plane of the web.
+    y = np.array([0.0, 43.0, 400.0])
+    wing = loft(slab(0.1), y, chord=200.0, le=y * sweep, z=[0.0, 0.0, 357.0 * np.tan(np.radians(10.0))], skin=1e-9)
+    plane = web.plane(wing, ends=(0.0, 400.0), line=(0.3, 0.3))
+    tube = joint.Tube((10.0, 5.0), (90.0, 5.0), 0.0, 18.0)
+    turn = np.linspace(-np.pi / 2, np.pi / 2, 721)
+    s = np.linspace(10.0, 90.0, 1601)[:, None]
+    heights = []
+    for normal in (np.array([0.0, 0.0, 1.0]), np.array([0.0, -np.sin(np.radians(10.0)), np.cos(np.radians(10.0))])):
+        ridge = np.array([0.0, 43.0, 20.0]) - plane.origin
+        heights.append(
+            (normal @ ridge - s * (normal @ plane.s) - 9.0 * np.sin(turn) * (normal @ plane.n)) / (normal @ plane.h)
+        )
+    free = np.maximum(*heights) - 5.0 - 9.0 * np.cos(turn)
+    assert room(wing, tube)["top"] == pytest.approx(free.min(), abs=2e-3)
+
+
+def test_a_skin_that_bulges_inwards_is_met_between_axis_and_rim():
+    # Closed form: the lower side is a parabola over the chord, and highest at the station where the wing bends down.
+    def lower(t):
+        return np.where(t > 0.0, 0.1, -0.06 - 4.0 * (t * t - 0.3) ** 2)
+
+    hollow = section(lower, lambda t: np.where(t > 0.0, 0.0, -16.0 * t * (t * t - 0.3)))
+    wing = loft(hollow, [0.0, 200.0, 400.0], chord=200.0, z=[0.0, 10.0, 0.0], skin=1e-9)
+    found = room(wing, joint.Tube((200.0, 0.0), (200.0, 10.0), 0.0, 18.0))
+    assert found == pytest.approx({"top": 20.0 - 9.0 * 10.0 / 200.0, "bottom": 2.0}, abs=1e-3)
 
 
 # ---------------------------------------------------------------------------- what is refused
@@ -217,7 +265,7 @@ def without(key):
         (STATED.replace("taper = 140", "taper = 3000"), "joint.taper", ("90", "3000 of taper", "3090 mm")),
         (STATED.replace("length = 90", "length = 1"), "joint.length", ("got 1 mm",)),
         (STATED.replace("pin = 7", "pin = 2"), "web.thickness", ("5 mm", "got 6 mm")),
-        (STATED.replace("pin = 7", "pin = 70"), "joint.pin", ("73 mm across", "out of the bottom seat", "apart")),
+        (STATED.replace("pin = 7", "pin = 70"), "joint.pin", ("73 mm across", "out of the top seat", "apart")),
         (STATED + "height = 26\n", "joint.height", ("10 mm across", "out of the top seat at s = 90 mm")),
         (STATED + 'pin_axis = "upright"\npin_at = 88\n', "joint.pin_at", ("5 to 85 from the end", "got 88 mm")),
         (STATED + 'pin_axis = "upright"\npin_length = 80\n', "joint.pin_length", ("80 mm long", "seats are")),

@@ -241,8 +241,8 @@ def test_what_finds_no_room_on_a_piece_stands_under_its_sheet_with_its_name(wing
     laid = nestings(job)
     beside = {text for piece in laid[0].pieces for text in piece.beside}
     assert beside
-    said = {label.text for drawing in stock_sheets(job, laid, HANDS) for label in drawing.labels}
-    assert beside <= said
+    said = " ".join(label.text for drawing in stock_sheets(job, laid, HANDS) for label in drawing.labels)
+    assert all(text in said for text in beside)
     assert all(text.startswith("WEB ") for text in beside)
 
 
@@ -251,7 +251,7 @@ def test_no_page_is_printed_for_a_sheets_border(wing):
     drawing = contours.clean(stock_sheets(job, nestings(job), HANDS)[0])
     pages = pdf.paged(drawing, pdf.Print(PAPERS["a4"]))[1]
     whole = replace(drawing, strokes=tuple(replace(s, frame=False) for s in drawing.strokes))
-    assert pages == 13  # two rows of six tiles hold the pieces, one more the title
+    assert pages == 5  # one row of tiles holds the pieces, the arrow along the grain, and the title
     assert pages < pdf.paged(whole, pdf.Print(PAPERS["a4"]))[1] - 8
 
 
@@ -278,7 +278,7 @@ def test_without_the_table_nothing_is_laid_out(wing):
         (("scarf = 8", "scarf = 40"), r"cutting\.scarf: wanted a place for a scarf, 240 mm long, between s = "),
         (("scarf = 8", "scarf = 39"), r"cutting\.scarf: .* 39 times the sheet's 6 mm, and needed as the web is 143"),
         (("scarf = 8", "scarf = 1"), r"cutting\.scarf: wanted a number from 2 to 40, got 1"),
-        (("PVC foam 80", "pvc fom 80"), r"cutting\.sheets\[1\]\.material: wanted a known foam, got 'pvc fom 80'"),
+        (("PVC foam 80", "pvc fom 80"), r"cutting\.sheets\[1\]\.material: wanted a known foam or wood, got 'pvc"),
         (("scarf = 8", "turn = 1"), r"cutting\.turn: wanted true or false"),
         (("scarf = 8", 'allowance = "-5 %"'), r"cutting\.allowance: wanted a fraction from 0 to 3"),
         (("scarf = 8", "ribs = 3"), r"cutting\.ribs: wanted what ribs are cut from"),

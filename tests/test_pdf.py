@@ -4,7 +4,7 @@ import io
 import re
 from collections import deque
 from dataclasses import replace
-from itertools import combinations
+from itertools import combinations, pairwise
 
 import numpy as np
 import pdfplumber
@@ -18,6 +18,7 @@ from wrywing.export import pdf, tiles
 from wrywing.export.pdf import Print
 from wrywing.geom.drawing import Drawing, Hole, Label, Role, Stroke
 from wrywing.shop import stock
+from wrywing.shop.layout import Layout
 
 MM = 25.4 / 72.0  # published: ISO 32000-1, 8.3.2.3, user space unit
 GLUE = 10.0
@@ -354,7 +355,7 @@ LINES = st.lists(
 @given(LINES)
 def test_whatever_is_drawn_shows_somewhere(ends):
     shapes = np.array([shapely.LineString([(x, y), (x + dx, y + dy)]) for x, y, dx, dy in ends], dtype=object)
-    layout = tiles.plan(shapes, A4, margins=(15.0, 30.0, 15.0, 15.0), least=(50.0, 50.0))
+    layout, *_ = tiles.plan(shapes, A4, margins=(15.0, 30.0, 15.0, 15.0), least=(50.0, 50.0))
     shown = []
     for tile in layout.tiles:
         shown += [shapely.LineString(p) for _, parts in tiles.clip(shapes, tile.window) for p in parts]
@@ -366,3 +367,80 @@ def test_lettering_can_be_searched_for_with_its_accents():
     lettered = replace(card(), labels=(Label("Flügel, François", 5.0, 5.0, 4.0),))
     with pdfplumber.open(io.BytesIO(pdf.render(lettered, Print(A4)))) as file:
         assert any("Flügel, François" in page.extract_text() for page in file.pages)
+
+
+def lettered(drawing, texts, at, wide=150.0):
+    """A drawing with title and notes one below the other."""
+    layout = Layout()
+    layout.write_notes(["Möwe survey wing", drawing.title], texts, *at, wide=wide)
+    return replace(drawing, labels=(*drawing.labels, *layout.labels))
+
+
+NOTES = [
+    f"Note {i}: pins through the 3 mm holes register it with the other face, edges cut as marked" for i in range(9)
+]
+
+
+@pytest.mark.parametrize(
+    ("bare", "how"),
+    [
+        (blank(), Print(A4)),
+        (blank(), Print(ROLL)),
+        (core(), Print(LETTER, "in", (0.96, 1.01))),
+        (card(), Print(A4)),
+        (UPRIGHT, Print(A4)),
+    ],
+    ids=["blank on a4", "blank on a roll", "core from a printer that errs", "card", "rib"],
+)
+def test_notes_go_on_one_page_that_is_there_anyway_clear_of_seams_and_marks(bare, how):
+    pages, plain = printed(lettered(bare, NOTES, (0.0, -60.0)), how), printed(bare, how)
+    assert len(pages) == len(plain)
+    (page,) = (page for page in pages if "Note 0" in page.text)
+    words = page.page.search(r"Note \d: [^\n]+")
+    assert len(words) == len(NOTES)
+    x0, y0, x1, y1 = page.window()
+    seams = page.seams()
+    room = shapely.box(
+        x0 + GLUE * (seams["left"] is not None),
+        y0 + GLUE * (seams["bottom"] is not None),
+        x1 - GLUE * (seams["right"] is not None),
+        y1 - GLUE * (seams["top"] is not None),
+    )
+    for word in words:
+        box = page.box(word)
+        assert room.contains(box)
+        assert box.distance(page.outline()) > 0.5
+
+
+def test_notes_without_room_have_a_page_of_their_own_that_is_joined_to_none():
+    lines = [np.array([[x, 0.0], [x, 400.0]]) for x in np.arange(0.0, 401.0, 20.0)]
+    net = Drawing("net", "Net", "3fa9c1d2", "both", tuple(Stroke(line, Role.CUT_OUTSIDE) for line in lines))
+    pages, plain = printed(lettered(net, 4 * NOTES, (0.0, -10.0)), Print(A4)), printed(net, Print(A4))
+    shape, apart = pages[: len(plain)], pages[len(plain) :]
+    assert sum(page.text.count("Note 0:") for page in apart) == 4
+    assert not any("Note" in page.text for page in shape)
+    assert all(page.crosses() == [] and "glue" not in page.text for page in apart)
+    assert all(f"page {i} of {len(pages)}" in page.text for i, page in enumerate(pages, start=1))
+
+
+@settings(max_examples=30, deadline=None)
+@given(st.lists(st.tuples(st.floats(0.0, 2050.0), st.floats(5.0, 45.0)), min_size=1, max_size=30), st.floats(900, 2300))
+def test_seams_cut_no_more_lettering_than_they_must(texts, long):
+    shapes = np.array([shapely.LineString([(0.0, 0.0), (long, 0.0)])], dtype=object)
+    boxes = [(x, 5.0, x + wide, 8.0) for x, wide in texts if x + wide < long]
+    layout, *_ = tiles.plan(shapes, A4, margins=(15.0, 30.0, 15.0, 15.0), least=(150.0, 100.0), texts=boxes)
+    tiles_ = sorted(layout.tiles, key=lambda tile: tile.column)
+    assert len(tiles_) == int(np.ceil((long + 2.0 - GLUE) / (297.0 - 30.0 - GLUE)))  # no sheet more than without
+    for before, after in pairwise(tiles_):
+        assert before.window[2] - after.window[0] == pytest.approx(GLUE, abs=0.002)
+        assert 150.0 <= after.window[2] - after.window[0] <= 267.001
+    assert tiles_[0].window[0] <= 0.0
+    assert tiles_[-1].window[2] >= long
+
+    def cut(places, near=0.0):
+        return sum(x1 - x0 for x0, _, x1, _ in boxes if any(x0 - near < s < x1 + near for s in places))
+
+    seams = [tile.window[0] for tile in tiles_[1:]]
+    step, play = 257.0, len(tiles_) * 257.0 + GLUE - long - 2.0
+    for share in np.linspace(0.0, 1.0, 21):  # any grid of equal sheets; seams are placed to the millimetre
+        assert cut(seams) <= cut([-1.0 - share * play + k * step for k in range(1, len(tiles_))], near=1.0) + 1e-9

@@ -7,13 +7,15 @@ import io
 import json
 import re
 import sys
+from pathlib import Path
 
 import numpy as np
 import pdfplumber
 import pytest
+import shapely
 from hypothesis import HealthCheck, given, settings
 from PIL import Image
-from test_cli import GOOD
+from wings import GOOD
 
 pytest.importorskip("resource")  # POSIX
 import browser
@@ -23,7 +25,7 @@ from richest import richest
 
 import wrywing
 from wrywing import cli
-from wrywing.export import plot, report
+from wrywing.export import figures_edge, figures_load, plot, report
 from wrywing.shop.steps import steps
 
 INCH, OUNCE = 25.4, 28.349523125
@@ -309,6 +311,29 @@ def test_contrast_of_text(page):
 def test_lines_are_told_apart_without_colour():
     assert len({str(dash) for _, dash in plot.LINES}) == len(plot.LINES)
     assert plot.EDGES["top"][1] != plot.EDGES["bottom"][1]
+
+
+SALTPAN = Path(__file__).parent.parent / "examples" / "saltpan.toml"
+HEAVY = {"load.mass": "1200 kg", "caps.most": 60}  # strips reach nearly to the tip, where the layers needed are few
+
+
+@pytest.mark.parametrize("name", ["strips", "gap"])
+def test_no_line_runs_through_the_words_of_a_figure(wing, name):
+    made = {"strips": figures_load.strips, "gap": figures_edge.fill}[name]
+    changed = wrywing.load(wing, HEAVY) if name == "strips" else wrywing.load(SALTPAN, {"limits.max_gap": "0.12 mm"})
+    with plot.style():
+        figure = made(changed)
+        plot.FigureCanvasSVG(figure)
+        plot.settle(figure)
+        for ax in figure.axes:
+            words = [text for text in ax.texts if text.get_text()]
+            boxes = [shapely.box(*text.get_window_extent().extents) for text in words]
+            assert boxes
+            for line in ax.lines:
+                path = shapely.LineString(line.get_transform().transform(np.column_stack(line.get_data())))
+                drawn = path.intersection(shapely.box(*ax.bbox.extents)) if line.get_clip_on() else path
+                crossed = [text.get_text() for text, box in zip(words, boxes, strict=True) if box.intersects(drawn)]
+                assert not crossed
 
 
 @seen

@@ -8,10 +8,14 @@ from pathlib import Path
 import numpy as np
 import pytest
 import shapely
+from richest import richest
 
+from wrywing.export import room
 from wrywing.geom import lettering, web
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
+from wrywing.shop import sheets
+from wrywing.shop.sheets_stock import stock_sheets
 from wrywing.shop.sheets_web import web_blank
 from wrywing.shop.wording import degrees
 
@@ -219,3 +223,12 @@ def test_the_joints_tube_and_the_strips_turns_are_named():
         for side in web.SIDES:
             shortest = min((layer for layer in job.layers if layer.side == side), key=lambda layer: layer.length)
             assert any(t.startswith(f"layer {shortest.number} ") and t.endswith("laid first") for t in texts)
+
+
+def test_title_and_notes_of_every_drawing_can_be_set_elsewhere_on_paper(tmp_path):
+    job = jobs.load(richest(tmp_path))
+    for drawing in [*sheets.drawings(job, "left"), *stock_sheets(job, job.nestings, ["right", "left"])]:
+        texts = [text for text, _ in room.paragraphs(drawing.labels)]
+        assert texts[0] == job.record.name
+        assert [*drawing.notes] == [text for text in texts if text in drawing.notes]
+        assert f"Wing file revision {job.stamp}" in texts[-1]

@@ -139,6 +139,27 @@ def test_a_steady_bevel_leaves_a_triangle_prism():
     assert solid.filler(plane, seat.cut(survey, "top", "full bevel")) is None
 
 
+@pytest.mark.parametrize("sweep", [0.0, 0.4])
+@pytest.mark.parametrize("rise", [8.0, -15.0])
+def test_a_strip_bends_where_the_skin_breaks(sweep, rise):
+    # Plane geometry: every facet of its two faces lies in one of the planes under two flat slabs that meet askew.
+    y = np.array([0.0, 507.0, 907.0])
+    z = np.array([0.0, 0.0, 400.0 * np.tan(np.radians(rise))])
+    wing = loft(slab(0.15), y, chord=400.0, le=y * sweep, z=z, skin=1.2)
+    plane = web.plane(wing, ends=(300.0, 700.0), line=(0.3, 0.3), cant=np.radians(12.0))
+    normals = [np.array([0.0, -b, a]) / np.hypot(a, b) for a, b in zip(np.diff(y), np.diff(z), strict=True)]
+    depths = seat.constant(0.5), seat.constant(1.1)
+    for side, up in (("top", 1.0), ("bottom", -1.0)):
+        made = solid.strip(wing, plane, side, width=8.0, outer=depths[0], inner=depths[1])
+        corners = made.points[made.faces]
+        across = np.cross(corners[:, 1] - corners[:, 0], corners[:, 2] - corners[:, 0])
+        face = np.abs(across @ plane.h) > 0.5 * np.linalg.norm(across, axis=1)
+        under = 1.2 + np.where(across[face] @ plane.h * up > 0.0, 0.5, 1.1)
+        middles = corners[face].mean(axis=1) - [0.0, 507.0, 60.0 * up]
+        off = np.stack([middles @ v * up + under for v in normals])
+        assert np.abs(off).min(axis=0).max() < 0.01
+
+
 def test_corners_stand_where_a_cad_kernel_puts_the_skin(tmp_path):
     # Open CASCADE on the published wing (NASA/TP-2016-219072); no bond line, so a full bevel ends on the skin.
     pytest.importorskip("OCP")

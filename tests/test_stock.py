@@ -70,7 +70,9 @@ def test_papers(name, size):
 
 
 def test_unknown_names_bring_the_nearest():
-    with pytest.raises(ValueError, match=r"a known foam, got 'pvc fom 81' \(nearest: \"pvc foam 80\""):
+    with pytest.raises(
+        ValueError, match=r"a known foam or wood, got 'pvc fom 81' \(nearest: .pvc foam 80.*`wrywing stock foam` l"
+    ):
         Stock().find("pvc fom 81", Foam)
     with pytest.raises(ValueError, match="got 'microballoon paste', which is a filler"):
         Stock().find("microballoon paste", Adhesive)
@@ -95,6 +97,9 @@ def test_new_materials():
     polypropylene = Stock().with_material("grey foam", {**grey, "family": "expanded polypropylene", "source": "scales"})
     assert polypropylene.find("grey foam", Foam).hot_wire
     assert polypropylene.find("grey foam", Foam).source == "scales"
+    for kind in ({"kind": "wood"}, {"kind": "foam", "family": "wood"}):
+        ply = Stock().with_material("birch plywood", {**kind, "density": 680.0}).find("birch plywood", Foam)
+        assert (ply.family, ply.hot_wire, stock.kind_of(ply)) == ("wood", False, "wood")
 
 
 @pytest.mark.parametrize(
@@ -107,6 +112,7 @@ def test_new_materials():
         ("pvc foam 80", {"hot_wire": True}, "hot_wire", "poisonous gas"),
         ("pvc foam 80", {"family": "extruded polystyrene"}, "family", "cross-linked PVC"),
         ("pvc foam 80", {"kind": "filler"}, "kind", "'foam'"),
+        ("birch plywood", {"kind": "wood", "density": 680.0, "family": "PET"}, "family", "for a wood, got 'PET'"),
         ("pvc foam 80", {"fibre_density": 2000.0}, "fibre_density", "wanted none for a foam"),
         ("shop mix", {"kind": "filler", "density": 700.0, "sheets": (3.0,)}, "sheets", "wanted none for a filler"),
     ],

@@ -12,8 +12,8 @@ from hypothesis import strategies as st
 from wings import Bent, ellipse, loft, slab, upside_down
 
 from wrywing.geom import web
-from wrywing.geom.airfoil import naca
 from wrywing.geom.loft import Loft
+from wrywing.geom.naca import naca
 from wrywing.geom.washout import straight
 
 S = np.linspace(40.0, 950.0, 12)

@@ -9,7 +9,7 @@ from pathlib import Path
 import pytest
 from pydantic import ValidationError
 
-from wrywing.geom import airfoil
+from wrywing.geom import coordinates, naca
 from wrywing.shop import wingfile
 from wrywing.shop.stock import Cloth, Foam
 from wrywing.shop.values import Cant
@@ -199,7 +199,7 @@ def test_stamp_follows_every_byte(folder):
 
 def test_a_section_is_read_once(folder, monkeypatch):
     calls = []
-    monkeypatch.setattr(airfoil, "read", lambda data, name: calls.append(name) or airfoil.naca("0012"))
+    monkeypatch.setattr(coordinates, "read", lambda data, name: calls.append(name) or naca.naca("0012"))
     one, two = loaded(folder, ('"naca 2412"', '"sections/outer.dat"')).sections
     assert one is two
     assert calls == ["sections/outer.dat"]
@@ -308,7 +308,7 @@ BAD: list[tuple[tuple[str, str], str, str]] = [
     ((OUTER, '"\\u0000"'), OUTER_AIRFOIL, "a line of text"),
     ((OUTER, f'"{"x" * 999}"'), OUTER_AIRFOIL, "1 to 120 characters"),
     # materials and limits
-    (("pvc foam 80", "pvc foam 81"), "web.foam", 'a known foam, got \'pvc foam 81\' (nearest: "pvc foam 80"'),
+    (("pvc foam 80", "pvc foam 81"), "web.foam", 'a known foam or wood, got \'pvc foam 81\' (nearest: "pvc foam 80"'),
     (("pvc foam 80", "microballoon paste 2"), "web.foam", "a known foam"),
     (("pvc foam 80", "glass cloth 105"), "web.foam", "got 'glass cloth 105', which is a cloth"),
     (("microballoon paste", "micro"), "web.filler", "a known filler, got 'micro'"),
@@ -316,7 +316,7 @@ BAD: list[tuple[tuple[str, str], str, str]] = [
     (material('[materials."pvc foam 80"]\ndensity = -80'), 'materials."pvc foam 80".density', "a density from 5 to"),
     (material('[materials.goo]\nkind = "filler"\ndensity = 0.6'), "materials.goo.density", "from 5 to 25000 kg/m^3"),
     (material("[materials.goo]\ndensity = 600"), "materials.goo.kind", "is missing"),
-    (material('[materials.goo]\nkind = "gas"'), "materials.goo.kind", '"foam", "filler", "adhesive", "cloth"'),
+    (material('[materials.goo]\nkind = "gas"'), "materials.goo.kind", '"foam", "wood", "filler", "adhesive", "cloth"'),
     (material('[materials.goo]\nkind = "foam"'), "materials.goo.density", "is missing"),
     (material('[materials.goo]\nfamily = "cheese"'), "materials.goo.family", 'one of "extruded polystyrene"'),
     (material('[materials."pvc foam 80"]\nhot_wire = true'), 'materials."pvc foam 80".hot_wire', "poisonous gas"),

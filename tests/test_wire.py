@@ -5,6 +5,8 @@ from __future__ import annotations
 import csv
 import io
 import re
+from dataclasses import replace
+from itertools import cycle, product
 from pathlib import Path
 
 import kernel
@@ -15,7 +17,7 @@ from numpy.testing import assert_allclose
 from wings import loft
 
 from wrywing.export import wire as wire_export
-from wrywing.geom import airfoil, path, profile, template, web, wire
+from wrywing.geom import coordinates, naca, path, profile, template, web, wire
 from wrywing.geom.block import NoPins
 from wrywing.geom.core import NoFoam, Region
 from wrywing.geom.path import BetweenPlanes, Machine, OffTravel
@@ -41,24 +43,28 @@ def region(plane, kind, **more):
 
 
 def reflexed():
-    return airfoil.read((EXAMPLES / "sections" / "highmoor-reflex.dat").read_bytes(), "reflex")
+    return coordinates.read((EXAMPLES / "sections" / "highmoor-reflex.dat").read_bytes(), "reflex")
 
 
-def rolled(board, wire_diameter):
-    """The way of the middle of a wire that rides round a board, or along its straight edge."""
-    if not board.runs[0].straight:
-        return shapely.Polygon(board.outline).buffer(wire_diameter / 2.0, quad_segs=64).exterior
-    edges = zip(board.outline, np.roll(board.outline, -1, axis=0), strict=True)
-    a, b = max(edges, key=lambda edge: abs(edge[1][1] - edge[0][1]))
-    out = np.array([b[1] - a[1], a[0] - b[0]]) / np.hypot(*(b - a))
-    out *= np.sign((a - board.outline.mean(axis=0)) @ out)
-    return shapely.LineString([a + wire_diameter / 2.0 * out, b + wire_diameter / 2.0 * out])
+def swept(places, slope, radius):
+    """What a round wire burns of a rib plane that it crosses aslant: ellipses, and all between one and the next."""
+    turn = np.linspace(0.0, 2.0 * np.pi, 49)[:-1]
+    rim = radius * np.column_stack([np.cos(turn), np.sin(turn)])
+    steep = np.maximum(np.linalg.norm(slope, axis=1), 1e-12)[:, None]
+    along, stretch = slope / steep, np.sqrt(1.0 + steep**2) - 1.0
+    rims = places[:, None] + rim + (stretch * (along @ rim.T))[..., None] * along[:, None]
+    hulls = shapely.convex_hull(shapely.multipoints(np.concatenate([rims[:-1], rims[1:]], axis=1)))
+    return shapely.union_all(hulls).simplify(1e-3)
+
+
+def slope(bay, run):
+    return (run.centre[1] - run.centre[0]) / bay.length
 
 
 def left_over(bay, end):
-    """What a wire that rides round every board of an end leaves of the block, about the pins."""
+    """What the runs leave of a block's end, about the pins."""
     at = bay.ends[end]
-    burnt = [rolled(b, bay.how.wire).buffer(at.kerf / 2.0, quad_segs=64) for b in template.boards(bay, end)]
+    burnt = [swept(run.centre[end], slope(bay, run), at.kerf / 2.0) for run in bay.runs]
     x0, z0, x1, z1 = at.block
     block = shapely.box(x0 - 5.0, z0, x1 + 5.0, z1).difference(shapely.union_all(burnt))
     pins = shapely.Point(at.pins.mean(axis=0))
@@ -76,20 +82,19 @@ def wanted(of, bay, end):
     shape = shapely.Polygon(inside.at(t * reg.limit))
     if reg.kind == "whole":
         return shape
-    low, high = profile.turned(reg.face_at(at.y), bay.turn)
-    away = high - low
-    side = (-1.0 if reg.kind == "nose" else 1.0) * np.array([away[1], -away[0]])
-    corners = [low - 9 * away, high + 9 * away, high + 9 * away + 9 * side, low - 9 * away + 9 * side]
-    return shape.intersection(shapely.Polygon(corners))
+    face = profile.turned(reg.face_at(at.y), bay.turn)
+    beyond = face[::-1] + np.array([-1e3 if reg.kind == "nose" else 1e3, 0.0])
+    return shape.intersection(shapely.Polygon(np.concatenate([face, beyond])))
 
 
-SECTIONS = {"thick nose": airfoil.naca("2415"), "thin tail": airfoil.naca("0009"), "reflexed": reflexed()}
+SECTIONS = {"thick nose": naca.naca("2415"), "thin tail": naca.naca("0009"), "reflexed": reflexed()}
 
 
-@pytest.mark.parametrize("passes", ["one", "separate"])
-@pytest.mark.parametrize("kind", ["nose", "aft", "whole"])
-@pytest.mark.parametrize("section", SECTIONS)
-def test_a_wire_round_the_boards_leaves_the_core(section, kind, passes):
+@pytest.mark.parametrize(
+    ("section", "kind", "passes"),
+    [(*case, passes) for case, passes in zip(product(SECTIONS, ("nose", "aft", "whole")), cycle(("one", "separate")))],
+)
+def test_the_wire_leaves_the_core(section, kind, passes):
     of, plane = tapered(SECTIONS[section])
     bay = wire.bay(of, region(plane, kind, least=1.6), (60.0, 410.0), How(0.6, (1.1, 1.5), passes))
     for end in (0, 1):
@@ -112,14 +117,74 @@ def test_a_tail_cut_off_short_gets_a_face_of_its_own():
         assert_allclose(at.limits.stop, np.sqrt(0.75))
 
 
-def test_boards_stand_off_by_half_the_kerf_less_the_wires_radius():
+def distances(points, wires):
+    """(k,) how near straight wires (m, 2, 3), through their ends, come to points (k, 3)."""
+    along = np.diff(wires, axis=1)[:, 0]
+    along /= np.linalg.norm(along, axis=1)[:, None]
+    out = points[:, None] - wires[:, 0]
+    way = np.einsum("kmi,mi->km", out, along)
+    return np.sqrt(np.min(np.einsum("kmi,kmi->km", out, out) - way**2, axis=1))
+
+
+def finer(line, times):
+    """A line (k, n) with so many steps to each of its own."""
+    at = np.arange(len(line))
+    fine = np.linspace(0, len(line) - 1, times * (len(line) - 1) + 1)
+    return np.stack([np.interp(fine, at, v) for v in line.T], axis=-1)
+
+
+def wires(bay, run, times=1):
+    """(m, 2, 3) the wire's middle all along a run, from end to end of the bay."""
+    ends = [np.insert(finer(run.centre[end], times), 1, at.y, axis=1) for end, at in enumerate(bay.ends)]
+    return np.stack(ends, axis=1)
+
+
+@pytest.mark.parametrize("kind", ["nose", "aft"])
+def test_the_wire_stands_half_the_kerf_off_the_foam_in_space(kind):
+    # 50 degrees of sweep at the nose; the distance of a point from a straight line (any book of vector algebra)
+    of = loft(SECTIONS["thick nose"], [0, 500], chord=[240, 150], le=[0, 600], z=[0, 25], twist=[0, 5], skin=1.0)
+    plane = web.plane(of, ends=(0.0, 500.0), line=(0.32, 0.30))
+    bay = wire.bay(of, region(plane, kind, least=2.0), (60.0, 410.0), How(0.6, (1.1, 1.9)))
+    first, last = bay.ends
+    ranges = [np.sort([at.limits.start, at.limits.stop], axis=0) for at in bay.ends]
+    (low, high), t = (np.max([r[0] for r in ranges], axis=0), np.min([r[1] for r in ranges], axis=0)), first.profile.t
+    for run in bay.runs[1:]:
+        side = {"upper": t > 0.0, "lower": t < 0.0, "skins": np.isfinite(t)}[run.name]
+        limits = np.where(t[:, None] < 0.0, [low[0], high[0]], [low[1], high[1]]).T
+        here = side & (np.abs(t) >= limits[0]) & (np.abs(t) <= limits[1])
+        ends = [np.insert(at.profile.points[here], 1, at.y, axis=1) for at in bay.ends]
+        for share in (0.0, 0.5, 1.0):
+            foam = ends[0] + share * (ends[1] - ends[0])
+            half = (first.kerf + share * (last.kerf - first.kerf)) / 2.0
+            assert_allclose(distances(foam, wires(bay, run, 8)), half, atol=0.005)
+
+
+@pytest.mark.parametrize("kind", ["nose", "aft"])
+def test_the_wire_rides_on_the_boards_of_both_ends(kind):
     of, plane = tapered(SECTIONS["thick nose"])
-    bay = wire.bay(of, region(plane, "nose"), (60.0, 410.0), HOW)
-    for end, kerf in enumerate(HOW.kerf):
-        edge = shapely.LinearRing(template.boards(bay, end)[1].outline)
-        profile_ = bay.ends[end].profile
-        points = profile_.points[np.abs(profile_.t) < 0.5][::7]
-        assert_allclose(shapely.distance(edge, shapely.points(points)), (kerf - 0.6) / 2.0, atol=0.003)
+    bay = wire.bay(of, region(plane, kind, least=2.0), (60.0, 410.0), HOW)
+    for end, at in enumerate(bay.ends):
+        for board in template.boards(bay, end):
+            edge = shapely.segmentize(shapely.LinearRing(board.outline), 0.05)
+            edge = np.insert(shapely.get_coordinates(edge), 1, at.y, axis=1)
+            for run in board.runs:
+                ridden = slice(1, -1) if run.straight else slice(2, -2, 3)
+                for one in wires(bay, run)[ridden]:
+                    assert distances(edge, one[None]).min() == pytest.approx(0.3, abs=0.002)
+
+
+def test_a_swept_wings_boards_are_parallels_in_the_plane_square_to_the_wire():
+    # all wires are parallel: seen along them, kerf and wire are circles
+    sweep = np.arctan(0.8)
+    of = loft(SECTIONS["thick nose"], [0, 500], chord=[200, 200], le=[0, 400], skin=1.0)
+    bay = wire.bay(of, Region("whole", (0.0, 500.0), least=2.0), (60.0, 410.0), How(0.6, (1.6, 1.6)))
+    along = np.array([np.cos(sweep), 1.0])
+    for end, at in enumerate(bay.ends):
+        foam = shapely.Polygon(along * at.profile.points).buffer(0.5, quad_segs=64)
+        (board,) = template.boards(bay, end)
+        ahead = shapely.box(-1e3, -1e3, at.profile.at(0.9)[0] * along[0], 1e3)
+        edges = [shape.intersection(ahead).exterior for shape in (foam, shapely.Polygon(along * board.outline))]
+        assert shapely.hausdorff_distance(*edges, densify=0.02) < 0.005
 
 
 def test_marks_stand_at_equal_chord_fraction():
@@ -133,7 +198,7 @@ def test_marks_stand_at_equal_chord_fraction():
             fractions = []
             for end, at in enumerate(bay.ends):
                 half = bay.how.kerf[end] / 2.0
-                foam = run.centre[end] - half * run.normals[end]
+                foam = run.centre[end] - half * bay.aside(run, end)
                 chord = of.planform(np.array(at.y), np.array(at.y))[0]
                 c, le, z0 = chord
                 back = profile.turned(foam, -bay.turn) - [le + 0.25 * c, z0]
@@ -185,7 +250,7 @@ def test_a_kerf_wider_than_the_tail_is_refused():
 
 
 def test_a_core_too_small_for_pins_is_refused():
-    of = loft(airfoil.naca("0006"), [0, 100], chord=60.0, skin=0.5)
+    of = loft(naca.naca("0006"), [0, 100], chord=60.0, skin=0.5)
     with pytest.raises((NoPins, NoFoam)):
         wire.bay(of, Region("whole", (0.0, 100.0), least=0.3), (0.0, 100.0), How(0.2, (0.3, 0.3), margin=1.0))
 
@@ -223,6 +288,17 @@ def test_moves_through_the_air_clear_the_block(bay):
         places = found.ends[:, end]
         for i in np.flatnonzero(~found.cutting)[1:]:
             assert not shapely.LineString(places[[i - 1, i]]).intersects(block)
+
+
+def test_there_is_no_move_where_both_ends_stand_still(bay):
+    (skins,) = [run for run in bay.runs if not run.straight]
+    twice = np.insert(np.arange(skins.centre.shape[1]), 40, 40)
+    still = replace(skins, centre=skins.centre[:, twice], normals=skins.normals[:, twice], marks=((1, 41),))
+    runs = still, replace(skins, marks=((1, 40),))
+    found, plain = (path.path(replace(bay, runs=(run,)), MACHINE) for run in runs)
+    assert np.all(np.isfinite(found.feed[found.cutting]))
+    assert np.array_equal(found.ends, plain.ends)
+    assert np.array_equal(found.mark, plain.mark)
 
 
 def test_places_out_of_reach_are_refused(bay):
@@ -272,13 +348,15 @@ def test_a_program_read_back_cuts_the_profiles(saltpan, hand):
         assert np.all(axes.max(axis=0) <= np.tile(stated.travel, 2))
         planes = axes.reshape(-1, 2, 2) if hand == "right" else axes.reshape(-1, 2, 2)[:, ::-1]
         cutting = np.array([g == "1" for g, *_ in moves])
+        starts, stops = np.flatnonzero(np.diff(cutting.astype(int))).reshape(-1, 2).T
+        runs = [slice(i, j + 1) for i, j in zip(starts, stops, strict=True)]
         for end, at in enumerate(bay.ends):
             share = (end * bay.length - stated.planes[0]) / (stated.planes[1] - stated.planes[0])
             places = planes[:, 0] + share * (planes[:, 1] - planes[:, 0])
             places += np.array(bay.ends[0].block[:2]) - stated.place
-            cuts = [shapely.LineString(places[[i - 1, i]]) for i in np.flatnonzero(cutting)]
-            burnt = shapely.union_all(cuts).buffer(at.kerf / 2.0, quad_segs=64)
-            left = shapely.box(*at.block).difference(burnt)
+            steep = (planes[:, 1] - planes[:, 0]) / (stated.planes[1] - stated.planes[0])
+            burnt = [swept(places[i], steep[i], at.kerf / 2.0) for i in runs]
+            left = shapely.box(*at.block).difference(shapely.union_all(burnt))
             piece = next(g for g in left.geoms if g.contains(shapely.Point(at.pins.mean(axis=0))))
             tail = 1e9 if bay.region.kind == "nose" else at.profile.at(at.limits.stop[1])[0] - 0.5
             window = shapely.box(-1e4, -1e4, tail, 1e4)

@@ -1,4 +1,4 @@
-"""Wings for the tests, built without a wing file."""
+"""Wings for the tests: lofts built without a wing file, and the plainest wing file there is."""
 
 from __future__ import annotations
 
@@ -9,6 +9,31 @@ import numpy as np
 from wrywing.geom import washout
 from wrywing.geom.airfoil import N, Section
 from wrywing.geom.loft import Loft
+
+GOOD = """
+name = "plain"
+[wing]
+[[wing.stations]]
+y = 0
+chord = 300
+airfoil = "naca 2412"
+washout = 0
+[[wing.stations]]
+y = 1000
+chord = 200
+le = 100
+airfoil = "naca 2412"
+washout = 6
+[skin]
+thickness = 1
+[web]
+ends = [0, 980]
+line = [0.3, 0.3]
+thickness = 6
+edge = "square"
+foam = "pvc foam 80"
+filler = "microballoon paste"
+"""
 
 GRID = np.linspace(-1.0, 1.0, 2 * N + 1)
 
