@@ -20,7 +20,7 @@ from .furniture import LEAST_WINDOW, MARGINS, Furniture
 from .marks import CAP, begin, in_type, open_file
 from .room import Room, own_pages, paragraphs
 from .style import INKS, identity, one_line, title
-from .tiles import Layout, Paper, Shapes, Tile, clip, plan
+from .tiles import Box, Layout, Paper, Shapes, Tile, clip, plan
 
 _ROUND = 20.0  # sides of a quarter of a hole of radius 1 mm, four times as many for 16: within a thousandth of a mm
 
@@ -135,8 +135,7 @@ def _laid_out(
 
 
 def _plan(pen: _PdfPen, how: Print) -> list[Layout]:
-    texts = [label.box().bounds for label in pen.labels]
-    return plan(pen.marks(), how.paper, margins=MARGINS, least=LEAST_WINDOW, printed=how.printed, texts=texts)
+    return plan(pen.marks(), how.paper, margins=MARGINS, least=LEAST_WINDOW, printed=how.printed, texts=pen.boxes)
 
 
 def _on_one(layout: Layout, labels: Sequence[Label]) -> bool:
@@ -154,6 +153,7 @@ class _PdfPen:
         self.roles: list[Role] = []
         self.frames: list[bool] = []
         self.labels: list[Label] = []
+        self.boxes: list[Box] = []
         self.middles: list[tuple[float, float]] = []
 
     def _take(self, shape: shapely.LineString, role: Role, frame: bool) -> None:
@@ -179,8 +179,9 @@ class _PdfPen:
 
     def label(self, label: Label) -> None:
         self.labels.append(label)
-        middle = label.box().centroid
-        self.middles.append((middle.x, middle.y))
+        x0, y0, x1, y1 = box = label.box().bounds
+        self.boxes.append(box)
+        self.middles.append(((x0 + x1) / 2.0, (y0 + y1) / 2.0))
         lines = label.strokes()
         if lines:
             of = np.repeat(np.arange(len(lines)), [len(line) for line in lines])

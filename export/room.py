@@ -23,7 +23,7 @@ Line = tuple[str, float, float, int]  # text, height, how far its foot lies unde
 _CELL = 2.5  # mm
 _WIDTHS = (160.0, 240.0, 145.0, 115.0, 90.0)  # mm that lines are wrapped to, as they are tried
 _SMALL = 0.8  # of their lettering, where it is tight
-_CUTS = 5  # places near the middle where they may be parted
+_CUTS = 3  # places near the middle where they may be parted
 _LAYOUTS = 6  # of those that take as little paper, the first of which are looked through
 _AIR = 2.0  # mm from the edges of what a sheet shows
 
@@ -113,6 +113,8 @@ class Room:
             y, x = slice(low[1], low[1] + rows), slice(low[0], low[0] + columns)
             above, right = slice(y.start + up, y.stop + up), slice(x.start + across, x.stop + across)
             free = sums[above, right] - sums[above, x] - sums[y, right] + sums[y, x] == 0
+            if not free.any():
+                return []
             at = np.argwhere(free) + low[::-1]
             for row, column, tall, wide in found:  # further down, or to the right and no higher
                 at = at[(at[:, 0] + up <= row) | ((at[:, 1] >= column + wide) & (at[:, 0] + up <= row + tall))]

@@ -8,7 +8,7 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import NDArray
 
-from .seat import Aim, Run, Survey, lowest
+from .seat import Aim, Run, Survey, highest_under
 from .web import Side
 
 Array = NDArray[np.float64]
@@ -43,7 +43,7 @@ def best_runs(survey: Survey, side: Side, *, runs: int, angles: Array, aim: Aim 
     out = 1.0 if side == "top" else -1.0
     n, seat = (np.ascontiguousarray(out * v.T)[:, None] for v in survey.bearing(side))
     free = seat - n * np.tan(angles)[:, None, None]
-    cut = lowest(free)
+    cut = highest_under(free)
     total = np.cumsum(_cell_filler(survey, side, np.tan(angles), cut), axis=1)
     total = np.concatenate([np.zeros((len(angles), 1)), total], axis=1)
     reach = None
@@ -86,10 +86,10 @@ def _reach(fits: NDArray[np.bool_]) -> NDArray[np.intp]:
 
 def _enough(fits: NDArray[np.bool_], runs: int) -> bool:
     """Whether so many runs take in all cells; the longest run from each place on is as good as any."""
-    at, reach = 0, np.append(_reach(fits).max(axis=0), fits.shape[1])
+    at, reach = 0, [*_reach(fits).max(axis=0), fits.shape[1]]
     for _ in range(runs):
         at = int(reach[at])
-    return at == fits.shape[1]
+    return at == len(reach) - 1
 
 
 def _costs(total: Array, reach: NDArray[np.intp] | None, first: int) -> Array:

@@ -24,7 +24,6 @@ Array = NDArray[np.float64]
 Treatment = Literal["square", "set bevel", "full bevel"]
 Aim = Literal["filler", "gap"]
 
-_APART = 0.01  # mm between the corners that cells end at
 _CLOSE = 1e-7  # mm
 
 
@@ -80,7 +79,13 @@ CENTRED = constant(0.0)
 
 
 class Bounded:
-    """Reads figures over cells `s` (C, 3), beyond places `first` and `last` (M,) as they are there."""
+    """Reads figures over cells `s` (C, 3), beyond places `first` and `last` (M,) as they are there.
+
+    Attributes
+    ----------
+    s
+        (C, 3, M) the places at which they are read.
+    """
 
     def __init__(self, s: Array, first: Array, last: Array) -> None:
         self.ends = _beyond(s, first, last)
@@ -290,10 +295,10 @@ def cut_height(seat: Array, n: Array, slope: Array, side: Side) -> Array:
         (C, 3) of the line.
     """
     free = (seat - n * slope[..., None]).T
-    return np.asarray(lowest(free).T if side == "top" else -lowest(-free).T)
+    return np.asarray(highest_under(free).T if side == "top" else -highest_under(-free).T)
 
 
-def lowest(free: Array) -> Array:
+def highest_under(free: Array) -> Array:
     """The highest quadratic (..., 3, C) along each cell that stays under all of M quadratics and touches at both ends.
 
     Parameters
@@ -327,6 +332,7 @@ def survey(
     depth: Mapping[Side, Along],
     middle: Along = CENTRED,
     longest: float = 20.0,
+    shortest: float = 0.01,
     nodes: int = 7,
 ) -> Survey:
     """Find skin and seat over a grid of the web.
@@ -339,8 +345,9 @@ def survey(
         For each side what lies between the skin and the edge: bond line, caps, cover; measured along the skin's normal.
     middle
         Where along n the middle of the thickness stands; 0 unless one face is thickened more than the other.
-    longest
-        No cell is longer, mm. Cells end at every station and wherever thickness or depth has a corner.
+    longest, shortest
+        No cell is longer or shorter, mm. As far as that allows cells end at every station, wherever thickness or depth
+        has a corner, and where a node crosses a crease of the seat.
 
     Raises
     ------
@@ -356,7 +363,7 @@ def survey(
     ridges = {side: crossings(loft, web, side, n=across, depth=depth[side]) for side in SIDES}
     kinks = web.s_at_rib(loft.knots, 0.0, 0.0), thickness.s
     corners = np.concatenate([*kinks, *(v for side in SIDES for v in (depth[side].s, ridges[side].ravel()))])
-    places = _places(starts, stops, corners, longest)
+    places = _places(starts, stops, corners, longest, shortest)
     n = across(places)
     skin, seat, creased = {}, {}, {}
     for side in SIDES:
@@ -364,9 +371,10 @@ def survey(
         bears = _bearing(places, n, ridges[side])
         if depth[side].value.any() or bears.shape != n.shape:
             found = edge(loft, web, places[:, None], bears, side, depth[side](places)[:, None]).h
+            _refuse_gaps(side, found, places[:, None])
             seat[side] = found[:, :nodes]
             creased[side] = bears[:, nodes:], found[:, nodes:]
-        _refuse_gaps(side, seat[side] + skin[side], places[:, None])
+        _refuse_gaps(side, skin[side], places[:, None])
     cell = 2 * np.arange(len(places) // 2)[:, None] + np.arange(3)
     return Survey(
         s=places[cell],
@@ -417,11 +425,13 @@ def _bearing(places: Array, n: Array, ridges: Array) -> Array:
     return np.concatenate(found, axis=1)
 
 
-def _places(starts: Mapping[Side, Array], stops: Mapping[Side, Array], corners: Array, longest: float) -> Array:
-    """(2 C + 1,) bounds and middles of cells that end at every corner and are not longer than `longest`."""
+def _places(
+    starts: Mapping[Side, Array], stops: Mapping[Side, Array], corners: Array, longest: float, shortest: float
+) -> Array:
+    """(2 C + 1,) bounds and middles of cells that end at every corner, as far as their lengths allow."""
     low, high = (np.concatenate(list(v.values())) for v in (starts, stops))
     corners = np.append(corners, [low.max(), high.min()])
-    bounds = spread(low.min(), high.max(), corners, longest=longest, least=_APART)
+    bounds = spread(low.min(), high.max(), corners, longest=longest, least=shortest)
     places = np.empty(2 * len(bounds) - 1)
     places[::2], places[1::2] = bounds, (bounds[1:] + bounds[:-1]) / 2.0
     return places

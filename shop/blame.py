@@ -54,8 +54,6 @@ def nothing_inside(job: Job, fault: NothingInside) -> WingError:
         return job.error("web.bond", f"wanted a bond line that leaves room for the web, got {fault}")
     if not left(lambda side: job.depth[side](s)):
         return job.error("caps", f"wanted stacks that leave room for the web, got {fault}")
-    if stated.edge == "full bevel":
-        return job.error("web.thickness", f"wanted a sheet with room for both edges, got {fault}")
     return job.error("web.edge", f"wanted an edge cut that leaves room for the web, got {stated.edge}: {fault}")
 
 

@@ -29,7 +29,7 @@ from .wording import Wording
 
 Array = NDArray[np.float64]
 
-COARSE = 40.0  # mm, cells of the surveys that a search makes
+COARSE = {"longest": 40.0, "shortest": 1.0}  # mm, cells of the surveys that a search makes
 SWEEP = np.radians(1.0)
 CLOSE = np.radians(0.01)
 TOLD_APART: dict[Aim, float] = {"filler": 100.0, "gap": 0.02}  # mm^3, mm: what a workshop cannot tell from the least
@@ -131,7 +131,7 @@ class Job(Results):
 
     def trial_survey(self, angle: float, thickness: float | None = None) -> Survey:
         """The coarser survey that a search for the best cant makes do with."""
-        return self.survey(angle, thickness, longest=COARSE, depth=self._trial_depth)
+        return self.survey(angle, thickness, depth=self._trial_depth, **COARSE)
 
     def plane_at(self, angle: float) -> Plane:
         """The web plane at a cant in radians."""

@@ -6,10 +6,12 @@ from pathlib import Path
 import numpy as np
 import pytest
 import shapely
-from wings import GOOD
+from wings import GOOD, loft
 
 from wrywing.export import contours
+from wrywing.geom import blank, seat, web
 from wrywing.geom.drawing import Role
+from wrywing.geom.naca import naca
 from wrywing.shop import job as jobs
 from wrywing.shop.sheets_cut import web_cut
 
@@ -95,3 +97,18 @@ def test_a_square_edge_engraves_only_the_ends(tmp_path):
     path.write_text(text.replace('edge      = "set bevel"', 'edge      = "square"').replace("runs      = 3", ""))
     (drawing,) = web_cut(jobs.load(path))
     assert all(len(s.points) == 2 for s in drawing.strokes if s.role is Role.ENGRAVE)
+
+
+@pytest.mark.parametrize("sweep", np.linspace(-400.0, 400.0, 17))
+def test_no_outline_of_a_face_doubles_back(sweep):
+    # Edges cut to a bare skin cross the rib planes at the very places where the survey starts and stops.
+    wing = loft(naca("2412"), [0.0, 1000.0], chord=[300.0, 200.0], le=[0.0, sweep], z=[0.0, 60.0], twist=[0.0, 6.0])
+    plane = web.plane(wing, ends=(0.0, 980.0), line=(0.3, 0.32), cant=0.05)
+    depth = dict.fromkeys(web.SIDES, seat.constant(0.0))
+    survey = seat.survey(wing, plane, thickness=seat.constant(9.0), depth=depth)
+    for treatment in ("square", "full bevel"):
+        edges = [seat.cut(survey, side, treatment) for side in web.SIDES]
+        for name in blank.FACES:
+            outline = blank.face(plane, *edges, name).outline()
+            assert shapely.Polygon(outline).is_valid
+            assert np.linalg.norm(np.roll(outline, -1, axis=0) - outline, axis=1).min() > 1e-7

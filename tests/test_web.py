@@ -132,6 +132,42 @@ def test_the_inside_of_a_skin_with_breaks_close_together(y, z, over):
     np.testing.assert_allclose(at[:, 2], np.interp(at[:, 1], *inside.T), atol=1e-6)
 
 
+@pytest.mark.parametrize(("tall", "ramp"), [(1.0, 1.0), (1.0, 40.0), (-1.0, 1.0)])
+@pytest.mark.parametrize("slope", [0.0, 0.15, -0.15])
+def test_the_inside_of_a_skin_whose_thickness_runs_down_a_ramp(slope, tall, ramp):
+    # Closed form: a straight line of that slope less the thickness square to it, whatever is laid off it.
+    wing = loft(slab(), ENDS, z=[0.0, 1000.0 * slope], axis=0.3)
+    law = straight([0.0, 600.0, 600.0 + ramp, 1000.0], [2.0, 2.0, 2.0 - tall, 2.0 - tall])
+    plane = web.plane(replace(wing, skin=law), ends=ENDS, line=(0.3, 0.3))
+    s = np.hypot(1.0, slope) * np.linspace(590.0, 650.0, 601)
+    point = plane.point(s, web.edge(replace(wing, skin=law), plane, s, 0.0, "top", 0.3).h, 0.0)
+    y = np.linspace(580.0, 660.0, 80001)
+    normal = np.array([-slope, 1.0]) / np.hypot(1.0, slope)
+    inside = np.column_stack([y, 10.0 + slope * y]) - (law(y, y)[0] + 0.3)[:, None] * normal
+    np.testing.assert_allclose(point[:, 2], np.interp(point[:, 1], *inside.T), atol=1e-5)
+
+
+@pytest.mark.parametrize("turn", [0.1, -0.1])
+def test_a_crease_runs_where_flat_plates_meet(turn):
+    # Closed form: two planes 1.5 mm under plates of slopes 0 and `turn`, in the web's own coordinates.
+    wing = loft(slab(), [0.0, 500.0, 1000.0], le=[0.0, 300.0, 600.0], z=[0.0, 0.0, 500.0 * turn], skin=1.2, axis=0.3)
+    plane = web.plane(wing, ends=ENDS, line=(0.3, 0.3), cant=0.1)
+    n = np.array([[-6.0, 0.0, 6.0]])
+    for side, up in (("top", 1.0), ("bottom", -1.0)):
+        level = [up * 8.5, up * (10.0 - 1.5 * np.hypot(1.0, turn)) - 500.0 * turn]
+        normal = np.array([[0.0, 0.0, 1.0], [0.0, -turn, 1.0]])
+        wanted = [
+            np.linalg.solve(
+                np.column_stack([normal @ plane.s, normal @ plane.h]), level - normal @ plane.point(0, 0, k)
+            )
+            for k in n[0]
+        ]
+        found = web.creases(wing, plane, np.array([500.0]), n, side, np.array([0.3]))
+        np.testing.assert_allclose(found[0], np.array(wanted)[:, 0], atol=1e-6)
+    smooth = web.creases(loft(slab(), ENDS), plane, np.array([500.0]), n, "top", np.array([0.3]))
+    assert np.isnan(smooth).all()
+
+
 def test_edges_stop_at_the_rib_planes_on_a_swept_web():
     # Plane trigonometry: on an unskinned slab swept by phi the faces meet a rib t tan(phi) apart.
     wing = loft(slab(), ENDS, le=[0.0, 300.0], skin=0.0)
