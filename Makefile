@@ -22,7 +22,7 @@ lint: $(VENV)/.dev
 	$(BIN)/ruff check .
 	$(BIN)/ruff format --check .
 	@# mypy does not follow an editable install into the repository's root: it is shown a plain copy.
-	rm -rf build/typed
+	rm -rf build
 	$(BIN)/pip install -q --no-deps --target build/typed .
 	cd build && MYPYPATH=typed ../$(BIN)/mypy --config-file ../pyproject.toml -p wrywing
 

@@ -33,6 +33,6 @@ def load(path: str | Path, changes: Mapping[str, object] | None = None) -> Job:
     ValueError
         If the file, or a value, cannot be used; one line that names the file and the key.
     """
-    from .shop import job  # numpy, scipy and all else that a job needs
+    from .shop import job
 
     return job.load(path, changes)

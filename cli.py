@@ -67,11 +67,11 @@ def check(wing: WingPath, as_json: AsJson = False) -> None:
     from dataclasses import asdict
 
     from .export import table, table_strength
-    from .shop import describe
+    from .shop.describe import facts
 
     with _waiting("checking"):
         job = _job(wing)
-        lines, doubts, tables = describe.lines(job), job.facts.doubts, table_strength.tables(job)
+        lines, doubts, tables = facts.lines(job), job.facts.doubts, table_strength.tables(job)
     if as_json:
         typer.echo(table.to_json(asdict(job.facts)))
         return
@@ -274,14 +274,14 @@ def _options(job: Job, paper: str | None, version: str, arcs: bool, kerf: str) -
 def _bundle(job: Job, hands: list[Hand], kinds: list[str], options: Options, say: Callable[[str], None]) -> Bundle:
     """Every file of the kinds asked for."""
     from .export import bundle
-    from .shop import sheets
     from .shop.nesting import nestings
-    from .shop.sheets_stock import stock_sheets
+    from .shop.sheets.drawings import drawings
+    from .shop.sheets.stock import stock_sheets
 
     laid = job.nestings if len(hands) == 2 else nestings(job, hands)
-    drawings = [drawing for side in hands for drawing in sheets.drawings(job, side)]
-    drawings += stock_sheets(job, laid, hands)
-    told = _one_by_one(drawings, len(drawings), "writing drawing", say)
+    drawn = [drawing for side in hands for drawing in drawings(job, side)]
+    drawn += stock_sheets(job, laid, hands)
+    told = _one_by_one(drawn, len(drawn), "writing drawing", say)
     made = bundle.build(told, [k for k in kinds if k in bundle.FORMATS], options, _revision(job))
     say("writing what is no drawing")
     for side in hands:

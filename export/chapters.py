@@ -13,7 +13,8 @@ from matplotlib.figure import Figure
 
 from ..geom import washout
 from ..geom.web import SIDES, Side
-from ..shop import describe, describe_core, describe_cutting, describe_joint, describe_strength
+from ..shop.describe import core, cutting, joint, strength
+from ..shop.describe.facts import panel
 from ..shop.job import Job
 from ..shop.verdict import saving_sentence
 from ..shop.wording import CAUTIONS, degrees
@@ -78,7 +79,7 @@ def _panel(job: Job) -> Iterator[Chapter]:
     if job.cores:
         see += " Bays of the cores are numbered from the root."
     yield Chapter(
-        "panel", "The panel", see, _shown("plan", "The panel from above", figures.plan(job)), facts=describe.panel(job)
+        "panel", "The panel", see, _shown("plan", "The panel from above", figures.plan(job)), facts=panel(job)
     )
 
 
@@ -171,14 +172,14 @@ def _load(job: Job) -> Iterator[Chapter]:
     if found.checks:
         worst = found.worst
         at = job.wording.length(float(found.schedule.s[worst.least]))
-        see += f" Least is {worst.name}, {describe_strength.factor(float(worst.reserve.min()))} at s {at}."
+        see += f" Least is {worst.name}, {strength.factor(float(worst.reserve.min()))} at s {at}."
     shown = _shown("reserves", "Reserve factors along the web", figures_load.reserves(job))
     notes = [f"Not checked: {what}." for what in found.unchecked]
-    yield Chapter("reserves", "Load and reserves", see, shown, tables, describe_strength.lines(job), notes)
+    yield Chapter("reserves", "Load and reserves", see, shown, tables, strength.lines(job), notes)
 
 
 def _flanges(job: Job) -> Iterator[Chapter]:
-    facts = describe_joint.lines(job)
+    facts = joint.lines(job)
     if not facts:
         return
     title, see = "Joint", "The pin, and what the web is thickened to over it."
@@ -190,7 +191,7 @@ def _flanges(job: Job) -> Iterator[Chapter]:
 
 
 def _cores(job: Job) -> Iterator[Chapter]:
-    facts = describe_core.lines(job)
+    facts = core.lines(job)
     if not facts:
         return
     title, see = "Ribs and cradles", "Where they stand."
@@ -204,9 +205,7 @@ def _cores(job: Job) -> Iterator[Chapter]:
 
 def _lists(job: Job) -> Iterator[Chapter]:
     see = "Every piece for one panel and for both, with the size it is cut from."
-    yield Chapter(
-        "cut-list", "Cut list", see, tables=[table_lists.cut_list(job)], facts=describe_cutting.lines(job), cards=True
-    )
+    yield Chapter("cut-list", "Cut list", see, tables=[table_lists.cut_list(job)], facts=cutting.lines(job), cards=True)
     see = "What to buy for the panels of both hands."
     yield Chapter("shopping", "Shopping list", see, tables=[table_lists.shopping_list(job)], cards=True)
 

@@ -16,21 +16,7 @@ from ..shop.masses import masses
 from ..shop.verdict import Verdict
 from ..shop.weigh import TREATMENTS, Candidate
 from ..shop.wording import GRAMS_PER_OUNCE, degrees
-from .plot import (
-    BLUE,
-    EDGES,
-    GREEN,
-    INK,
-    LINES,
-    PAPER,
-    PURPLE,
-    QUIET,
-    WIDTH,
-    figure,
-    in_units,
-    key_above,
-    name_ends,
-)
+from .plot import BLUE, EDGES, GREEN, INK, LINES, PAPER, PURPLE, QUIET, WIDTH, figure, in_units, key_above, name_ends
 
 _MARKS = ("s", "^", "o")  # one for each edge cut
 _BODY = "#eef2f4"

@@ -8,8 +8,8 @@ from matplotlib.figure import Figure
 from matplotlib.ticker import FuncFormatter, MaxNLocator
 
 from ..geom.web import SIDES, Side
-from ..shop.describe_strength import factor
-from ..shop.describe_strips import cut_length
+from ..shop.describe.strength import factor
+from ..shop.describe.strips import cut_length
 from ..shop.job import Job
 from .plot import EDGES, INK, LINES, PAPER, figure, in_units, name_ends
 

@@ -12,7 +12,7 @@ from scipy import ndimage
 
 from ..geom import lettering
 from ..geom.drawing import Label
-from ..shop.layout import BETWEEN, LEADING, wrapped
+from ..shop.sheets.layout import BETWEEN, LEADING, wrapped
 from .tiles import Layout, Shapes
 
 Cell = Sequence[int]  # column and row

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from ..shop.describe_strength import factor, places
-from ..shop.describe_strips import cut_length
+from ..shop.describe.strength import factor, places
+from ..shop.describe.strips import cut_length
 from ..shop.job import Job
 from ..shop.strength import Check, Strength
 from ..shop.strips import Layer

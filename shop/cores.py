@@ -19,7 +19,7 @@ from ..geom.path import BetweenPlanes, Machine, OffTravel, Path
 from ..geom.straight import Grid, Miss
 from ..geom.template import Board, FoldedWay
 from ..geom.wire import Bay, How, WideKerf
-from .records_core import Core
+from .records.core import Core
 from .ribs import faces, facing
 from .stock import Foam
 from .units import MM_PER_INCH

@@ -10,13 +10,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..geom import core
-from .describe_strips import cut_length
+from .describe.strips import cut_length
 from .job import Job
 from .masses import Masses, masses
 from .nesting import Nesting, nestings
 from .pieces import Piece, other_pieces
-from .records_caps import Facing
-from .records_cutting import Cutting
+from .records.caps import Facing
+from .records.cutting import Cutting
 from .stock import Foam, Strip
 from .units import GRAM
 

@@ -13,9 +13,9 @@ from ..geom.flange import Flange, Shape, TooWide, lay, require_room
 from ..geom.seat import Along
 from ..geom.web import SIDES, Side
 from .laminate import laminate
-from .records_caps import Facing
-from .records_joint import Flange as Stated
-from .records_joint import Flanges
+from .records.caps import Facing
+from .records.joint import Flange as Stated
+from .records.joint import Flanges
 from .values import KeyedError
 from .wording import degrees
 

@@ -12,7 +12,7 @@ from ..geom.blank import FACES, FaceName
 from ..geom.joint import Pad, Thickening, Tube
 from ..geom.seat import Survey
 from ..geom.web import Plane, Side
-from .records_joint import Joint
+from .records.joint import Joint
 from .stock import Pin
 from .values import KeyedError
 

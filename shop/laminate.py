@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from .records_caps import Facing
+from .records.caps import Facing
 from .stock import Adhesive, Cloth, Stock
 
 

@@ -18,7 +18,7 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.special import betainc
 
-from .records_caps import Load as Stated
+from .records.caps import Load as Stated
 
 Array = NDArray[np.float64]
 Shape = Callable[[Array], tuple[Array, Array, Array]]

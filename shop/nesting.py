@@ -11,7 +11,7 @@ from ..geom.drawing import Hand
 from ..geom.nest import Laid
 from .job import Job
 from .pieces import Piece, foam_name, other_pieces
-from .records_cutting import Cutting, StockSheet
+from .records.cutting import Cutting, StockSheet
 from .web_pieces import TooShort, web_pieces
 from .wingfile import WingError
 

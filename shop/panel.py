@@ -9,7 +9,7 @@ import numpy as np
 from ..geom import washout
 from ..geom.airfoil import Section
 from ..geom.loft import Loft
-from .records import Wing, WingFile
+from .records.wing import Wing, WingFile
 
 
 def loft(record: WingFile, sections: Sequence[Section]) -> Loft:

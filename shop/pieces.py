@@ -10,9 +10,9 @@ from numpy.typing import NDArray
 
 from ..geom.drawing import Drawing, Hand, Role, Stroke
 from .job import Job
-from .records_cutting import Cutting
-from .sheets_joint import joint_pads
-from .sheets_rib import cradle_sheets, rib_sheets
+from .records.cutting import Cutting
+from .sheets.joint import joint_pads
+from .sheets.rib import cradle_sheets, rib_sheets
 from .stock import Foam
 
 Array = NDArray[np.float64]

@@ -15,7 +15,7 @@ from ..geom.seat import Treatment
 
 if TYPE_CHECKING:
     from .cutlist import Cut
-    from .describe import Facts
+    from .describe.facts import Facts
     from .job import Job
     from .masses import Masses
     from .nesting import Nesting
@@ -35,9 +35,9 @@ class Results:
     @cached_property
     def facts(self) -> Facts:
         """What `check` says, in figures: mm, degrees, grams."""
-        from . import describe
+        from .describe import facts
 
-        return describe.facts(self._job)
+        return facts.facts(self._job)
 
     @property
     def doubts(self) -> tuple[str, ...]:
@@ -110,9 +110,9 @@ class Results:
 
     def drawings(self, hand: Hand = "right") -> list[Drawing]:
         """Every drawing that `templates` writes, for one hand."""
-        from . import sheets
+        from .sheets.drawings import drawings
 
-        return sheets.drawings(self._job, hand)
+        return drawings(self._job, hand)
 
     @cached_property
     def solids(self) -> list[Solid]:

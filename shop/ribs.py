@@ -9,7 +9,7 @@ from ..geom.rib import SLIVER, Cradle, NoRib, Rib
 from ..geom.seat import Along
 from ..geom.slot import Faces
 from .laminate import laminate
-from .records_core import PLYWOOD, Places
+from .records.core import PLYWOOD, Places
 
 if TYPE_CHECKING:
     from .job import Job

@@ -7,11 +7,11 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from .cutlist import NOT_STATED, Cut, cloth_name, cut_list
-from .describe_strips import cut_length
+from .describe.strips import cut_length
 from .job import Job
 from .masses import Masses, masses
 from .nesting import Nesting, nestings
-from .records_cutting import Cutting
+from .records.cutting import Cutting
 from .stock import Adhesive, Cloth, Filler, Strip
 from .units import GRAM, MM_PER_INCH
 

@@ -13,7 +13,7 @@ from ..geom.drawing import Hand
 from ..geom.seat import Along, constant
 from ..geom.web import SIDES
 from .job import Job
-from .records_caps import Caps
+from .records.caps import Caps
 from .strips import Layer, ramp, rise, under
 
 Part = Literal["web", "filler", "strip", "core"]

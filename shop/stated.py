@@ -11,7 +11,7 @@ from typing import Annotated, Any, Union, get_args, get_origin
 
 from pydantic import BaseModel, TypeAdapter, ValidationError
 
-from .records import Station
+from .records.wing import Station
 from .values import Allowable, Cant
 from .wording import Wording
 

@@ -9,11 +9,11 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..geom.web import SIDES, Side
-from .describe_core import miss_words
-from .describe_strength import factor
-from .describe_strips import cut_length, size
+from .describe.core import miss_words
+from .describe.strength import factor
+from .describe.strips import cut_length, size
 from .job import Job
-from .records_cutting import Cutting
+from .records.cutting import Cutting
 from .stock import Filler
 from .weigh import Candidate
 from .wording import degrees

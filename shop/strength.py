@@ -15,7 +15,7 @@ from numpy.typing import ArrayLike, NDArray
 from ..geom import caps as geometry
 from ..geom.web import SIDES, Side
 from .laminate import laminate
-from .records_caps import Caps
+from .records.caps import Caps
 from .stock import Cloth, Foam, Strip
 from .strips import Schedule, bond_shear, under
 

@@ -20,7 +20,7 @@ from ..geom.seat import Along, constant
 from ..geom.web import SIDES, Plane, Side, end_places
 from .laminate import laminate
 from .loads import Carried, Line
-from .records_caps import Caps
+from .records.caps import Caps
 from .stock import OWN, Adhesive, Strip
 from .units import MM_PER_INCH
 from .values import Allowable

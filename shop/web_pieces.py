@@ -12,11 +12,11 @@ from shapely.geometry.base import BaseGeometry
 
 from ..geom import blank, scarf
 from ..geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
-from .face_lines import name_line
 from .job import Job
-from .layout import Layout, Spot
 from .pieces import Piece, foam_name
-from .records_cutting import Cutting
+from .records.cutting import Cutting
+from .sheets.face_lines import name_line
+from .sheets.layout import Layout, Spot
 from .strips import ramp
 
 Array = NDArray[np.float64]

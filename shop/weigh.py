@@ -14,7 +14,7 @@ from ..geom.seat import Survey, Treatment
 from ..geom.web import NothingInside, OffSection
 from .job import Job
 from .masses import Masses, masses
-from .records import Limits
+from .records.wing import Limits
 from .strength import core_checks
 from .values import KeyedError
 

@@ -20,9 +20,9 @@ from pydantic_core import ErrorDetails
 
 from ..geom import airfoil, coordinates, naca
 from .changes import changed
-from .records import WingFile
-from .records_core import foams_asked, refuse_unfit
-from .records_cutting import sheets_asked
+from .records.core import foams_asked, refuse_unfit
+from .records.cutting import sheets_asked
+from .records.wing import WingFile
 from .stock import Adhesive, Cloth, Filler, Foam, Material, MaterialError, Pin, Stock, Strip
 from .units import shown
 from .values import TAGS, KeyedError, Where

@@ -23,7 +23,7 @@ from wrywing.export.cover import Revision
 from wrywing.export.pdf import Print
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
-from wrywing.shop import sheets
+from wrywing.shop.sheets import drawings as sheets
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
 MM = 25.4 / 72.0  # published: ISO 32000-1, 8.3.2.3

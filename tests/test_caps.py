@@ -16,10 +16,12 @@ from typer.testing import CliRunner
 
 from wrywing import cli
 from wrywing.geom import caps, seat, web
-from wrywing.shop import describe_strength, loads, sheets, weigh
 from wrywing.shop import job as jobs
+from wrywing.shop import loads, weigh
 from wrywing.shop import masses as weights
 from wrywing.shop import verdict as choice
+from wrywing.shop.describe import strength as describe_strength
+from wrywing.shop.sheets import drawings as sheets
 from wrywing.shop.stock import Stock, Strip
 
 EXAMPLES = Path(__file__).parent.parent / "examples"

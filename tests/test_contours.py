@@ -17,7 +17,7 @@ from randomly import wing_files
 from wrywing.export import arcs, contours, dxf
 from wrywing.geom.drawing import Drawing, Hole, Role, Stroke
 from wrywing.shop import job as jobs
-from wrywing.shop import sheets
+from wrywing.shop.sheets import drawings as sheets
 from wrywing.shop.wingfile import WingError
 
 EXAMPLES = Path(__file__).parent.parent / "examples"

@@ -17,8 +17,11 @@ from wrywing.export import wire as wire_export
 from wrywing.geom.block import PIN
 from wrywing.geom.drawing import Role
 from wrywing.geom.profile import turned
-from wrywing.shop import cores, describe, sheets_core, sheets_rib
+from wrywing.shop import cores
 from wrywing.shop import job as jobs
+from wrywing.shop.describe import facts as describe
+from wrywing.shop.sheets import core as sheets_core
+from wrywing.shop.sheets import rib as sheets_rib
 from wrywing.shop.stock import Adhesive, Cloth
 from wrywing.shop.wingfile import WingError
 

@@ -13,7 +13,7 @@ from wrywing.geom import blank, seat, web
 from wrywing.geom.drawing import Role
 from wrywing.geom.naca import naca
 from wrywing.shop import job as jobs
-from wrywing.shop.sheets_cut import web_cut
+from wrywing.shop.sheets.cut import web_cut
 
 EXAMPLES = Path(__file__).parent.parent / "examples"
 

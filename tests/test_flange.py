@@ -25,7 +25,7 @@ from wrywing.shop import job as jobs
 from wrywing.shop import masses as weights
 from wrywing.shop import verdict as choice
 from wrywing.shop import weigh
-from wrywing.shop.sheets_flange import flange_patterns
+from wrywing.shop.sheets.flange import flange_patterns
 from wrywing.shop.wingfile import WingError
 
 EXAMPLES = Path(__file__).parent.parent / "examples"

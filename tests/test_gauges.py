@@ -13,7 +13,7 @@ import trimesh
 from wrywing.geom import gauge, solid
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
-from wrywing.shop.sheets_gauge import bevel_gauges, cards
+from wrywing.shop.sheets.gauge import bevel_gauges, cards
 from wrywing.shop.wingfile import WingError
 
 EXAMPLES = Path(__file__).parent.parent / "examples"

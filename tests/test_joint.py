@@ -23,8 +23,9 @@ from wrywing.geom import joint, seat, web
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
 from wrywing.shop import masses as weights
-from wrywing.shop import sheets, weigh
 from wrywing.shop import verdict as choice
+from wrywing.shop import weigh
+from wrywing.shop.sheets import drawings as sheets
 from wrywing.shop.stock import Pin, Stock
 from wrywing.shop.wingfile import WingError
 
@@ -337,7 +338,7 @@ def test_a_pad_in_dxf_measures_what_it_should(tmp_path):
 
 
 def test_the_example_says_what_its_pin_carries_and_that_it_is_no_proof():
-    from wrywing.shop import describe
+    from wrywing.shop.describe import facts as describe
 
     job = jobs.load(EXAMPLES / "highmoor.toml")
     said = dict(describe.lines(job))
@@ -349,7 +350,7 @@ def test_the_example_says_what_its_pin_carries_and_that_it_is_no_proof():
 
 
 def test_a_force_below_the_loads_is_doubted(tmp_path):
-    from wrywing.shop import describe_joint
+    from wrywing.shop.describe import joint as describe_joint
 
     text = (EXAMPLES / "highmoor.toml").read_text()
     (tmp_path / "sections").symlink_to(EXAMPLES / "sections")
@@ -371,7 +372,7 @@ def test_a_force_below_the_loads_is_doubted(tmp_path):
 
 
 def test_a_pin_along_the_web_is_doubted_for_the_moment_that_would_bend_it():
-    from wrywing.shop import describe_joint
+    from wrywing.shop.describe import joint as describe_joint
 
     job = jobs.load(EXAMPLES / "highmoor.toml", {"joint.pin_axis": "along"})
     (said,) = describe_joint.doubts(job)

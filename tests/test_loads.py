@@ -11,7 +11,7 @@ from hypothesis import strategies as st
 from scipy.integrate import quad
 
 from wrywing.shop import loads
-from wrywing.shop.records_caps import Load
+from wrywing.shop.records.caps import Load
 
 ROWS = loads.Rows(np.array([0.0, 0.2, 0.7, 1.0]), np.array([0.2, 1.5, 2.0, 1.0]))
 SHAPES = {"elliptic": loads.elliptic, "bell": loads.bell, "uniform": loads.uniform, "rows": ROWS}

@@ -21,7 +21,7 @@ from wrywing.geom import nest, scarf
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
 from wrywing.shop.nesting import HANDS, nestings, without_sheet
-from wrywing.shop.sheets_stock import stock_sheets
+from wrywing.shop.sheets.stock import stock_sheets
 from wrywing.shop.stock import PAPERS
 from wrywing.shop.strips import ramp
 from wrywing.shop.web_pieces import web_pieces

@@ -18,7 +18,7 @@ from wrywing.export import pdf, tiles
 from wrywing.export.pdf import Print
 from wrywing.geom.drawing import Drawing, Hole, Label, Role, Stroke
 from wrywing.shop import stock
-from wrywing.shop.layout import Layout
+from wrywing.shop.sheets.layout import Layout
 
 MM = 25.4 / 72.0  # published: ISO 32000-1, 8.3.2.3, user space unit
 GLUE = 10.0

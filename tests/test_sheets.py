@@ -14,9 +14,9 @@ from wrywing.export import room
 from wrywing.geom import lettering, web
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
-from wrywing.shop import sheets
-from wrywing.shop.sheets_stock import stock_sheets
-from wrywing.shop.sheets_web import web_blank
+from wrywing.shop.sheets import drawings as sheets
+from wrywing.shop.sheets.stock import stock_sheets
+from wrywing.shop.sheets.web import web_blank
 from wrywing.shop.wording import degrees
 
 EXAMPLES = Path(__file__).parent.parent / "examples"

@@ -14,8 +14,10 @@ from wrywing.geom.flange import Flange, Shape
 from wrywing.geom.profile import face_line
 from wrywing.geom.seat import Along, constant
 from wrywing.geom.slot import Cut, Faces, flange_room, slot
-from wrywing.shop import describe_core, ribs, sheets_rib
 from wrywing.shop import job as jobs
+from wrywing.shop import ribs
+from wrywing.shop.describe import core as describe_core
+from wrywing.shop.sheets import rib as sheets_rib
 from wrywing.shop.stock import Adhesive, Cloth
 
 

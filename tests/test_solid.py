@@ -20,9 +20,9 @@ from wrywing.export import mesh as formats
 from wrywing.geom import seat, solid, web
 from wrywing.geom.drawing import Role
 from wrywing.shop import job as jobs
-from wrywing.shop import sheets
 from wrywing.shop.nesting import nestings
-from wrywing.shop.sheets_stock import stock_sheets
+from wrywing.shop.sheets import drawings as sheets
+from wrywing.shop.sheets.stock import stock_sheets
 from wrywing.shop.solids import built, solids
 from wrywing.shop.wingfile import WingError
 

@@ -10,8 +10,10 @@ import pytest
 from test_weigh import PLAIN, SLAB
 
 from wrywing.export import figures_load, plot, table, table_strength
-from wrywing.shop import compare, describe_strength, describe_strips, keys, steps
+from wrywing.shop import compare, keys, steps
 from wrywing.shop import job as jobs
+from wrywing.shop.describe import strength as describe_strength
+from wrywing.shop.describe import strips as describe_strips
 from wrywing.shop.stock import Cloth, Foam, Stock
 from wrywing.shop.strength import Check
 from wrywing.shop.wingfile import WingError

@@ -41,11 +41,16 @@ def house() -> str:
     lines = []
     for room in ("shop", "geom", "export"):
         lines += [f"**`{room}/`**", ""]
-        for path in sorted((ROOT / room).glob("*.py")):
-            said = ast.get_docstring(ast.parse(path.read_text(encoding="utf-8"))) or ""
-            lines.append(f"- `{path.name}`: {said.splitlines()[0]}")
+        paths = sorted((ROOT / room).rglob("*.py"), key=lambda path: (len(path.relative_to(ROOT).parts) > 2, path))
+        for path in paths:
+            said = (ast.get_docstring(ast.parse(path.read_text(encoding="utf-8"))) or "").splitlines()[0]
+            inside = path.relative_to(ROOT / room)
+            if inside.name == "__init__.py":
+                lines += [said] if path.parent.name == room else ["", f"`{room}/{inside.parent}/`: {said}"]
+            else:
+                lines.append(f"- `{inside.as_posix()}`: {said}")
         lines.append("")
-    return "\n".join(lines).replace("- `__init__.py`: ", "").rstrip()
+    return "\n".join(lines).rstrip()
 
 
 def _between(path: Path, start: str, content: str, end: str) -> None:

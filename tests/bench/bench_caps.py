@@ -5,7 +5,8 @@ from __future__ import annotations
 from timing import EXAMPLES, best
 
 from wrywing.shop import job as jobs
-from wrywing.shop import sheets, weigh
+from wrywing.shop import weigh
+from wrywing.shop.sheets import drawings as sheets
 
 
 def reckoned() -> jobs.Job:

@@ -9,7 +9,7 @@ from timing import best, nasa
 
 from wrywing.export import wire
 from wrywing.shop import job as jobs
-from wrywing.shop.sheets_core import core_boards
+from wrywing.shop.sheets.core import core_boards
 
 _CORE = """
 [[cores]]

@@ -7,10 +7,9 @@ from typing import Annotated, Any, Literal, Self
 
 from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
-from .record import Record, ascending, said
-from .stock import Foam, Stock
-from .units import Units, shown
-from .values import (
+from ..stock import Foam, Stock
+from ..units import Units, shown
+from ..values import (
     KeyedError,
     Length,
     NotNegative,
@@ -24,6 +23,7 @@ from .values import (
     read_length,
     read_positive,
 )
+from .base import Record, ascending, said
 
 PLYWOOD = 6.0  # mm, what cradles are mostly cut from
 AXES = "ABCUVWXYZ"  # the letters RS-274 (ISO 6983) has for axes

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import Any
 
-from .job import Job
-from .nesting import without_sheet
+from ..job import Job
+from ..nesting import without_sheet
 
 
 def lines(job: Job) -> list[tuple[str, str]]:

@@ -9,14 +9,14 @@ from typing import Any
 
 import numpy as np
 
-from ..geom.web import SIDES
-from . import describe_strips
-from .job import Job
-from .laminate import laminate
-from .records_caps import Load
-from .strength import STRAINED, UNLOOKED, Bent, Check, Strength
-from .strips import Schedule
-from .wording import CAUTION
+from ...geom.web import SIDES
+from ..job import Job
+from ..laminate import laminate
+from ..records.caps import Load
+from ..strength import STRAINED, UNLOOKED, Bent, Check, Strength
+from ..strips import Schedule
+from ..wording import CAUTION
+from . import strips
 
 GRAMS_PER_POUND = 453.59237
 PLACES = 9
@@ -33,7 +33,7 @@ def lines(job: Job) -> list[tuple[str, str]]:
         return []
     out = [("load", _load(job, load)), ("", _inner(job, found.schedule))]
     if caps is not None:
-        out.append(("strips", describe_strips.line(job, caps, found.schedule)))
+        out.append(("strips", strips.line(job, caps, found.schedule)))
         out += [("bent", _bent(job, bent)) for bent in found.bent]
     out.append(("reckoned", f"shear flow: {found.schedule.carried.flow_formula}"))
     out += [("reckoned", f"{check.name}: {check.formula}") for check in found.checks]
@@ -90,7 +90,7 @@ def allowables(job: Job) -> list[str]:
     if found is None:
         return []
     return [
-        *describe_strips.allowables(job),
+        *strips.allowables(job),
         *(
             f"{check.name} {words.stress(float(check.allowed.max()))} ({check.origin})"
             for check in found.checks

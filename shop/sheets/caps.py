@@ -7,14 +7,14 @@ from typing import TYPE_CHECKING
 import numpy as np
 import shapely
 
-from ..geom.drawing import Anchor, Role, Stroke
-from .describe_strips import cut_length
-from .job import Job
+from ...geom.drawing import Anchor, Role, Stroke
+from ..describe.strips import cut_length
+from ..job import Job
+from ..strips import Layer
 from .layout import Layout, Spot
-from .strips import Layer
 
 if TYPE_CHECKING:
-    from .sheets_web import View
+    from .web import View
 
 _ASIDES: tuple[tuple[float, Anchor], ...] = ((1.5, "start"), (-1.5, "end"))
 _DEEP = 0.2  # share of the web's height that a mark runs into the face

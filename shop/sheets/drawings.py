@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
-from ..geom.drawing import Drawing, Hand
-from .job import Job
-from .sheets_core import core_boards
-from .sheets_cut import web_cut
-from .sheets_flange import flange_patterns
-from .sheets_gauge import bevel_gauges
-from .sheets_joint import joint_pads
-from .sheets_rib import cradle_sheets, rib_sheets
-from .sheets_web import web_blank
+from ...geom.drawing import Drawing, Hand
+from ..job import Job
+from .core import core_boards
+from .cut import web_cut
+from .flange import flange_patterns
+from .gauge import bevel_gauges
+from .joint import joint_pads
+from .rib import cradle_sheets, rib_sheets
+from .web import web_blank
 
 
 def drawings(job: Job, hand: Hand = "right") -> list[Drawing]:

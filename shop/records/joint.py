@@ -6,9 +6,8 @@ from typing import Annotated, Literal, Self
 
 from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
-from .record import Record, said
-from .units import shown
-from .values import (
+from ..units import shown
+from ..values import (
     Density,
     KeyedError,
     Length,
@@ -23,6 +22,7 @@ from .values import (
     read_fraction,
     read_positive,
 )
+from .base import Record, said
 
 Bar = Annotated[
     float, BeforeValidator(fit(read_angle, "an angle from 45 to 135 degrees", lambda v: 45.0 <= v <= 135.0))

@@ -6,15 +6,15 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom.blank import Face
-from ..geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
-from .describe_strips import strip_notes
+from ...geom.blank import Face
+from ...geom.drawing import Drawing, Hand, Hole, Role, Stroke, thin
+from ..describe.strips import strip_notes
+from ..job import Job
+from ..wording import degrees
 from .face_lines import name_beyond, name_line
-from .job import Job
+from .joint import joint_notes
 from .layout import Layout, Spot
-from .sheets_joint import joint_notes
-from .sheets_web import PLAIN, pin_diameter, write_titles
-from .wording import degrees
+from .web import PLAIN, pin_diameter, write_titles
 
 Array = NDArray[np.float64]
 

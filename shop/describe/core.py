@@ -6,11 +6,11 @@ import math
 from collections.abc import Sequence
 from typing import Any
 
-from ..geom.rib import Cradle, Rib
-from ..geom.straight import Miss
-from .cores import HOT_WIRE, BuiltCore, flange_steps
-from .job import Job
-from .ribs import cradle_sheet, facing, left_out, rib_sheet
+from ...geom.rib import Cradle, Rib
+from ...geom.straight import Miss
+from ..cores import HOT_WIRE, BuiltCore, flange_steps
+from ..job import Job
+from ..ribs import cradle_sheet, facing, left_out, rib_sheet
 
 FAR_OFF = 1.0  # mm of straight-cut error from which a core is doubtful
 _FLIMSY = 3.0  # mm, a template's tail thinner than this bends under the wire

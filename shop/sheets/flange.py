@@ -6,12 +6,12 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom.drawing import Anchor, Drawing, Hand, Role, Stroke, thin
-from ..geom.flange import Flange
-from .flanges import BuiltFlange, sprung
-from .job import Job
+from ...geom.drawing import Anchor, Drawing, Hand, Role, Stroke, thin
+from ...geom.flange import Flange
+from ..flanges import BuiltFlange, sprung
+from ..job import Job
+from ..units import MM_PER_INCH
 from .layout import Layout, Spot
-from .units import MM_PER_INCH
 
 Array = NDArray[np.float64]
 

@@ -6,7 +6,7 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom.blank import FaceName
+from ...geom.blank import FaceName
 from .layout import Layout
 
 _EVERY = 150.0  # mm, within which a line's name is said again: on every sheet of paper

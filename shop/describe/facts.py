@@ -7,16 +7,16 @@ from typing import Any
 
 import numpy as np
 
-from ..geom import washout
-from ..geom import web as web_geometry
-from ..geom.web import SIDES, Side
-from . import describe_core, describe_cutting, describe_joint, describe_strength
-from .job import Job
-from .masses import masses
-from .stock import Foam
-from .verdict import amount
-from .weigh import broken_limits
-from .wording import degrees
+from ...geom import washout
+from ...geom import web as web_geometry
+from ...geom.web import SIDES, Side
+from ..job import Job
+from ..masses import masses
+from ..stock import Foam
+from ..verdict import amount
+from ..weigh import broken_limits
+from ..wording import degrees
+from . import core, cutting, joint, strength
 
 STEEP = 15.0  # degrees of bevel from which a saw cut is doubtful
 SMALL, LARGE = 40.0, 4000.0  # mm of chord beyond which the unit is doubtful
@@ -96,14 +96,14 @@ def facts(job: Job) -> Facts:
         gap=built.gap,
         filler=weights.filler,
         mass=weights.total,
-        strength=describe_strength.record(job),
-        joint=describe_joint.joint_record(job),
-        flanges=describe_joint.flange_records(job),
-        cores=describe_core.core_records(job),
-        wire=describe_core.path_records(job),
-        ribs=describe_core.rib_records(job),
-        cradles=describe_core.cradle_records(job),
-        sheets=describe_cutting.records(job),
+        strength=strength.record(job),
+        joint=joint.joint_record(job),
+        flanges=joint.flange_records(job),
+        cores=core.core_records(job),
+        wire=core.path_records(job),
+        ribs=core.rib_records(job),
+        cradles=core.cradle_records(job),
+        sheets=cutting.records(job),
         doubts=doubts(job),
     )
 
@@ -112,10 +112,10 @@ def lines(job: Job) -> list[tuple[str, str]]:
     """The facts as a builder reads them: (what, figures)."""
     return [
         *panel(job),
-        *describe_strength.lines(job),
-        *describe_joint.lines(job),
-        *describe_core.lines(job),
-        *describe_cutting.lines(job),
+        *strength.lines(job),
+        *joint.lines(job),
+        *core.lines(job),
+        *cutting.lines(job),
     ]
 
 
@@ -199,10 +199,10 @@ def doubts(job: Job) -> tuple[str, ...]:
         *_edge_doubts(job),
         *_bevel_doubts(job),
         *(f"limits.{miss.limit} is broken, by {amount(miss, job)}" for miss in broken_limits(job)),
-        *describe_strength.doubts(job),
-        *describe_joint.doubts(job),
-        *describe_core.doubts(job),
-        *describe_cutting.doubts(job),
+        *strength.doubts(job),
+        *joint.doubts(job),
+        *core.doubts(job),
+        *cutting.doubts(job),
     )
 
 

@@ -8,12 +8,12 @@ from dataclasses import replace
 import numpy as np
 import shapely
 
-from ..geom.drawing import Drawing, Hand, Label, Role, Stroke
-from ..geom.nest import Laid
-from .job import Job
+from ...geom.drawing import Drawing, Hand, Label, Role, Stroke
+from ...geom.nest import Laid
+from ..job import Job
+from ..nesting import Nesting
+from ..pieces import Piece
 from .layout import Layout
-from .nesting import Nesting
-from .pieces import Piece
 
 PLAIN = 3.0  # height of lettering
 _ARROW = 60.0  # mm

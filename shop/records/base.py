@@ -6,8 +6,8 @@ from collections.abc import Iterable
 
 from pydantic import BaseModel, ConfigDict, ValidationInfo
 
-from .units import MM_PER_INCH, Units
-from .values import KeyedError, Where, file_units
+from ..units import MM_PER_INCH, Units
+from ..values import KeyedError, Where, file_units
 
 
 class Record(BaseModel):

@@ -7,9 +7,9 @@ from typing import Annotated, Any, Literal
 
 from pydantic import BeforeValidator, Field
 
-from .record import Record
-from .stock import Foam
-from .values import NotNegative, Positive, Text, Where, fit, read_fraction
+from ..stock import Foam
+from ..values import NotNegative, Positive, Text, Where, fit, read_fraction
+from .base import Record
 
 
 class StockSheet(Record):

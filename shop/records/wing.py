@@ -10,14 +10,9 @@ from typing import Annotated, Literal, Self
 
 from pydantic import BeforeValidator, Field, ValidationInfo, model_validator
 
-from .record import Record, ascending, covers, said
-from .records_caps import Caps, Facing, Load, caps_fit, load_fits
-from .records_core import Core, Cradles, Ribs, Wire, cores_fit, within
-from .records_cutting import Cutting, Gauges
-from .records_joint import Flanges, Joint
-from .stock import CHECK_BARS, paper
-from .units import Units
-from .values import (
+from ..stock import CHECK_BARS, paper
+from ..units import Units
+from ..values import (
     Areal,
     Cant,
     Date,
@@ -42,6 +37,11 @@ from .values import (
     read_fraction,
     read_mass,
 )
+from .base import Record, ascending, covers, said
+from .caps import Caps, Facing, Load, caps_fit, load_fits
+from .core import Core, Cradles, Ribs, Wire, cores_fit, within
+from .cutting import Cutting, Gauges
+from .joint import Flanges, Joint
 
 SHORTEST = 10.0  # mm between the ribs that cut the web off
 PRINTERS_OFF = 0.05  # a bar further off than this was not printed at 100 %

@@ -10,8 +10,8 @@ import shapely
 from numpy.typing import NDArray
 from shapely.geometry.base import BaseGeometry
 
-from ..geom import lettering
-from ..geom.drawing import Anchor, Label, Role, Stroke
+from ...geom import lettering
+from ...geom.drawing import Anchor, Label, Role, Stroke
 
 _AIR = 0.8  # mm kept free round every text
 _TITLE, _NOTE = 4.5, 3.0  # heights of lettering

@@ -7,13 +7,13 @@ import shapely
 from numpy.typing import NDArray
 from shapely.geometry.base import BaseGeometry
 
-from ..geom.drawing import Anchor, Drawing, Hand, Role, Stroke, thin
-from ..geom.rib import Cradle, Rib
-from ..geom.slot import parts
-from .job import Job
+from ...geom.drawing import Anchor, Drawing, Hand, Role, Stroke, thin
+from ...geom.rib import Cradle, Rib
+from ...geom.slot import parts
+from ..job import Job
+from ..ribs import cradle_sheet, facing, left_out, rib_sheet
+from ..wording import degrees
 from .layout import Layout, Spot
-from .ribs import cradle_sheet, facing, left_out, rib_sheet
-from .wording import degrees
 
 Array = NDArray[np.float64]
 

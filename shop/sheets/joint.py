@@ -10,16 +10,16 @@ import shapely
 from numpy.typing import NDArray
 from shapely.geometry.base import BaseGeometry
 
-from ..geom import blank
-from ..geom.blank import Face
-from ..geom.drawing import Anchor, Drawing, Hand, Hole, Role, Stroke, thin
-from ..geom.joint import Pad, Tube
-from .job import Job
-from .joint import JointEnd
+from ...geom import blank
+from ...geom.blank import Face
+from ...geom.drawing import Anchor, Drawing, Hand, Hole, Role, Stroke, thin
+from ...geom.joint import Pad, Tube
+from ..job import Job
+from ..joint import JointEnd
 from .layout import Layout, Spot
 
 if TYPE_CHECKING:
-    from .sheets_web import View
+    from .web import View
 
 Array = NDArray[np.float64]
 

@@ -4,12 +4,12 @@ from __future__ import annotations
 
 import numpy as np
 
-from ..geom.web import SIDES, Side
-from .job import Job
-from .records_caps import Caps
-from .strips import Layer, Schedule, bond_shear, cover_thickness, ramp
-from .units import MM_PER_INCH
-from .wording import CAUTION
+from ...geom.web import SIDES, Side
+from ..job import Job
+from ..records.caps import Caps
+from ..strips import Layer, Schedule, bond_shear, cover_thickness, ramp
+from ..units import MM_PER_INCH
+from ..wording import CAUTION
 
 
 def size(job: Job, caps: Caps) -> str:

@@ -6,11 +6,11 @@ from typing import Any
 
 import numpy as np
 
-from ..geom.joint import section_modulus
-from .flanges import BuiltFlange, sprung
-from .job import Job
-from .joint import JointEnd
-from .wording import CAUTION
+from ...geom.joint import section_modulus
+from ..flanges import BuiltFlange, sprung
+from ..job import Job
+from ..joint import JointEnd
+from ..wording import CAUTION
 
 
 def lines(job: Job) -> list[tuple[str, str]]:

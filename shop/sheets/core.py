@@ -8,15 +8,15 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom.block import PIN
-from ..geom.drawing import Anchor, Drawing, Hand, Hole, Role, Stroke, thin
-from ..geom.profile import turned
-from ..geom.template import Board, Mark
-from ..geom.wire import Bay, End
-from .cores import BuiltCore
-from .job import Job
+from ...geom.block import PIN
+from ...geom.drawing import Anchor, Drawing, Hand, Hole, Role, Stroke, thin
+from ...geom.profile import turned
+from ...geom.template import Board, Mark
+from ...geom.wire import Bay, End
+from ..cores import BuiltCore
+from ..job import Job
+from .core_notes import notes
 from .layout import Layout, Spot
-from .notes_core import notes
 
 Array = NDArray[np.float64]
 

@@ -8,15 +8,15 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom import gauge
-from ..geom.drawing import Drawing, Hand, Role, Stroke
-from ..geom.seat import Cut
-from ..geom.web import SIDES
-from .job import Job
+from ...geom import gauge
+from ...geom.drawing import Drawing, Hand, Role, Stroke
+from ...geom.seat import Cut
+from ...geom.web import SIDES
+from ..job import Job
+from ..records.cutting import Gauges
+from ..units import MM_PER_INCH
+from ..wording import degrees
 from .layout import Layout
-from .records_cutting import Gauges
-from .units import MM_PER_INCH
-from .wording import degrees
 
 Array = NDArray[np.float64]
 

@@ -4,12 +4,12 @@ from __future__ import annotations
 
 import numpy as np
 
-from ..geom.block import PIN
-from ..geom.drawing import Hand
-from ..geom.wire import Bay, Run
-from .cores import HOT_WIRE, BuiltCore, flange_steps
-from .job import Job
-from .wording import Wording, degrees
+from ...geom.block import PIN
+from ...geom.drawing import Hand
+from ...geom.wire import Bay, Run
+from ..cores import HOT_WIRE, BuiltCore, flange_steps
+from ..job import Job
+from ..wording import Wording, degrees
 
 
 def notes(job: Job, made: BuiltCore, index: int, hand: Hand) -> list[str]:

@@ -10,18 +10,18 @@ import numpy as np
 import shapely
 from numpy.typing import NDArray
 
-from ..geom import blank, lettering, web
-from ..geom.blank import Face
-from ..geom.drawing import Anchor, Drawing, Hand, Hole, Label, Role, Stroke, thin
-from ..geom.seat import Run
-from ..geom.web import Side
-from .describe_strips import strip_notes
-from .job import Job
+from ...geom import blank, lettering, web
+from ...geom.blank import Face
+from ...geom.drawing import Anchor, Drawing, Hand, Hole, Label, Role, Stroke, thin
+from ...geom.seat import Run
+from ...geom.web import Side
+from ..describe.strips import strip_notes
+from ..job import Job
+from ..units import MM_PER_INCH
+from ..wording import degrees
+from .caps import strip_marks
+from .joint import joint_marks, joint_notes
 from .layout import Layout, Spot
-from .sheets_caps import strip_marks
-from .sheets_joint import joint_marks, joint_notes
-from .units import MM_PER_INCH
-from .wording import degrees
 
 Array = NDArray[np.float64]
 Place = tuple[float, float, Anchor]  # s, shift on the sheet, anchor

@@ -6,9 +6,8 @@ from typing import Annotated, Literal, Self
 
 from pydantic import BeforeValidator, Discriminator, Field, Tag, ValidationInfo, model_validator
 
-from .record import Record, ascending, covers, said
-from .units import Units
-from .values import (
+from ..units import Units
+from ..values import (
     TAGS,
     Allowable,
     Areal,
@@ -26,6 +25,7 @@ from .values import (
     read_fraction,
     read_moment,
 )
+from .base import Record, ascending, covers, said
 
 Force = Annotated[float, BeforeValidator(fit(read_force, "a force of 0 or more", lambda v: v >= 0))]
 Moment = Annotated[float, BeforeValidator(fit(read_moment, "a moment of 0 or more", lambda v: v >= 0))]

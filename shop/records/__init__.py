@@ -1,0 +1,1 @@
+"""The wing file's records: what may be stated, table by table."""

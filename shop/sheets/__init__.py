@@ -1,0 +1,1 @@
+"""The drawings to be cut, on paper and for machines."""
