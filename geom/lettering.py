@@ -148,6 +148,7 @@ def _laid(text: str) -> tuple[NDArray[np.float64], NDArray[np.intp]]:
     return np.concatenate([np.empty((0, 2)), *lines]), np.cumsum([len(line) for line in lines], dtype=np.intp)[:-1]
 
 
+@cache
 def extent(text: str) -> tuple[float, float]:
     """How far a line of text reaches down and up from the line it stands on, in heights of a capital.
 

@@ -24,6 +24,7 @@ Array = NDArray[np.float64]
 Treatment = Literal["square", "set bevel", "full bevel"]
 Aim = Literal["filler", "gap"]
 
+_APART = 0.01  # mm between the corners that cells end at
 _CLOSE = 1e-7  # mm
 
 
@@ -157,9 +158,9 @@ class Survey:
             seat[side] = self.seat[side] @ read
             if side in self.creases:
                 at, deep = self.creases[side]
-                for place in zip(*np.nonzero((np.abs(at) < self.n[..., -1:]).any(axis=-1)), strict=True):
-                    knots, heights = np.append(self.n[place], at[place]), np.append(self.seat[side][place], deep[place])
-                    seat[side][place] = np.interp(n[place], np.sort(knots), heights[knots.argsort()])
+                over = (np.abs(at) < self.n[..., -1:]).any(axis=-1)
+                knots, heights = (v[over] for v in self.bearing(side))
+                seat[side][over] = _straight(knots, heights, n[over])
                 faces = np.where(at < 0.0, seat[side][..., :1], seat[side][..., -1:])
                 on = np.abs(at) <= n[..., -1:]
                 creases[side] = np.where(on, at, np.sign(at) * n[..., -1:]), np.where(on, deep, faces)
@@ -332,7 +333,7 @@ def survey(
     depth: Mapping[Side, Along],
     middle: Along = CENTRED,
     longest: float = 20.0,
-    shortest: float = 0.01,
+    every_node: bool = True,
     nodes: int = 7,
 ) -> Survey:
     """Find skin and seat over a grid of the web.
@@ -345,9 +346,12 @@ def survey(
         For each side what lies between the skin and the edge: bond line, caps, cover; measured along the skin's normal.
     middle
         Where along n the middle of the thickness stands; 0 unless one face is thickened more than the other.
-    longest, shortest
-        No cell is longer or shorter, mm. As far as that allows cells end at every station, wherever thickness or depth
-        has a corner, and where a node crosses a crease of the seat.
+    longest
+        No cell is longer, mm. Cells end at every station, wherever thickness or depth has a corner, and where a crease
+        of either seat crosses the two faces.
+    every_node
+        Whether they end where it crosses the nodes in between as well: without that a cut is a few hundredths of a
+        millimetre off beside a crease.
 
     Raises
     ------
@@ -361,20 +365,25 @@ def survey(
 
     starts, stops = _ends(loft, web, across)
     ridges = {side: crossings(loft, web, side, n=across, depth=depth[side]) for side in SIDES}
-    kinks = web.s_at_rib(loft.knots, 0.0, 0.0), thickness.s
-    corners = np.concatenate([*kinks, *(v for side in SIDES for v in (depth[side].s, ridges[side].ravel()))])
-    places = _places(starts, stops, corners, longest, shortest)
+    kinks = (s.ravel() if every_node else s[:, [0, -1]].ravel() for s in ridges.values())
+    depths = (depth[side].s for side in SIDES)
+    corners = np.concatenate([web.s_at_rib(loft.knots, 0.0, 0.0), thickness.s, *depths, *kinks])
+    places = _places(starts, stops, corners, longest)
     n = across(places)
     skin, seat, creased = {}, {}, {}
     for side in SIDES:
-        skin[side] = seat[side] = edge(loft, web, places[:, None], n, side).h
-        bears = _bearing(places, n, ridges[side])
-        if depth[side].value.any() or bears.shape != n.shape:
-            found = edge(loft, web, places[:, None], bears, side, depth[side](places)[:, None]).h
-            _refuse_gaps(side, found, places[:, None])
-            seat[side] = found[:, :nodes]
-            creased[side] = bears[:, nodes:], found[:, nodes:]
+        skin[side] = edge(loft, web, places[:, None], n, side).h
         _refuse_gaps(side, skin[side], places[:, None])
+        at, on = _crease_places(places, n, ridges[side])
+        seat[side], deep = skin[side], np.zeros_like(at)
+        if depth[side].value.any() or at.size:
+            s, layers = np.append(np.repeat(places, nodes), places[on.nonzero()[0]]), np.append(n, at[on])
+            h = edge(loft, web, s, layers, side, depth[side](s)).h
+            _refuse_gaps(side, h, s)
+            seat[side] = h[: n.size].reshape(n.shape)
+            deep = np.where(at > n.mean(axis=1)[:, None], seat[side][:, -1:], seat[side][:, :1])
+            deep[on] = h[n.size :]
+        creased[side] = at, deep
     cell = 2 * np.arange(len(places) // 2)[:, None] + np.arange(3)
     return Survey(
         s=places[cell],
@@ -386,6 +395,15 @@ def survey(
         stops=stops,
         creases={side: (at[cell], h[cell]) for side, (at, h) in creased.items() if at.size},
     )
+
+
+def _straight(knots: Array, values: Array, at: Array) -> Array:
+    """(P, M) values at `at` (P, M) of the straight lines that join `values` at `knots` (P, K) in their order."""
+    order = knots.argsort(axis=1)
+    knots, values = (np.take_along_axis(v, order, axis=1) for v in (knots, values))
+    after = np.clip((knots[:, None] <= at[..., None]).sum(axis=-1), 1, knots.shape[1] - 1)
+    x0, x1, y0, y1 = (np.take_along_axis(v, i, axis=1) for v in (knots, values) for i in (after - 1, after))
+    return np.asarray(y0 + (y1 - y0) * (at - x0) / np.maximum(x1 - x0, 1e-12))
 
 
 def _lagrange(nodes: Array, x: Array) -> Array:
@@ -413,25 +431,22 @@ def _ends(
     return starts, stops
 
 
-def _bearing(places: Array, n: Array, ridges: Array) -> Array:
-    """(P, M + B) the nodes `n` (P, M) at all places, and where creases cross the thickness there."""
+def _crease_places(places: Array, n: Array, ridges: Array) -> tuple[Array, NDArray[np.bool_]]:
+    """Places (P, B) across the thickness of B creases, on the faces where they do not cross it; and where they do."""
     tau = lobatto(n.shape[1])[0]
-    found = [n]
-    for s in ridges:
-        if ((places > s.min()) & (places < s.max())).any():
-            order = s.argsort()
-            share = (1.0 + np.interp(places, s[order], tau[order])[:, None]) / 2.0
-            found.append((1.0 - share) * n[:, :1] + share * n[:, -1:])
-    return np.concatenate(found, axis=1)
+    inside = (places > ridges.min(axis=1)[:, None]) & (places < ridges.max(axis=1)[:, None])
+    on = inside.any(axis=1)
+    order = ridges.argsort(axis=1)
+    shares = [np.interp(places, ridges[i, order[i]], (1.0 + tau[order[i]]) / 2.0) for i in np.flatnonzero(on)]
+    share = np.reshape(shares, (-1, len(places))).T
+    return (1.0 - share) * n[:, :1] + share * n[:, -1:], inside[on].T
 
 
-def _places(
-    starts: Mapping[Side, Array], stops: Mapping[Side, Array], corners: Array, longest: float, shortest: float
-) -> Array:
-    """(2 C + 1,) bounds and middles of cells that end at every corner, as far as their lengths allow."""
+def _places(starts: Mapping[Side, Array], stops: Mapping[Side, Array], corners: Array, longest: float) -> Array:
+    """(2 C + 1,) bounds and middles of cells that end at every corner and are not longer than `longest`."""
     low, high = (np.concatenate(list(v.values())) for v in (starts, stops))
     corners = np.append(corners, [low.max(), high.min()])
-    bounds = spread(low.min(), high.max(), corners, longest=longest, least=shortest)
+    bounds = spread(low.min(), high.max(), corners, longest=longest, least=_APART)
     places = np.empty(2 * len(bounds) - 1)
     places[::2], places[1::2] = bounds, (bounds[1:] + bounds[:-1]) / 2.0
     return places

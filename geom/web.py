@@ -162,22 +162,17 @@ def _over_breaks(
     """Height (k,) at places near y, t of the surface, within reach of the breaks `first` to `last` - 1."""
     bounds = np.concatenate([[-np.inf], loft.breaks, [np.inf]])
     outwards = web.s[1] > 0.0  # s runs towards the larger y, on a left-hand panel away from it
-
-    def surface(bay: Array) -> Array:
-        inside = np.clip(y, bounds[bay], np.nextafter(bounds[bay + 1], -np.inf))
-        return _meet(loft, web, web.s, s, s, n, side, depth, inside).h
-
-    h = surface(first if outwards else last)
-    for i in range(int((last - first).max())):
-        more = first + i < last
-        before, after = (first + i, first + i + 1) if outwards else (last - i, last - i - 1)
-        at = loft.breaks[np.clip(np.minimum(before, after), 0, len(loft.breaks) - 1)]
+    steps = np.arange(int((last - first).max()) + 1)[:, None]
+    bays = np.minimum(first + steps, last) if outwards else np.maximum(last - steps, first)
+    inside = np.clip(y, bounds[bays], np.nextafter(bounds[bays + 1], -np.inf))
+    h, *further = _meet(loft, web, web.s, s, s, n, side, depth, inside).h
+    for before, after, beyond in zip(bays[:-1], bays[1:], further, strict=True):
+        at = loft.breaks[np.minimum(np.minimum(before, after), len(loft.breaks) - 1)]
         sides = (np.nextafter(at, -np.inf), at)
         slope, next_slope = (_slope(loft, web, t, at, bay) for bay in (sides if outwards else sides[::-1]))
-        beyond = surface(np.clip(after, 0, len(loft.breaks)))
         nearer = np.where(next_slope < slope, np.fmin(h, beyond), np.fmax(h, beyond))
-        h = np.where(more, nearer, h)
-    return h
+        h = np.where(before != after, nearer, h)
+    return np.asarray(h)
 
 
 def _slope(loft: Loft, web: Plane, t: Array, y: Array, bay: Array) -> Array:
@@ -204,18 +199,20 @@ def creases(loft: Loft, web: Plane, y: Array, n: Array, side: Side, depth: Array
     Notes
     -----
     It is where the surfaces of both bays, carried on past the knot, cross. They part at an even rate there, so that two
-    places tell where.
+    places tell where. Where they hardly part it runs as it does beside.
     """
     if not y.size:
         return n
-    at = np.broadcast_to(y[:, None], n.shape)
-    s = web.s_at_rib(at, 0.0, n) + np.array([0.0, 1.0])[:, None, None]
-    bays = (np.nextafter(at, -np.inf), at)
-    before, after = (_meet(loft, web, web.s, s, s, n, side, depth[:, None], bay).h for bay in bays)
-    first, second = after - before
-    rate = second - first
-    with np.errstate(divide="ignore", invalid="ignore"):
-        return np.where(np.abs(rate) > _KINK, s[0] - first / rate, np.nan)
+    s = web.s_at_rib(y[:, None], 0.0, n)
+    places = np.stack([[s, s], [s + 1.0, s + 1.0]])
+    bays = np.zeros_like(places) + np.array([np.nextafter(y, -np.inf), y])[..., None]
+    h = _meet(loft, web, web.s, places, places, n, side, depth[:, None], bays).h
+    first, second = h[:, 1] - h[:, 0]
+    kink = np.abs(second - first) > _KINK
+    along = np.divide(first, first - second, out=np.zeros_like(s), where=kink)
+    count = kink.sum(axis=1, keepdims=True)
+    middle = np.divide(along.sum(axis=1, keepdims=True), count, out=np.full(count.shape, np.nan), where=count > 0)
+    return s + np.where(np.isnan(first), np.nan, np.where(kink, along, middle))
 
 
 def end_places(loft: Loft, web: Plane, n: ArrayLike, side: Side, depth: ArrayLike = 0.0) -> tuple[Array, Array]:
@@ -246,12 +243,13 @@ def _meet(
     belongs to is settled in the first rounds and then kept, so that a kink at a station cannot send it to and fro;
     unless `bay`, a y within it, says which.
     """
-    s, n, depth, want = np.broadcast_arrays(*(np.asarray(v, dtype=float) for v in (s, n, depth, want)))
+    stated = (s, n, depth, want, np.nan if bay is None else bay)
+    s, n, depth, want, at = np.broadcast_arrays(*(np.asarray(v, dtype=float) for v in stated))
     share = np.clip(s / web.length, 0.0, 1.0)
     root = np.sqrt(web.line[0] + share * (web.line[1] - web.line[0]))
     t = root if side == "top" else -root
     y = web.origin[1] + s * web.s[1] + n * web.n[1]
-    at = y if bay is None else bay
+    at = y if bay is None else at
     for turn in range(_ROUNDS):
         point, by_t, by_y = loft.under_skin(t, y, depth, at)
         out = point - web.origin

@@ -29,7 +29,7 @@ from .wording import Wording
 
 Array = NDArray[np.float64]
 
-FINE, COARSE = (20.0, 0.01), (40.0, 1.0)  # mm, longest and shortest cells of a survey; a search makes coarse ones
+FINE, COARSE = 20.0, 40.0  # mm, longest cells of a survey; a search makes coarse ones
 SWEEP = np.radians(1.0)
 CLOSE = np.radians(0.01)
 TOLD_APART: dict[Aim, float] = {"filler": 100.0, "gap": 0.02}  # mm^3, mm: what a workshop cannot tell from the least
@@ -131,7 +131,7 @@ class Job(Results):
 
     def trial_survey(self, angle: float, thickness: float | None = None) -> Survey:
         """The coarser survey that a search for the best cant makes do with."""
-        return self.survey(angle, thickness, cells=COARSE, depth=self._trial_depth)
+        return self.survey(angle, thickness, coarse=True, depth=self._trial_depth)
 
     def plane_at(self, angle: float) -> Plane:
         """The web plane at a cant in radians."""
@@ -238,7 +238,7 @@ class Job(Results):
         angle: float,
         thickness: float | None = None,
         *,
-        cells: tuple[float, float] = FINE,
+        coarse: bool = False,
         depth: Mapping[Side, seat.Along] | None = None,
     ) -> Survey:
         """Skin and seat over a web of a given cant (radians) and, unless the stated one, thickness (mm)."""
@@ -249,8 +249,8 @@ class Job(Results):
             thickness=sheet,
             middle=middle,
             depth=depth or self.depth,
-            longest=cells[0],
-            shortest=cells[1],
+            longest=COARSE if coarse else FINE,
+            every_node=not coarse,
         )
 
     def fit(self, angle: float, survey: Survey, treatment: Treatment | None = None) -> BuiltWeb:

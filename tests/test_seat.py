@@ -380,7 +380,7 @@ def test_the_best_cant_is_the_least_of_a_fine_sweep():
         angle, least = job.best_cant(aim, 6.0, treatment)
         sweep = []
         for k in np.radians(np.arange(-15.0, 15.01, 0.5)):
-            built = job.fit(k, job.survey(k, 6.0, cells=jobs.COARSE), treatment)
+            built = job.fit(k, job.survey(k, 6.0, coarse=True), treatment)
             sweep.append(built.filler if aim == "filler" else built.gap)
         assert least <= min(sweep) * 1.0005 + jobs.TOLD_APART[aim]
         assert abs(np.degrees(angle)) <= 15.0

@@ -82,7 +82,7 @@ def _write_inside(job: Job, layout: Layout, whole: shapely.Polygon, hand: Hand) 
     ):
         layout.put(text, [Spot(x + way * d, h, "middle", 90.0) for d in np.arange(0.0, 20.0, 2.0)], height=PLAIN)
     places = np.arange(x0 + 20.0, x1 - 20.0, 5.0)
-    spots = [Spot(float(x), _middle(whole, x) + off, "middle") for off in (-1.5, 4.0, -7.0) for x in places]
+    spots = (Spot(float(x), _middle(whole, x) + off, "middle") for off in (-1.5, 4.0, -7.0) for x in places)
     layout.put(f"REAR FACE UP, {hand} hand, {job.stamp}", spots, height=PLAIN, within=whole)
     for x in places:
         if arrow := layout.put_up_arrow(float(x), _middle(whole, x), whole):

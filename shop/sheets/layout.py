@@ -44,7 +44,7 @@ class Layout:
         roomy = shape.buffer(_AIR, join_style="mitre")
         if within is not None and not within.contains(roomy):
             return False
-        return not any(roomy.intersects(other) for other in self._taken)
+        return not (self._taken and shapely.intersects(self._taken, roomy).any())
 
     def put_within(
         self, text: str, places: NDArray[np.float64], within: BaseGeometry, *, heights: Iterable[float] = (2.5,)

@@ -258,12 +258,12 @@ def _write_inside(job: Job, view: View, layout: Layout, inside: shapely.Polygon,
     piece = f"{view.face.name.upper()} FACE, {hand} hand, {job.stamp}"
     for text, shares in ((piece, (0.5, 0.35, 0.65)), ("web line", (0.0,))):
         for height in (PLAIN, SMALL):
-            spots = [
+            lower = (
                 Spot(view.sense * s, _clear_of_datum(view, s, share, height), "middle")
                 for s in np.arange(start + 20.0, stop - 20.0, 5.0)
                 for share in shares
-            ]
-            if layout.put(text, spots, height=height, within=inside):
+            )
+            if layout.put(text, lower, height=height, within=inside):
                 break
 
 
