@@ -46,8 +46,10 @@ def least(
     found = [(float(angles[i]), float(values[i])) for i in hollows]
     for i in hollows[:3]:
         about = (float(angles[max(i - 1, 0)]), float(angles[min(i + 1, len(angles) - 1)]))
-        result = minimize_scalar(figure, bounds=about, method="bounded", options={"xatol": close})
-        found.append((float(result.x), float(result.fun)))
+        with np.errstate(invalid="ignore"):  # its parabola may run through infinities
+            result = minimize_scalar(figure, bounds=about, method="bounded", options={"xatol": close})
+        if np.isfinite(result.fun):
+            found.append((float(result.x), float(result.fun)))
     best = min(found, key=lambda pair: pair[1], default=(low, float("inf")))
     good = [(float(k), float(v)) for k, v in zip(angles, values, strict=True) if v <= best[1] + near]
     return min([best, *good], key=lambda pair: abs(pair[0])) if near else best

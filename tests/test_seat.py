@@ -386,6 +386,15 @@ def test_the_best_cant_is_the_least_of_a_fine_sweep():
         assert abs(np.degrees(angle)) <= 15.0
 
 
+@pytest.mark.filterwarnings("error")
+@pytest.mark.parametrize("fits", [lambda k: abs(k) < 0.018, lambda k: 0.06 < k < 0.08, lambda k: False])
+def test_the_cant_search_passes_over_cants_that_have_no_web(fits):
+    # Closed form: least where it fits of a line that falls towards larger cants.
+    _, least = cants.least(lambda k: 1.0 - k if fits(k) else np.inf, -0.26, 0.26, step=np.radians(1.0), close=1e-5)
+    best = min((1.0 - k for k in np.linspace(-0.26, 0.26, 5201) if fits(k)), default=np.inf)
+    assert least == pytest.approx(best, abs=0.018)
+
+
 @settings(max_examples=30)
 @given(st.dictionaries(st.integers(-5, 5), st.floats(0.0, 1.0), min_size=1, max_size=4), st.floats(-0.01, 0.01))
 def test_the_cant_search_finds_the_deepest_of_several_hollows(floors, shift):
