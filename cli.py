@@ -71,13 +71,14 @@ def check(wing: WingPath, as_json: AsJson = False) -> None:
 
     with _waiting("checking"):
         job = _job(wing)
-        lines, doubts, tables = facts.lines(job), job.facts.doubts, table_strength.tables(job)
+        found = job.facts
+        lines, tables = ([], []) if as_json else (facts.lines(job), table_strength.tables(job))
     if as_json:
-        typer.echo(table.to_json(asdict(job.facts)))
+        typer.echo(table.to_json(asdict(found)))
         return
     for what, figures in lines:
         _say(what, figures)
-    for doubt in doubts:
+    for doubt in found.doubts:
         _say("doubt", doubt)
     for shown in tables:
         _show(shown)

@@ -12,7 +12,6 @@ from matplotlib.patches import Polygon
 
 from ..shop.cores import BuiltCore
 from ..shop.job import Job
-from ..shop.masses import masses
 from ..shop.verdict import Verdict
 from ..shop.weigh import TREATMENTS, Candidate
 from ..shop.wording import GRAMS_PER_OUNCE, degrees
@@ -175,7 +174,7 @@ def _refused(job: Job, found: Sequence[Candidate], ax: Axes) -> None:
 
 def _picked(job: Job, ax: Axes, chosen: Candidate | None, unit: float) -> None:
     """A ring round the candidate to take, and a cross where the wing file stands."""
-    stated = float(in_units(job, job.record.web.thickness)), masses(job, job.web).total / unit
+    stated = float(in_units(job, job.record.web.thickness)), job.masses.total / unit
     ax.plot(*stated, "+", color=INK, markersize=13, markeredgewidth=1.4, label="as stated", linestyle="none")
     if chosen is not None:
         at = float(in_units(job, chosen.thickness)), chosen.masses.total / unit

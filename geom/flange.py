@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from .blank import FaceName
-from .loft import Loft
+from .loft import Loft, unit
 from .places import crossings, spread
 from .seat import Along
 from .web import Plane, Side, edge
@@ -244,14 +244,10 @@ def _inside_normal(loft: Loft, t: Array, y: Array, at: Array) -> Array:
     over the surface.
     """
     _, by_t, by_y = loft.outer(t, y, at)
-    aside = _unit(by_t)
+    aside = unit(by_t)
     out = by_y - _dot(by_y, aside) * aside
     gradient = out * loft.skin(np.broadcast_to(y, at.shape), at)[1][..., None] / _dot(out, out)
-    return _unit(loft.normal(t, y, at) + gradient)
-
-
-def _unit(v: Array) -> Array:
-    return np.asarray(v / np.linalg.norm(v, axis=-1, keepdims=True))
+    return unit(loft.normal(t, y, at) + gradient)
 
 
 def _dot(a: Array, b: Array) -> Array:
@@ -290,12 +286,12 @@ class _Corner:
     @cached_property
     def along_face(self) -> Array:
         """(2, k, 3) directions along the face, square to h."""
-        return _unit(self.web.s + self.slope[..., None] * self.web.n)
+        return unit(self.web.s + self.slope[..., None] * self.web.n)
 
     @cached_property
     def face_normal(self) -> Array:
         """(2, k, 3) normals out of the face."""
-        out = _unit(self.web.n - self.slope[..., None] * self.web.s)
+        out = unit(self.web.n - self.slope[..., None] * self.web.s)
         return out if self.face == "rear" else -out
 
     @property
@@ -313,7 +309,7 @@ class _Corner:
     def tangent(self) -> Array:
         """(2, k, 2) directions of that line: in the face and square to the skin's normal."""
         up, along = self.outward @ self.web.h, _dot(self.outward, self.along_face)[..., 0]
-        return _unit(np.stack([up, -along], axis=-1) * np.sign(up)[..., None])
+        return unit(np.stack([up, -along], axis=-1) * np.sign(up)[..., None])
 
     @cached_property
     def down(self) -> Array:

@@ -181,3 +181,8 @@ def _normal(by_t: Array, by_y: Array) -> Array:
     aslant = t_z * y_x - t_x * y_z
     length = np.sqrt(t_x**2 + aslant**2 + t_z**2)
     return np.stack([-t_z / length, aslant / length, t_x / length], axis=-1)
+
+
+def unit(v: Array) -> Array:
+    """The directions (..., m) of vectors."""
+    return np.asarray(v / np.linalg.norm(v, axis=-1, keepdims=True))

@@ -12,7 +12,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from .loft import Loft
+from .loft import Loft, unit
 from .seat import Along
 from .web import Plane
 
@@ -49,7 +49,7 @@ def inner(loft: Loft, t: ArrayLike, y: ArrayLike, depth: float = 0.0) -> tuple[A
             break
         above = above + miss
     point = point + miss[..., None] * by_y  # what is left, along the surface
-    return point, _unit(np.cross(by_t, by_y))
+    return point, unit(np.cross(by_t, by_y))
 
 
 @dataclass(frozen=True)
@@ -152,23 +152,19 @@ def profile(loft: Loft, y: float, t: Array, depth: float = 0.0) -> Profile:
     the line folds over itself; the fold is cut off, and its points stand where the two sides meet.
     """
     point, normal = inner(loft, t, y, depth)
-    flat = _unit(normal[:, _FLAT])
+    flat = unit(normal[:, _FLAT])
     along = np.column_stack([flat[:, 1], -flat[:, 0]])
     return Profile(y, t, unfolded(point[:, _FLAT], along), flat, _aft(loft, y))
 
 
 def outside(loft: Loft, y: float, t: Array) -> Profile:
     """The outer surface in the rib plane `y`, at parameters `t` (2k + 1,), ascending and symmetric about 0."""
-    return Profile(y, t, loft.outer(t, y)[0][:, _FLAT], _unit(loft.normal(t, y)[:, _FLAT]), _aft(loft, y))
+    return Profile(y, t, loft.outer(t, y)[0][:, _FLAT], unit(loft.normal(t, y)[:, _FLAT]), _aft(loft, y))
 
 
 def _aft(loft: Loft, y: float) -> Array:
     washout = float(loft.washout(np.array(y), np.array(y))[0])
     return np.array([np.cos(washout), np.sin(washout)])
-
-
-def _unit(v: Array) -> Array:
-    return np.asarray(v / np.linalg.norm(v, axis=-1, keepdims=True))
 
 
 def tail(loft: Loft, of: Profile, least: float) -> float:
@@ -236,7 +232,7 @@ def _crossing(points: Array, before: NDArray[np.intp], beyond: NDArray[np.intp])
 
 def _normals(points: Array) -> Array:
     """Unit normals (k, 2) to the left of a curve given by points, from the two steps at each."""
-    step = _unit(np.gradient(points, axis=0))
+    step = unit(np.gradient(points, axis=0))
     return np.column_stack([-step[:, 1], step[:, 0]])
 
 

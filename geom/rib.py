@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 from shapely.geometry.base import BaseGeometry
 
 from .flange import Flange
-from .loft import Loft
+from .loft import Loft, unit
 from .profile import face_line, outside, profile, symmetric
 from .slot import Cut, Faces, Slot, flange_room, largest, parts, planes, polygon, slot
 
@@ -266,7 +266,7 @@ def cradles(
 def _padded(loft: Loft, t: Array, y: float, padding: float) -> Array:
     """(k, 2) a line `padding` mm off the outer surface in the rib plane `y`."""
     line, normal = loft.outer(t, y)[0][:, [0, 2]], loft.normal(t, y)[:, [0, 2]]
-    return np.asarray(line + padding * normal / np.linalg.norm(normal, axis=1, keepdims=True))
+    return np.asarray(line + padding * unit(normal))
 
 
 def _base(saddle: Array) -> Array:

@@ -22,7 +22,7 @@ from ..geom.wire import Bay, How, WideKerf
 from .records.core import Core
 from .ribs import faces, facing
 from .stock import Foam
-from .units import MM_PER_INCH
+from .units import GRAM, MM_PER_INCH
 from .wingfile import WingError
 
 if TYPE_CHECKING:
@@ -35,7 +35,6 @@ HOT_WIRE = (
 FACE: dict[str, FaceName] = {"nose": "front", "aft": "rear"}  # of the web, that a core lies beside
 Off = Callable[[tuple[float, float]], Miss]
 
-_GRAM = 1e-6  # g per mm^3 at 1 kg/m^3
 _ROWS = 241
 
 
@@ -89,7 +88,7 @@ class BuiltCore:
     @property
     def mass(self) -> float:
         """Grams."""
-        return self.mesh.volume * self.foam.density * _GRAM
+        return self.mesh.volume * self.foam.density * GRAM
 
 
 @dataclass(frozen=True)

@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 from ..geom import core
 from .describe.strips import cut_length
 from .job import Job
-from .masses import Masses, masses
+from .masses import Masses
 from .nesting import Nesting, nestings
 from .pieces import Piece, other_pieces
 from .records.caps import Facing
@@ -68,7 +68,7 @@ def cut_list(job: Job, laid: Sequence[Nesting] | None = None) -> list[Cut]:
         How pieces lie on sheets of stock, if that is known already.
     """
     laid = nestings(job) if laid is None else laid
-    weights = masses(job, job.web)
+    weights = job.masses
     return [
         *_web_sheet(job, laid, weights),
         *_other_sheets(job, weights),

@@ -16,6 +16,7 @@ from .laminate import laminate
 from .records.caps import Facing
 from .records.joint import Flange as Stated
 from .records.joint import Flanges
+from .units import GRAM
 from .values import KeyedError
 from .wording import degrees
 
@@ -52,7 +53,7 @@ def built(job: Job, web: BuiltWeb) -> tuple[BuiltFlange, ...]:
             shape = _shape(found[key], stated, thickness, web.plane.length)
             laid = _laid(job, web, key, side, face, shape)
             _require_spring(job, key, laid, stated.max_spring)
-            made.append(BuiltFlange(key, laid, laid.area * areal * 1e-6))
+            made.append(BuiltFlange(key, laid, laid.area * areal * GRAM))
     _require_height(job, web, made)
     return tuple(made)
 

@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from .cutlist import NOT_STATED, Cut, cloth_name, cut_list
 from .describe.strips import cut_length
 from .job import Job
-from .masses import Masses, masses
+from .masses import Masses
 from .nesting import Nesting, nestings
 from .records.cutting import Cutting
 from .stock import Adhesive, Cloth, Filler, Strip
@@ -38,7 +38,7 @@ def shopping_list(job: Job, laid: Sequence[Nesting] | None = None, cuts: Sequenc
     """
     laid = nestings(job) if laid is None else laid
     cuts = cut_list(job, laid) if cuts is None else cuts
-    weights = masses(job, job.web)
+    weights = job.masses
     return [
         *_sheets(job, laid, cuts),
         *_strips(job, cuts),

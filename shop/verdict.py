@@ -105,7 +105,7 @@ def saving(job: Job) -> Saving | None:
     except KeyedError:
         return None
     least = masses(job, job.fit(best, job.survey(best))).filler
-    return Saving(float(np.degrees(job.cant)), float(np.degrees(best)), masses(job, job.web).filler, least)
+    return Saving(float(np.degrees(job.cant)), float(np.degrees(best)), job.masses.filler, least)
 
 
 def saving_sentence(found: Saving | None, job: Job) -> str:

@@ -175,7 +175,7 @@ def broken_limits(job: Job) -> tuple[Miss, ...]:
     """Limits of the wing file that its own web breaks."""
     built = job.web
     bevel, _ = built.cut_bevels()
-    stated = _misses(job, job.record.web.thickness, built.gap, bevel, masses(job, built).total)
+    stated = _misses(job, job.record.web.thickness, built.gap, bevel, job.masses.total)
     return tuple(miss for miss in stated if miss.limit in Limits.model_fields)
 
 

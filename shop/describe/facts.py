@@ -11,8 +11,8 @@ from ...geom import washout
 from ...geom import web as web_geometry
 from ...geom.web import SIDES, Side
 from ..job import Job
-from ..masses import masses
 from ..stock import Foam
+from ..units import GRAM
 from ..verdict import amount
 from ..weigh import broken_limits
 from ..wording import degrees
@@ -72,7 +72,7 @@ def facts(job: Job) -> Facts:
     rows = job.rows([0.0, built.plane.length])
     cut_heights = [max(r.top.cut_front - r.bottom.cut_front, r.top.cut_rear - r.bottom.cut_rear) for r in rows]
     heights = [(r.top.front + r.top.rear - r.bottom.front - r.bottom.rear) / 2.0 for r in rows]
-    weights = masses(job, built)
+    weights = job.masses
     return Facts(
         name=job.record.name,
         stamp=job.stamp,
@@ -90,7 +90,7 @@ def facts(job: Job) -> Facts:
         edge=job.record.web.edge,
         heights=(heights[0], heights[1]),
         cut_heights=(cut_heights[0], cut_heights[1]),
-        planed=(built.top.removed + built.bottom.removed) * job.stock.find(job.record.web.foam, Foam).density * 1e-6,
+        planed=(built.top.removed + built.bottom.removed) * job.stock.find(job.record.web.foam, Foam).density * GRAM,
         bevel_top=_bevels(job, "top"),
         bevel_bottom=_bevels(job, "bottom"),
         gap=built.gap,
